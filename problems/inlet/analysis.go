@@ -1,0 +1,286 @@
+package inlet
+
+import (
+	"math"
+
+	"rampwright/problems"
+	"rampwright/problems/contour"
+	"rampwright/problems/ramp"
+	"rampwright/problems/shock"
+)
+
+// placeTolerance is how far, in capture heights, a shock or streamline may miss
+// a point and still count as meeting it.
+const placeTolerance = 1e-9
+
+// analysis is the exact flow of one frozen contour at one flight point. Each
+// group of numbers has the reason why it is missing beside it, nil if present.
+type analysis struct {
+	def    *Definition
+	route  route
+	shape  *closure
+	design *Design
+	point  *Point
+
+	waves    [ramp.MaxRamps]shock.Oblique
+	attached int
+	// margin of ramp i is defined one ramp past the attached ones, unless the
+	// flow there is subsonic or expands.
+	margin  [ramp.MaxRamps]float64
+	margins int
+	rampErr error // nothing behind the ramps
+
+	clearance [ramp.MaxRamps]float64
+	placeErr  error // lip not in ramp n's undisturbed flow, or contour not closed
+
+	capture, spillage float64
+	captureErr        error
+
+	lipMach    float64
+	reflection float64 // largest turning of regular reflection
+	lipErr     error   // no flow known at the lip
+	lip        shock.Oblique
+	miss       float64
+	throatErr  error // no flow known behind the lip shock
+
+	terminal         shock.Jump
+	terminalMach     float64
+	throatMach       float64
+	pressureRatio    float64
+	temperatureRatio float64
+	shockRecovery    float64
+
+	cowlMargin float64
+	cowlDrag   float64
+	cowlErr    error
+}
+
+func (a *analysis) run() {
+	a.marchRamps()
+	a.placeLip()
+	a.meetLip()
+	a.crossLipShock()
+	a.enterThroat()
+	a.capturedStream()
+	a.outerCowl()
+}
+
+// marchRamps finds the ramp shocks and their attachment margins.
+func (a *analysis) marchRamps() {
+	n := a.design.Ramps
+	a.attached, a.rampErr = march(a.route, a.def.Gas, a.point.Mach, a.point.Incidence, a.design, a.waves[:n])
+	a.margins = a.attached
+	if _, ok := a.rampErr.(*problems.Detached); ok {
+		a.margins++
+	}
+	mach := a.point.Mach
+	for i := range a.margins {
+		a.margin[i] = a.route.largestTurning(a.def.Gas, mach) - a.design.flowTurning(i, a.point.Incidence)
+		mach = a.waves[i].Mach2
+	}
+}
+
+// shockLine is the straight line of ramp shock i (from 0).
+func (a *analysis) shockLine(i int) contour.Line {
+	return contour.Line{Through: a.shape.Corners[i], Angle: a.flowAngle(i) + a.waves[i].WaveAngle}
+}
+
+// flowAngle is the direction of the flow behind i ramp shocks.
+func (a *analysis) flowAngle(i int) float64 {
+	if i == 0 {
+		return -a.point.Incidence
+	}
+	return a.shape.Angles[i-1]
+}
+
+// placeLip decides whether the lip stands in ramp n's undisturbed flow: behind
+// every ramp shock, which meet the lip streamline in order, and ahead of the
+// wave that their crossing sends toward the body.
+func (a *analysis) placeLip() {
+	a.placeErr = a.rampErr
+	if a.placeErr == nil {
+		a.placeErr = a.shape.err
+	}
+	if a.placeErr != nil {
+		return
+	}
+	height := a.shape.height
+	lipLevel := contour.Line{Through: a.shape.Lip}
+	inside := false
+	for i := range a.design.Ramps {
+		distance, ok := lipLevel.Reach(a.shockLine(i))
+		a.clearance[i] = -distance / height
+		if !ok || a.clearance[i] < -placeTolerance {
+			inside = true
+		}
+	}
+	switch {
+	case inside:
+		a.placeErr = errInside
+	case !a.inOrder():
+		a.placeErr = errCross
+	case a.behindFocusWave():
+		a.placeErr = errFocusWave
+	}
+}
+
+var (
+	errInside    = &problems.Status{Phrase: "shocks inside the lip"}
+	errCross     = &problems.Status{Phrase: "ramp shocks cross ahead of the lip"}
+	errFocusWave = &problems.Status{Phrase: "lip behind the focus wave"}
+	errLipOff    = &problems.Status{Phrase: "cowl turns away from the flow at the lip"}
+	errSonic     = &problems.Status{Phrase: "flow subsonic behind the lip shock"}
+)
+
+// inOrder reports whether the lip streamline, followed upstream, meets the
+// shocks of ramps n..1 one after another.
+func (a *analysis) inOrder() bool {
+	place := a.shape.Lip
+	for i := a.design.Ramps - 1; i >= 0; i-- {
+		back, ok := a.streamline(place, i).Reach(a.shockLine(i))
+		if !ok || back > placeTolerance*a.shape.height {
+			return false
+		}
+		place = a.upstream(place, i, back)
+	}
+	return a.shockLine(0).Along(place) >= -placeTolerance*a.shape.height
+}
+
+// streamline is the line of the stream through place in the region of ramp i.
+func (a *analysis) streamline(place contour.Point, i int) contour.Line {
+	return contour.Line{Through: place, Angle: a.shape.Angles[i]}
+}
+
+// upstream moves place by the signed distance along the flow of ramp i.
+func (a *analysis) upstream(place contour.Point, i int, distance float64) contour.Point {
+	sin, cos := math.Sincos(a.shape.Angles[i])
+	return contour.Point{X: place.X + distance*cos, Y: place.Y + distance*sin}
+}
+
+// behindFocusWave reports whether the wave that leaves the crossing of two
+// neighbouring shocks toward the body, at the Mach angle of the flow there,
+// reaches the lip's stream ahead of the lip. At the focus it is the condition
+// phi_n >= asin(1/M_n).
+func (a *analysis) behindFocusWave() bool {
+	for i := 1; i < a.design.Ramps; i++ {
+		crossing, ok := contour.Meet(a.shockLine(i-1), a.shockLine(i))
+		if !ok || crossing.X > a.shape.Lip.X-placeTolerance*a.shape.height {
+			continue
+		}
+		wave := contour.Line{
+			Through: crossing,
+			Angle:   a.shape.Angles[i] - math.Asin(1/a.waves[i].Mach2),
+		}
+		if wave.Height(a.shape.Lip) > placeTolerance*a.shape.height {
+			return true
+		}
+	}
+	return false
+}
+
+// meetLip is the state ahead of the lip and what it allows.
+func (a *analysis) meetLip() {
+	a.lipErr = a.rampErr
+	if a.lipErr == nil && a.shape.err == nil {
+		a.lipErr = a.placeErr
+	}
+	if a.rampErr == nil {
+		a.lipMach = a.waves[a.design.Ramps-1].Mach2
+	}
+	if a.lipErr == nil {
+		a.reflection = a.route.regularReflection(a.def.Gas, a.lipMach)
+	}
+}
+
+// crossLipShock turns the flow by the lip turning; an aligned cowl has no shock.
+func (a *analysis) crossLipShock() {
+	a.throatErr = a.lipErr
+	if a.throatErr != nil {
+		return
+	}
+	if a.design.LipTurning < 0 {
+		a.throatErr = errLipOff
+		return
+	}
+	wave, err := a.route.weak(a.def.Gas, a.lipMach, a.design.LipTurning)
+	if err != nil {
+		a.throatErr = detached("lip shock", a.lipMach, err)
+		return
+	}
+	a.lip = wave
+	if a.shape.err == nil && a.design.LipTurning > 0 {
+		a.miss = a.missShoulder()
+	}
+	if !(wave.Mach2 > 1) {
+		a.throatErr = errSonic
+	}
+}
+
+// missShoulder is the distance from the shoulder to the foot of the lip shock,
+// along ramp n or the throat wall, over capture height.
+func (a *analysis) missShoulder() float64 {
+	lipShock := contour.Line{Through: a.shape.Lip, Angle: a.flowAngle(a.design.Ramps) - a.lip.WaveAngle}
+	shoulder := contour.Line{Through: a.shape.Shoulder, Angle: a.flowAngle(a.design.Ramps)}
+	along, ok := shoulder.Reach(lipShock)
+	if !ok || along > 0 { // downstream of the shoulder the wall is the throat's
+		along, ok = a.shape.throatWall().Reach(lipShock)
+	}
+	if !ok {
+		return math.Inf(1)
+	}
+	return math.Abs(along) / a.shape.height
+}
+
+// enterThroat ends the compression behind the lip shock, or behind a terminal
+// normal shock where one stands in the throat.
+func (a *analysis) enterThroat() {
+	if a.throatErr != nil {
+		return
+	}
+	a.terminal, a.throatMach = shock.Jump{Pressure: 1, Density: 1, Temperature: 1, TotalPressure: 1}, a.lip.Mach2
+	a.terminalMach = a.lip.Mach2
+	if a.def.TerminalShock {
+		a.throatMach, a.terminal = a.route.normal(a.def.Gas, a.terminalMach)
+	}
+	a.pressureRatio = a.lip.Jump.Pressure * a.terminal.Pressure
+	a.temperatureRatio = a.lip.Jump.Temperature * a.terminal.Temperature
+	for _, wave := range a.waves[:a.design.Ramps] {
+		a.pressureRatio *= wave.Jump.Pressure
+		a.temperatureRatio *= wave.Jump.Temperature
+	}
+	a.shockRecovery = a.route.recovery(a)
+}
+
+// outerCowl is the free stream on the outer cowl wedge: an attached shock, or an
+// expansion where the surface turns away.
+func (a *analysis) outerCowl() {
+	g, turning := a.def.Gas, a.design.Outer()+a.point.Incidence
+	a.cowlMargin = a.route.largestTurning(g, a.point.Mach) - turning
+	a.cowlErr = nil
+	var pressure float64
+	if turning > 0 {
+		wave, err := a.route.weak(g, a.point.Mach, turning)
+		if err != nil {
+			a.cowlErr = detached("outer cowl", a.point.Mach, err)
+			return
+		}
+		pressure = wave.Jump.Pressure
+	} else {
+		_, ratio, err := shock.Expand(g, a.point.Mach, -turning)
+		if err != nil {
+			a.cowlErr = &problems.Status{Phrase: "outer cowl expands past vacuum"}
+			return
+		}
+		pressure = ratio
+	}
+	a.cowlDrag = (pressure - 1) * a.def.CowlLength * math.Tan(a.design.Outer()) / g.DynamicPressure(1, a.point.Mach)
+}
+
+// status is the first reason along the flow why the captured stream is not
+// known, nil when it is attached from free stream to throat.
+func (a *analysis) status() error {
+	if a.throatErr != nil {
+		return a.throatErr
+	}
+	return a.placeErr
+}

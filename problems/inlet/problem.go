@@ -1,0 +1,184 @@
+package inlet
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"sync"
+
+	"rampwright/problems"
+	"rampwright/problems/ramp"
+)
+
+// Problem is a definition as a search sees it: its searched settings are the
+// variables, its catalogue at every flight point and of the geometry the
+// quantities. It implements problems.Problem, Explicit and Verifier, and is safe
+// for concurrent use.
+type Problem struct {
+	definition Definition
+	variables  []problems.Variable
+	quantities []problems.Quantity
+	readers    []reader // one a quantity
+	explicit   []int    // quantities of the geometry
+	pool       sync.Pool
+}
+
+// reader finds one quantity: an entry of the catalogue, the member of a group,
+// and the flight point (from 0), or -1 for the geometry.
+type reader struct {
+	entry  *Entry
+	member int
+	point  int
+}
+
+// New returns the problem of a definition.
+func New(definition Definition) (*Problem, error) {
+	if err := definition.validate(); err != nil {
+		return nil, err
+	}
+	p := &Problem{definition: definition, variables: definition.variables()}
+	p.pool.New = func() any { return new(workspace) }
+	for i := range definition.Points {
+		p.list(PerPoint, i, definition.Points[i].Name)
+	}
+	first := len(p.quantities)
+	p.list(OfGeometry, -1, problems.Geometry)
+	for i := first; i < len(p.quantities); i++ {
+		p.explicit = append(p.explicit, i)
+	}
+	return p, nil
+}
+
+func (p *Problem) list(scope Scope, point int, name string) {
+	for i := range catalogue {
+		entry := &catalogue[i]
+		if entry.Scope != scope {
+			continue
+		}
+		members := []string{""}
+		if entry.Group() {
+			members = entry.members(len(p.definition.RampAngle))
+		}
+		for k, member := range members {
+			p.quantities = append(p.quantities, problems.Quantity{
+				Name: entry.Name, Point: name, Member: member, Unit: entry.Unit, Explicit: scope == OfGeometry,
+			})
+			p.readers = append(p.readers, reader{entry, k, point})
+		}
+	}
+}
+
+// Definition returns the definition.
+func (p *Problem) Definition() Definition { return p.definition }
+
+// Variables returns the searched settings, in the unit their names state.
+func (p *Problem) Variables() []problems.Variable { return p.variables }
+
+// Quantities returns the catalogue at every flight point, in order, then that of
+// the geometry.
+func (p *Problem) Quantities() []problems.Quantity { return p.quantities }
+
+// workspace holds what one evaluation needs.
+type workspace struct {
+	design Design
+	shape  closure
+	flow   analysis
+}
+
+// Evaluate computes every quantity at x by the first exact route.
+func (p *Problem) Evaluate(ctx context.Context, x []float64, dst *problems.Evaluation) error {
+	return p.evaluate(ctx, first{}, x, dst)
+}
+
+// Verify computes every quantity at x by the second exact route.
+func (p *Problem) Verify(ctx context.Context, x []float64, dst *problems.Evaluation) error {
+	return p.evaluate(ctx, second{}, x, dst)
+}
+
+func (p *Problem) evaluate(ctx context.Context, r route, x []float64, dst *problems.Evaluation) error {
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	w := p.pool.Get().(*workspace)
+	defer p.pool.Put(w)
+	p.freeze(w, r, x)
+	next := 0
+	for i := range p.definition.Points {
+		w.flow.point = &p.definition.Points[i]
+		w.flow.run()
+		next = p.read(w, dst, next, i)
+	}
+	p.read(w, dst, next, -1)
+	return nil
+}
+
+// freeze shapes the contour of the design at x.
+func (p *Problem) freeze(w *workspace, r route, x []float64) {
+	def := &p.definition
+	w.design = def.resolve(x)
+	w.shape.close(r, def.Gas, w.design, def.CaptureHeight, def.Points[0].Incidence)
+	w.flow = analysis{def: def, route: r, shape: &w.shape, design: &w.design, point: &def.Points[0]}
+}
+
+// read stores the quantities of one point, starting at index next.
+func (p *Problem) read(w *workspace, dst *problems.Evaluation, next, point int) int {
+	for ; next < len(p.readers) && p.readers[next].point == point; next++ {
+		value, err := p.readers[next].read(&w.flow)
+		switch {
+		case err != nil:
+			dst.Miss(next, err)
+		case math.IsNaN(value) || math.IsInf(value, 0):
+			dst.Miss(next, &problems.Status{Phrase: "not a finite number"})
+		default:
+			dst.Set(next, value)
+		}
+	}
+	return next
+}
+
+func (r *reader) read(a *analysis) (float64, error) {
+	if r.entry.Group() {
+		return r.entry.member(a, r.member)
+	}
+	return r.entry.value(a)
+}
+
+// EvaluateExplicit computes the quantities of the geometry alone: shock theory
+// at the shock-on-lip Mach number places them, whatever the true model of the
+// flow is.
+func (p *Problem) EvaluateExplicit(x []float64, dst *problems.Evaluation) {
+	w := p.pool.Get().(*workspace)
+	defer p.pool.Put(w)
+	p.freeze(w, first{}, x)
+	p.read(w, dst, p.explicit[0], -1)
+}
+
+// Invalid reports a definition that no flow can be computed for.
+type Invalid struct {
+	What string
+}
+
+func (e *Invalid) Error() string { return "inlet definition: " + e.What }
+
+func (d *Definition) validate() error {
+	n := len(d.RampAngle)
+	switch {
+	case n < 1 || n > ramp.MaxRamps:
+		return &Invalid{fmt.Sprintf("%d ramps, allowed 1 to %d", n, ramp.MaxRamps)}
+	case len(d.Points) == 0:
+		return &Invalid{"no flight point"}
+	case (d.CowlAngle == nil) == (d.LipTurning == nil):
+		return &Invalid{"exactly one of cowl angle and lip turning is needed"}
+	case !(d.CaptureHeight > 0) || !(d.Width > 0):
+		return &Invalid{"capture height and width must be positive"}
+	}
+	if err := d.Gas.Validate(); err != nil {
+		return &Invalid{err.Error()}
+	}
+	for _, point := range d.Points {
+		if !(point.Mach > 1) || !(point.Pressure > 0) || !(point.Temperature > 0) {
+			return &Invalid{fmt.Sprintf("flight point %s needs Mach above 1 and positive pressure and temperature", point.Name)}
+		}
+	}
+	return nil
+}
