@@ -89,6 +89,13 @@ type Explicit interface {
 	EvaluateExplicit(x []float64, dst *Evaluation)
 }
 
+// Linear is implemented by a problem some of whose explicit quantities are linear
+// in the variables, so that a search can keep limits on them at every step.
+// LinearForm returns quantity i as sum(a_j x_j) + b, or ok false.
+type Linear interface {
+	LinearForm(i int) (a []float64, b float64, ok bool)
+}
+
 // Verifier is implemented by a problem that can be computed by a second exact
 // route which shares nothing with Evaluate but constants and definitions.
 type Verifier interface {

@@ -25,6 +25,7 @@ type Entry struct {
 	value   func(a *analysis) (float64, error)        // of a quantity that stands alone
 	members func(ramps int) []string                  // of a group: least over several shocks or ramps
 	member  func(a *analysis, i int) (float64, error) // of member i of a group
+	linear  func(d *Design) float64                   // of a quantity linear in the settings, rad
 }
 
 // Group reports whether the quantity is the least over several shocks or ramps,
@@ -120,13 +121,13 @@ var catalogue = []Entry{
 		"free-stream total pressure", "NACA Report 1135", everywhere),
 	single(free((*analysis).unitReynolds)).as("unit_reynolds_1_m", "1/m", PerPoint,
 		"free-stream density times speed over viscosity (Sutherland)", "U.S. Standard Atmosphere 1976", everywhere),
-	single(angle((*Design).TotalTurning)).as("total_turning_deg", "deg", OfGeometry,
+	angle((*Design).TotalTurning).as("total_turning_deg", "deg", OfGeometry,
 		"sum of the ramp turnings", "definition", everywhere),
-	single(angle(func(d *Design) float64 { return d.LipTurning })).as("lip_turning_deg", "deg", OfGeometry,
+	angle(func(d *Design) float64 { return d.LipTurning }).as("lip_turning_deg", "deg", OfGeometry,
 		"turning of the flow at the lip: last ramp surface angle less inner cowl angle", "definition", everywhere),
-	single(angle(func(d *Design) float64 { return d.Cowl })).as("cowl_angle_deg", "deg", OfGeometry,
+	angle(func(d *Design) float64 { return d.Cowl }).as("cowl_angle_deg", "deg", OfGeometry,
 		"angle of the inner cowl surface to the x axis", "definition", everywhere),
-	single(angle((*Design).Outer)).as("cowl_outer_angle_deg", "deg", OfGeometry,
+	angle((*Design).Outer).as("cowl_outer_angle_deg", "deg", OfGeometry,
 		"angle of the outer cowl surface to the x axis", "definition", everywhere),
 	single(closed(func(c *closure) float64 { return c.Shoulder.X })).as("length_m", "m", OfGeometry,
 		"x of the shoulder", "shock focus and cancelled lip shock", closes),

@@ -153,6 +153,28 @@ func (p *Problem) EvaluateExplicit(x []float64, dst *problems.Evaluation) {
 	p.read(w, dst, p.explicit[0], -1)
 }
 
+// LinearForm returns an angle of the geometry as a linear form of the variables:
+// its value at the origin and along each axis.
+func (p *Problem) LinearForm(i int) (a []float64, b float64, ok bool) {
+	read := p.readers[i].entry.linear
+	if read == nil {
+		return nil, 0, false
+	}
+	x := make([]float64, len(p.variables))
+	at := func() float64 {
+		design := p.definition.resolve(x)
+		return read(&design) / radian
+	}
+	b = at()
+	a = make([]float64, len(x))
+	for j := range x {
+		x[j] = 1
+		a[j] = at() - b
+		x[j] = 0
+	}
+	return a, b, true
+}
+
 // Invalid reports a definition that no flow can be computed for.
 type Invalid struct {
 	What string

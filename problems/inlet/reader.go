@@ -55,9 +55,11 @@ func contraction(ceiling func(*analysis) float64) func(*analysis) (float64, erro
 	}
 }
 
-// angle reads an angle of the design in degrees.
-func angle(read func(*Design) float64) func(*analysis) (float64, error) {
-	return func(a *analysis) (float64, error) { return read(a.design) / radian, nil }
+// angle starts the catalogue line of an angle that is linear in the settings.
+func angle(read func(*Design) float64) Entry {
+	entry := single(func(a *analysis) (float64, error) { return read(a.design) / radian, nil })
+	entry.linear = read
+	return entry
 }
 
 // closed reads a quantity of the contour.

@@ -59,28 +59,34 @@ func March(g gas.Perfect, mach float64, turning []float64, waves []shock.Oblique
 // ok is false where a shock is detached. It allocates nothing.
 func Recovery(g gas.Perfect, mach float64, turning []float64) (recovery, machBehind float64, ok bool) {
 	square := mach * mach
-	density, pressure := 1.0, 1.0
+	density, cooling := 1.0, 1.0
 	for _, theta := range turning {
 		var s step
 		if !s.cross(g.Gamma, square, tangent(theta)) {
 			return math.NaN(), math.NaN(), false
 		}
 		density *= s.density
-		pressure *= s.pressure
+		cooling *= s.cooling
 		square = s.behind
 	}
-	return totalPressure(g.Gamma, density, pressure), math.Sqrt(square), true
+	return totalPressure(g.Gamma, density, cooling), math.Sqrt(square), true
 }
 
 // step is one shock in squares of Mach numbers and x = cot(beta): everything
-// behind it is rational in them.
+// behind it is rational in them. With w = 1 + x^2, that is Mn^2 = M1^2/w, the
+// ratios of NACA Report 1135 (eqs. 128-132) have the common denominators
+//
+//	low = (g-1) M1^2 + 2w,  high = 2g M1^2 - (g-1) w
+//	rho2/rho1 = (g+1) M1^2/low,  T1/T2 = (g+1)^2 M1^2 w/(low high)
+//	M2^2 = ((g+1)^2 M1^4 w - 4 (M1^2-w)(g M1^2+w))/(low high)
 type step struct {
 	ahead     float64 // M1^2
 	tangent   float64 // tan(theta)
 	cotangent float64 // x
-	normal    float64 // Mn^2 = M1^2/(1 + x^2)
-	pressure  float64
-	density   float64
+	width     float64 // w
+	inverse   float64 // 1/(low high)
+	density   float64 // rho2/rho1
+	cooling   float64 // T1/T2
 	behind    float64 // M2^2
 }
 
@@ -92,14 +98,15 @@ func (s *step) cross(gamma, square, tangent float64) bool {
 	if !attached {
 		return false
 	}
-	normal := square / (1 + x*x)
-	low := (gamma-1)*normal + 2
-	high := 2*gamma*normal - (gamma - 1)
-	s.ahead, s.tangent, s.cotangent, s.normal = square, tangent, x, normal
-	s.pressure = high / (gamma + 1)
-	s.density = (gamma + 1) * normal / low
-	// 1 + (g-1)/2 M^2 is conserved times T: M2^2 from T2/T1 = p2p1/rho2rho1.
-	s.behind = ((2+(gamma-1)*square)*s.density/s.pressure - 2) / (gamma - 1)
+	w := 1 + x*x
+	low := (gamma-1)*square + 2*w
+	high := 2*gamma*square - (gamma-1)*w
+	inverse := 1 / (low * high)
+	both := (gamma + 1) * (gamma + 1) * square * w
+	s.ahead, s.tangent, s.cotangent, s.width, s.inverse = square, tangent, x, w, inverse
+	s.density = (gamma + 1) * square * high * inverse
+	s.cooling = both * inverse
+	s.behind = (both*square - 4*(square-w)*(gamma*square+w)) * inverse
 	return true
 }
 
@@ -111,12 +118,11 @@ func tangent(theta float64) float64 {
 	return math.Tan(theta)
 }
 
-// totalPressure returns rho^(g/(g-1)) p^(-1/(g-1)); for g = 1.4 the power 2.5
-// needs square roots only.
-func totalPressure(gamma, density, pressure float64) float64 {
+// totalPressure returns rho2/rho1 (T1/T2)^(1/(g-1)); for g = 1.4 the power 2.5
+// needs a square root only.
+func totalPressure(gamma, density, cooling float64) float64 {
 	if gamma == 1.4 {
-		ratio := density / pressure
-		return density * ratio * ratio * math.Sqrt(ratio)
+		return density * cooling * cooling * math.Sqrt(cooling)
 	}
-	return density * math.Pow(density/pressure, 1/(gamma-1))
+	return density * math.Pow(cooling, 1/(gamma-1))
 }

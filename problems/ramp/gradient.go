@@ -16,17 +16,17 @@ func RecoveryGradient(g gas.Perfect, mach float64, turning, dRecovery, dMach []f
 	var steps [MaxRamps]step
 	n := len(turning)
 	square := mach * mach
-	density, pressure := 1.0, 1.0
+	density, cooling := 1.0, 1.0
 	for i, theta := range turning {
 		s := &steps[i]
 		if !s.cross(g.Gamma, square, tangent(theta)) {
 			return math.NaN(), math.NaN(), false
 		}
 		density *= s.density
-		pressure *= s.pressure
+		cooling *= s.cooling
 		square = s.behind
 	}
-	recovery = totalPressure(g.Gamma, density, pressure)
+	recovery = totalPressure(g.Gamma, density, cooling)
 	machBehind = math.Sqrt(square)
 
 	lossByMach, machByMach := 0.0, 1.0 // d ln(pi)/d M_i^2 and d M_end^2/d M_i^2
@@ -52,33 +52,36 @@ type slopes struct {
 	machByTurning, machByMach float64
 }
 
+// differentiate returns the slopes of one shock. With n = Mn^2 = m/w and the
+// denominators of step,
+//
+//	d ln(pt2/pt1)/dn = -2g (n-1)^2/(n l h),             l = (g-1) n + 2
+//	d ln(T1/T2)/dn   = -2(g-1) (g n^2+1)/(n l h),       h = 2g n - (g-1)
+//
+// (from the ratios of NACA Report 1135 eqs. 128-132), and M2^2 follows from the
+// conserved total temperature, M2^2 + 2/(g-1) = (m + 2/(g-1)) T1/T2.
 func (s *step) differentiate(gamma float64) slopes {
-	x, m, t := s.cotangent, s.ahead, s.tangent
+	x, m, t, w := s.cotangent, s.ahead, s.tangent, s.width
 	a, b := (gamma-1)*m+2, (gamma+1)*m+2
 	byX := (6*x+2*t*b)*x - 2*(m-1)
-	xByMach := -((t*(gamma+1)*x-2)*x + t*(gamma-1)) / byX
-	xByTurning := -(b*x*x + a) / byX * (1 + t*t)
+	reciprocal := 1 / (byX * w * m)
+	perX, perWidth, perMach := w*m*reciprocal, m*byX*reciprocal, byX*w*reciprocal
+	xByMach := -((t*(gamma+1)*x-2)*x + t*(gamma-1)) * perX
+	xByTurning := -(b*x*x + a) * perX * (1 + t*t)
 
-	// Mn^2 = m/(1+x^2).
-	share := 1 / (1 + x*x)
-	normalByX := -2 * x * s.normal * share
-	normalByMach := share + normalByX*xByMach
-	normalByTurning := normalByX * xByTurning
+	// d ln(n) by M1^2 and by turning, times m: n = m/(1+x^2).
+	lnByX := -2 * x * m * perWidth
+	lnByMach := 1 + lnByX*xByMach
+	lnByTurning := lnByX * xByTurning
 
-	// Logarithmic slopes of density, pressure by Mn^2.
-	low := (gamma-1)*s.normal + 2
-	high := 2*gamma*s.normal - (gamma - 1)
-	lnDensity := 2 / (s.normal * low)
-	lnPressure := 2 * gamma / high
-	loss := (gamma*lnDensity - lnPressure) / (gamma - 1)
-
-	// M2^2 + 2/(g-1) = (m + 2/(g-1)) rho2rho1/p2p1.
-	total := s.behind + 2/(gamma-1)
-	ratio := lnDensity - lnPressure
+	// n l h = n low high/w^2, so that the slopes by ln(n), over m, are these.
+	common := -2 * s.inverse * perMach
+	loss := gamma * common * (m - w) * (m - w)
+	cool := common * (gamma*m*m + w*w) * ((gamma-1)*s.behind + 2)
 	return slopes{
-		lossByTurning: loss * normalByTurning,
-		lossByMach:    loss * normalByMach,
-		machByTurning: total * ratio * normalByTurning,
-		machByMach:    total/(m+2/(gamma-1)) + total*ratio*normalByMach,
+		lossByTurning: loss * lnByTurning,
+		lossByMach:    loss * lnByMach,
+		machByTurning: cool * lnByTurning,
+		machByMach:    s.cooling + cool*lnByMach,
 	}
 }

@@ -1,0 +1,297 @@
+package optimize
+
+import (
+	"context"
+	"errors"
+	"math"
+	"sort"
+
+	"rampwright/optimize/local"
+)
+
+// Design runs the main job on a task. The error reports a task or setting that
+// makes no sense, or a model that could not be run; a context that ends first
+// gives the best so far with status Stopped (deadline) or Interrupted.
+func Design(ctx context.Context, task Task, settings Settings, observe Observer) (*Result, error) {
+	plan, err := newPlan(task)
+	if err != nil {
+		return nil, err
+	}
+	settings = settings.WithDefaults(plan.dimension())
+	if err := settings.Validate(plan.dimension()); err != nil {
+		return nil, err
+	}
+	d := &designer{plan: plan, settings: settings, observe: observe, aimScale: 1, radius: startRadius}
+	if err := d.run(ctx); err != nil && ctx.Err() == nil {
+		return nil, err
+	}
+	return d.result(ctx)
+}
+
+// designer is a design under way.
+type designer struct {
+	plan     *plan
+	settings Settings
+	observe  Observer
+
+	samples    []*sample // every exact evaluation, in order
+	training   []*sample // those the surrogates are fitted to
+	fits       []Fit
+	stale      int // training samples the fits have not seen
+	aimScale   float64
+	weight     float64 // of the violation in the merit
+	anchor     *anchor
+	radius     float64
+	prices     []float64 // by row, at the last local solution
+	stepErrors []float64 // of the corrected model at the latest step, by quantity
+
+	proposals map[*sample]*proposal
+	counts    Counts
+	history   []Step
+	why       string
+}
+
+const (
+	startRadius = 0.25
+	leastRadius = 1e-5
+	// apart is the least distance, in the unit cube, between training samples:
+	// closer ones add no information and spoil the conditioning of a process.
+	apart = 2e-3
+)
+
+// run is the main job: sample, fit, then propose, evaluate and learn until the
+// surrogates agree at the optimum and nothing improves.
+func (d *designer) run(ctx context.Context) error {
+	if err := d.sample(ctx); err != nil {
+		return err
+	}
+	for d.counts.Infill < d.settings.Infill {
+		if err := d.fit(ctx); err != nil {
+			return err
+		}
+		proposals, err := d.propose(ctx)
+		if err != nil {
+			return err
+		}
+		if len(proposals) == 0 {
+			break
+		}
+		if err := d.evaluate(ctx, proposals); err != nil {
+			return err
+		}
+		d.learn(proposals)
+	}
+	if d.why == "" {
+		d.why = "all infill evaluations are spent"
+	}
+	return nil
+}
+
+// sample evaluates the space-filling design.
+func (d *designer) sample(ctx context.Context) error {
+	points := d.plan.design(d.settings.Samples, d.settings.Seed)
+	// In slices, so that an interruption loses little and progress shows.
+	for len(points) > 0 {
+		part := points[:min(len(points), 4*d.settings.Jobs)]
+		points = points[len(part):]
+		samples, err := d.plan.evaluate(ctx, d.settings.Jobs, part)
+		if err != nil {
+			return err
+		}
+		d.samples = append(d.samples, samples...)
+		d.counts.Samples += len(samples)
+		d.tell("samples")
+	}
+	d.training = append(d.training, d.samples...)
+	d.scale()
+	return nil
+}
+
+// scale sets the unit of the aim: its spread over the samples.
+func (d *designer) scale() {
+	low, high := math.Inf(1), math.Inf(-1)
+	for _, s := range d.samples {
+		if !math.IsNaN(s.aim) {
+			low, high = math.Min(low, s.aim), math.Max(high, s.aim)
+		}
+	}
+	if high > low {
+		d.aimScale = high - low
+	}
+	d.weight = 10
+}
+
+// refitEvery is how many new training samples call for a new choice of kinds.
+const refitEvery = 10
+
+// fit brings the surrogates up to the training samples.
+func (d *designer) fit(ctx context.Context) error {
+	if d.fits != nil && d.stale == 0 {
+		return nil
+	}
+	earlier := d.fits
+	if len(d.training)%refitEvery == 0 {
+		earlier = nil
+	}
+	fits, err := d.plan.fitAll(ctx, d.settings.Jobs, d.settings.Seed, d.training, earlier)
+	if err != nil {
+		return err
+	}
+	d.fits, d.stale = fits, 0
+	d.anchor = nil
+	return nil
+}
+
+// center is the sample of best merit.
+func (d *designer) center() *sample {
+	best := d.samples[0]
+	for _, s := range d.samples[1:] {
+		if d.merit(s) < d.merit(best) {
+			best = s
+		}
+	}
+	return best
+}
+
+// merit orders samples: the aim to minimise in its scale, plus the weighted
+// violation (exact l1 penalty).
+func (d *designer) merit(s *sample) float64 {
+	aim := d.plan.objective.sign() * s.aim / d.aimScale
+	if math.IsNaN(aim) {
+		aim = constraintsWorse
+	}
+	return aim + d.weight*s.violation
+}
+
+// constraintsWorse is the scaled aim of a sample without one.
+const constraintsWorse = 1e3
+
+// best is the best feasible sample, nil before the first.
+func (d *designer) best() *sample {
+	var best *sample
+	for _, s := range d.samples {
+		if s.feasible && (best == nil || d.plan.objective.better(s.aim, best.aim)) {
+			best = s
+		}
+	}
+	return best
+}
+
+// evaluate computes the proposals exactly.
+func (d *designer) evaluate(ctx context.Context, proposals []*proposal) error {
+	points := make([][]float64, len(proposals))
+	for i, p := range proposals {
+		points[i] = p.u
+	}
+	samples, err := d.plan.evaluate(ctx, d.settings.Jobs, points)
+	if err != nil {
+		return err
+	}
+	if d.proposals == nil {
+		d.proposals = map[*sample]*proposal{}
+	}
+	for i, s := range samples {
+		proposals[i].sample = s
+		d.proposals[s] = proposals[i]
+	}
+	d.samples = append(d.samples, samples...)
+	d.counts.Infill += len(samples)
+	return nil
+}
+
+func (d *designer) tell(phase string) {
+	if d.observe == nil {
+		return
+	}
+	event := Event{
+		Phase: phase, Evaluations: len(d.samples), Planned: d.settings.Samples + d.settings.Infill,
+		Aim: math.NaN(), Violation: d.leastViolation(),
+	}
+	if best := d.best(); best != nil {
+		event.Aim = best.aim
+	}
+	d.observe(event)
+}
+
+func (d *designer) leastViolation() float64 {
+	least := math.Inf(1)
+	for _, s := range d.samples {
+		least = math.Min(least, s.violation)
+	}
+	return least
+}
+
+// result closes the design: candidates verified, the status decided.
+func (d *designer) result(ctx context.Context) (*Result, error) {
+	if len(d.samples) == 0 {
+		return nil, errors.Join(errNothingEvaluated, ctx.Err())
+	}
+	r := &Result{Rows: d.plan.rows, Fits: d.fits, History: d.history, Why: d.why}
+	finalists := d.finalists()
+	for _, s := range finalists {
+		candidate, err := d.candidate(s)
+		if err != nil {
+			return nil, err
+		}
+		r.Candidates = append(r.Candidates, candidate)
+	}
+	r.Best = r.Candidates[0]
+	r.Counts = d.counts
+	r.Status = d.status(ctx, &r.Best)
+	return r, nil
+}
+
+var errNothingEvaluated = errors.New("no design was evaluated")
+
+func (d *designer) status(ctx context.Context, best *Candidate) Status {
+	switch {
+	case errors.Is(context.Cause(ctx), context.DeadlineExceeded) && best.Assessment.Feasible:
+		return Stopped
+	case ctx.Err() != nil && !errors.Is(context.Cause(ctx), context.DeadlineExceeded):
+		return Interrupted
+	case !best.Assessment.Feasible:
+		return Infeasible
+	case !(best.RouteGap <= RouteAgreement) || !(best.SurrogateError <= d.settings.Agreement):
+		return NotVerified
+	}
+	return Verified
+}
+
+const (
+	finalistCount = 3
+	finalistApart = 0.05 // in the unit cube
+)
+
+// finalists are the best sample and distinct feasible runners-up; where nothing
+// is feasible, the sample of least violation alone.
+func (d *designer) finalists() []*sample {
+	ordered := append([]*sample(nil), d.samples...)
+	sort.SliceStable(ordered, func(i, j int) bool {
+		a, b := ordered[i], ordered[j]
+		switch {
+		case a.feasible != b.feasible:
+			return a.feasible
+		case !a.feasible:
+			return a.violation < b.violation
+		}
+		return d.plan.objective.better(a.aim, b.aim)
+	})
+	list := ordered[:1:1]
+	for _, s := range ordered[1:] {
+		if len(list) == finalistCount || !s.feasible {
+			break
+		}
+		distinct := true
+		for _, other := range list {
+			distinct = distinct && distance(s.u, other.u) > finalistApart
+		}
+		if distinct {
+			list = append(list, s)
+		}
+	}
+	return list
+}
+
+// localSettings are tight: a solution's last digits decide whether its exact
+// margins are negative.
+var localSettings = local.Settings{Tolerance: 1e-8, Iterations: 100}

@@ -1,0 +1,188 @@
+package optimize
+
+import (
+	"context"
+	"math"
+
+	"rampwright/surrogate"
+	"rampwright/surrogate/crossval"
+	"rampwright/surrogate/gpr"
+	"rampwright/surrogate/pce"
+)
+
+// Fit is the surrogate of one quantity and the figures it was chosen by.
+type Fit struct {
+	Quantity int // index in the problem's quantities
+	Samples  int // with a value
+	Choice   crossval.Choice
+	// Err is why there is no surrogate: too few samples with a value. Limits on
+	// the quantity are then judged on exact values only.
+	Err error
+	// never is a quantity that applied nowhere.
+	never bool
+}
+
+// candidates are the kinds that compete for every quantity.
+func candidates(seed int64) []surrogate.Model {
+	return []surrogate.Model{
+		pce.OLS{},
+		pce.Ridge{},
+		gpr.Config{Seed: seed},
+	}
+}
+
+// fitAll chooses a surrogate for every fitted quantity. Earlier fits, where
+// given, are refitted warm instead of chosen again.
+func (p *plan) fitAll(ctx context.Context, jobs int, seed int64, samples []*sample, earlier []Fit) ([]Fit, error) {
+	fits := make([]Fit, len(p.fitted))
+	failures := make([]error, len(p.fitted))
+	inSlots(jobs, len(p.fitted), func(k int) {
+		var before *Fit
+		if earlier != nil && earlier[k].Err == nil && !earlier[k].never {
+			before = &earlier[k]
+		}
+		fits[k] = fitOne(ctx, p.fitted[k], seed, samples, before)
+		failures[k] = ctx.Err()
+	})
+	for _, err := range failures {
+		if err != nil {
+			return nil, err
+		}
+	}
+	return fits, nil
+}
+
+func fitOne(ctx context.Context, quantity int, seed int64, samples []*sample, before *Fit) Fit {
+	fit := Fit{Quantity: quantity}
+	var x [][]float64
+	var y []float64
+	never := true
+	for _, s := range samples {
+		v := s.values[quantity]
+		never = never && math.IsInf(v, 1)
+		if !math.IsNaN(v) && !math.IsInf(v, 0) {
+			x, y = append(x, s.u), append(y, v)
+		}
+	}
+	fit.Samples = len(y)
+	if never {
+		fit.never = true
+		return fit
+	}
+	if before != nil {
+		if choice, err := before.Choice.Refit(ctx, x, y); err == nil {
+			fit.Choice = choice
+			return fit
+		}
+	}
+	fit.Choice, fit.Err = crossval.Choose(ctx, candidates(seed), x, y)
+	return fit
+}
+
+// surrogateLandscape is the fitted quantities, each shifted so that it equals the
+// exact value at the anchor and tilted by what earlier steps near it have shown,
+// and the explicit quantities themselves.
+type surrogateLandscape struct {
+	explicit *explicitPart
+	fits     []Fit
+	anchor   *anchor // nil: plain surrogates
+	calls    int
+}
+
+// anchor is an exact evaluation that corrects the surrogates near it (additive
+// model management, first-order consistent in the limit: Alexandrov et al.
+// 1998): m(u) = s(u) + shift + tilt (u - anchor).
+type anchor struct {
+	sample *sample
+	shift  []float64   // by fit
+	tilt   [][]float64 // by fit
+}
+
+func (p *plan) surrogates(fits []Fit, at *anchor) *surrogateLandscape {
+	return &surrogateLandscape{explicit: newExplicitPart(p), fits: fits, anchor: at}
+}
+
+// newAnchor shifts the fits onto the exact values of a sample; a tilt may be
+// handed on from an earlier anchor.
+func newAnchor(s *sample, fits []Fit, tilt [][]float64) *anchor {
+	a := &anchor{sample: s, shift: make([]float64, len(fits)), tilt: tilt}
+	if a.tilt == nil {
+		a.tilt = make([][]float64, len(fits))
+		for k := range a.tilt {
+			a.tilt[k] = make([]float64, len(s.u))
+		}
+	}
+	for k := range fits {
+		if exact := s.values[fits[k].Quantity]; fits[k].usable() && !math.IsNaN(exact) && !math.IsInf(exact, 0) {
+			a.shift[k] = exact - fits[k].Choice.Mean(s.u)
+		}
+	}
+	return a
+}
+
+// usable reports whether the fit predicts a number.
+func (f *Fit) usable() bool { return f.Err == nil && !f.never }
+
+// learn updates the tilt so that the corrected model also meets the exact values
+// of another sample (Broyden's rank-one update, Nocedal & Wright eq. 11.7).
+func (a *anchor) learn(s *sample, fits []Fit) {
+	length := 0.0
+	for j := range s.u {
+		length += (s.u[j] - a.sample.u[j]) * (s.u[j] - a.sample.u[j])
+	}
+	if length == 0 {
+		return
+	}
+	for k := range fits {
+		exact := s.values[fits[k].Quantity]
+		if !fits[k].usable() || math.IsNaN(exact) || math.IsInf(exact, 0) {
+			continue
+		}
+		residual := exact - fits[k].Choice.Mean(s.u) - a.at(k, s.u)
+		for j := range s.u {
+			a.tilt[k][j] += residual * (s.u[j] - a.sample.u[j]) / length
+		}
+	}
+}
+
+// at is the correction of fit k at u.
+func (a *anchor) at(k int, u []float64) float64 {
+	sum := a.shift[k]
+	for j, slope := range a.tilt[k] {
+		sum += slope * (u[j] - a.sample.u[j])
+	}
+	return sum
+}
+
+func (l *surrogateLandscape) values(u, dst []float64) {
+	l.calls++
+	for k := range l.fits {
+		fit := &l.fits[k]
+		if !fit.usable() {
+			dst[fit.Quantity] = math.Inf(1) // asks nothing until it can be fitted
+			continue
+		}
+		v := fit.Choice.Mean(u)
+		if l.anchor != nil {
+			v += l.anchor.at(k, u)
+		}
+		dst[fit.Quantity] = v
+	}
+	l.explicit.values(u, dst)
+}
+
+func (l *surrogateLandscape) jacobian(u []float64, rows [][]float64) {
+	for k := range l.fits {
+		fit := &l.fits[k]
+		row := rows[fit.Quantity]
+		if !fit.usable() {
+			clear(row)
+			continue
+		}
+		fit.Choice.Gradient(row, u)
+		if l.anchor != nil {
+			addScaled(row, 1, l.anchor.tilt[k])
+		}
+	}
+	l.explicit.jacobian(u, rows)
+}

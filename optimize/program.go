@@ -1,0 +1,250 @@
+package optimize
+
+import (
+	"context"
+	"math"
+
+	"rampwright/optimize/global"
+	"rampwright/optimize/local"
+	"rampwright/problems"
+)
+
+// searcher states a plan on a landscape as a program for the local optimizer:
+// aim to minimise in units of its scale, limits as scaled rows c <= 0. The worst
+// of several parts is raised through one more variable t with part >= t.
+type searcher struct {
+	plan      *plan
+	land      landscape
+	aimScale  float64
+	blind     bool      // the aim cannot be predicted: look for feasibility alone
+	inside    []float64 // extra back-off of each curved row, scaled
+	vector    []float64 // values by quantity index
+	rows      [][]float64
+	workspace local.Workspace
+}
+
+func newSearcher(p *plan, land landscape, aimScale float64) *searcher {
+	s := &searcher{
+		plan: p, land: land, aimScale: aimScale,
+		inside: make([]float64, len(p.curved)),
+		vector: make([]float64, len(p.quantities)),
+		rows:   make([][]float64, len(p.quantities)),
+	}
+	for _, list := range [][]int{p.fitted, p.exact} {
+		for _, i := range list {
+			s.rows[i] = make([]float64, p.dimension())
+		}
+	}
+	return s
+}
+
+// solution is the end of a local search.
+type solution struct {
+	u         []float64
+	values    []float64 // of the landscape, by quantity index
+	aim       float64
+	violation float64   // sum of scaled violations on the landscape
+	prices    []float64 // aim gained for each unit a row is loosened, by row
+	status    local.Status
+	kkt       float64
+}
+
+// worst reports whether the aim needs the extra variable.
+func (s *searcher) worst() bool {
+	return !s.blind && s.plan.objective.aim.Aggregate == problems.Worst
+}
+
+// polish searches from start inside the box given.
+func (s *searcher) polish(ctx context.Context, start, low, high []float64, settings local.Settings) (*solution, error) {
+	program, begin := s.program(start, low, high)
+	result, err := s.workspace.Minimize(ctx, &program, begin, settings)
+	if err != nil {
+		return nil, err
+	}
+	n := s.plan.dimension()
+	out := &solution{
+		u:      append([]float64(nil), result.X[:n]...),
+		values: make([]float64, len(s.vector)),
+		status: result.Status,
+		kkt:    result.KKT,
+		prices: s.prices(result),
+	}
+	s.values(out.u)
+	copy(out.values, s.vector)
+	out.aim = s.plan.objective.value(out.values)
+	out.violation = s.violation()
+	return out, nil
+}
+
+// explore runs the evolution search over the whole box and returns the distinct
+// good points of its last population, best first.
+func (s *searcher) explore(ctx context.Context, seeds [][]float64, seed uint64, generations int) ([][]float64, error) {
+	p := s.plan
+	result, err := global.Minimize(ctx, p.dimension(), func(u []float64) (f, violation float64) {
+		s.values(u)
+		violation = p.linearViolation(u) + s.violation()
+		if s.blind {
+			return 0, violation
+		}
+		return p.objective.sign() * p.objective.value(s.vector), violation
+	}, global.Settings{Seed: seed, Seeds: seeds, Generations: generations})
+	if err != nil {
+		return nil, err
+	}
+	starts := [][]float64{result.X}
+	for _, point := range result.Points {
+		if distance(point.X, result.X) > 1e-6 {
+			starts = append(starts, point.X)
+		}
+	}
+	return starts, nil
+}
+
+func (s *searcher) values(u []float64) { s.land.values(u, s.vector) }
+
+// program builds the local program; with an extra variable its start is the
+// worst part itself.
+func (s *searcher) program(start, low, high []float64) (local.Program, []float64) {
+	p := s.plan
+	n, m := p.dimension(), 0
+	for _, r := range p.curved {
+		m += len(p.rows[r].Bounds())
+	}
+	program := local.Program{
+		Low: low, High: high, AtMost: p.linear, Inequalities: m,
+		Value:    func(u, c []float64) float64 { return s.value(u, c) },
+		Gradient: func(u, grad, jac []float64) { s.gradient(u, grad, jac) },
+	}
+	if !s.worst() {
+		return program, start
+	}
+	program.Inequalities += len(p.objective.parts)
+	program.Low = append(append([]float64(nil), low...), math.Inf(-1))
+	program.High = append(append([]float64(nil), high...), math.Inf(1))
+	program.AtMost = widen(p.linear, n)
+	s.values(start)
+	t := p.objective.value(s.vector) / s.aimScale
+	if math.IsNaN(t) {
+		t = 0
+	}
+	return program, append(append([]float64(nil), start...), t)
+}
+
+// widen adds a zero column to linear rows.
+func widen(rows local.Rows, n int) local.Rows {
+	wide := local.Rows{B: rows.B}
+	for r := range rows.B {
+		wide.A = append(wide.A, rows.A[r*n:(r+1)*n]...)
+		wide.A = append(wide.A, 0)
+	}
+	return wide
+}
+
+// value is the program's function: the aim to minimise and the rows.
+func (s *searcher) value(u, c []float64) float64 {
+	p := s.plan
+	n := p.dimension()
+	s.values(u[:n])
+	k := 0
+	for q, r := range p.curved {
+		row := &p.rows[r]
+		v, inside := s.vector[row.Index], backoff+s.inside[q]
+		free := math.IsInf(v, 1) // the quantity does not apply
+		for _, bound := range row.Bounds() {
+			c[k] = bound.Sign*(v-bound.At)/row.Scale + inside
+			if free {
+				c[k] = -1
+			}
+			k++
+		}
+	}
+	sign := p.objective.sign()
+	switch {
+	case s.blind:
+		return 0
+	case !s.worst():
+		return sign * p.objective.value(s.vector) / s.aimScale
+	}
+	for i := range p.objective.parts {
+		c[k] = sign * (p.objective.parts[i].value(s.vector)/s.aimScale - u[n])
+		k++
+	}
+	return sign * u[n]
+}
+
+func (s *searcher) gradient(u, grad, jac []float64) {
+	p := s.plan
+	n, width := p.dimension(), len(grad)
+	s.values(u[:n])
+	s.land.jacobian(u[:n], s.rows)
+	k := 0
+	put := func(factor float64, row []float64) {
+		clear(jac[k*width : (k+1)*width])
+		addScaled(jac[k*width:k*width+n], factor, row)
+		k++
+	}
+	for _, r := range p.curved {
+		row := &p.rows[r]
+		for _, bound := range row.Bounds() {
+			if math.IsInf(s.vector[row.Index], 1) {
+				put(0, nil)
+				continue
+			}
+			put(bound.Sign/row.Scale, s.rows[row.Index])
+		}
+	}
+	sign := p.objective.sign()
+	clear(grad)
+	switch {
+	case s.blind:
+		return
+	case !s.worst():
+		p.objective.gradient(s.vector, s.rows, grad)
+		for j := range grad {
+			grad[j] *= sign / s.aimScale
+		}
+		return
+	}
+	for i := range p.objective.parts {
+		clear(jac[k*width : (k+1)*width])
+		p.objective.parts[i].addGradient(sign/s.aimScale, s.vector, s.rows, jac[k*width:k*width+n])
+		jac[k*width+n] = -sign
+		k++
+	}
+	grad[n] = sign
+}
+
+// violation sums the scaled violations of all rows at the latest values.
+func (s *searcher) violation() float64 {
+	sum := 0.0
+	for _, r := range s.plan.curved {
+		row := &s.plan.rows[r]
+		if v := s.vector[row.Index]; !math.IsInf(v, 1) {
+			sum += rowViolation(row.Margin(v), row.Scale)
+		}
+	}
+	return sum
+}
+
+// prices turns multipliers into the aim gained for each unit by which a row is
+// loosened.
+func (s *searcher) prices(result *local.Result) []float64 {
+	p := s.plan
+	prices := make([]float64, len(p.rows))
+	k := 0
+	for _, r := range p.curved {
+		row := &p.rows[r]
+		for range row.Bounds() {
+			prices[r] += result.Multipliers[k] * s.aimScale / row.Scale
+			k++
+		}
+	}
+	k = 0
+	for _, r := range p.straight {
+		for range p.rows[r].Bounds() {
+			prices[r] += result.RowsAtMost[k] * s.aimScale
+			k++
+		}
+	}
+	return prices
+}

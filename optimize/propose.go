@@ -1,0 +1,253 @@
+package optimize
+
+import (
+	"context"
+	"math"
+
+	"rampwright/surrogate/doe"
+)
+
+// proposal is a point the search wants evaluated, and what the surrogates say of
+// it beforehand.
+type proposal struct {
+	u         []float64
+	predicted []float64 // by quantity index, plain surrogates
+	aim       float64   // plain prediction
+	expected  float64   // merit by the model that proposed it
+	exploit   bool      // a step from the center, judged by the trust region
+	sample    *sample   // once evaluated
+}
+
+// propose returns the points to evaluate next: the best point of the surrogates
+// over the whole box while it moves, and a step of the corrected surrogates from
+// the center. None means that the search is done.
+func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
+	center := d.center()
+	if d.anchor == nil || d.anchor.sample != center {
+		d.anchor = newAnchor(center, d.fits, nil)
+	}
+	step, err := d.exploit(ctx, center)
+	if err != nil {
+		return nil, err
+	}
+	if d.settled(step) {
+		return d.challenge(ctx, center)
+	}
+	proposals := []*proposal{step}
+	if d.exploring() {
+		wide, err := d.search(ctx)
+		if err != nil {
+			return nil, err
+		}
+		if d.worthEvaluating(wide, step) {
+			proposals = append(proposals, wide)
+		} else if near := d.scout(center); near != nil {
+			proposals = append(proposals, near)
+		}
+	}
+	return proposals[:min(len(proposals), d.settings.Infill-d.counts.Infill)], nil
+}
+
+// exploring reports whether the box is still searched widely: in the first
+// rounds, until the surrogates predict what the search finds.
+func (d *designer) exploring() bool {
+	return len(d.history) < wideRounds || d.lastError() > d.settings.Agreement
+}
+
+const wideRounds = 3
+
+func (d *designer) lastError() float64 {
+	if len(d.history) == 0 {
+		return math.Inf(1)
+	}
+	return d.history[len(d.history)-1].Error
+}
+
+// exploit searches the corrected surrogates within the trust region.
+func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, error) {
+	land := d.plan.surrogates(d.fits, d.anchor)
+	s := newSearcher(d.plan, land, d.aimScale)
+	s.blind = d.blind()
+	d.stayInside(s)
+	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
+	for j, u := range center.u {
+		low[j], high[j] = math.Max(0, u-d.radius), math.Min(1, u+d.radius)
+	}
+	found, err := s.polish(ctx, center.u, low, high, localSettings)
+	if err != nil {
+		return nil, err
+	}
+	d.counts.Surrogate += land.calls
+	d.setPrices(found.prices)
+	p := d.proposal(found.u)
+	p.exploit = true
+	p.expected = d.expectedMerit(found)
+	return p, nil
+}
+
+// setPrices keeps the prices and makes the merit's weight exact: above every
+// scaled multiplier (Nocedal & Wright thm. 17.3).
+func (d *designer) setPrices(prices []float64) {
+	d.prices = prices
+	for r, price := range prices {
+		d.weight = math.Max(d.weight, 2*price*d.plan.rows[r].Scale/d.aimScale)
+	}
+}
+
+// stayInside backs the active limits off by a tenth of the last prediction error
+// there, so that the exact margins of the next step are not negative.
+func (d *designer) stayInside(s *searcher) {
+	if d.anchor == nil {
+		return
+	}
+	for q, r := range d.plan.curved {
+		row := &d.plan.rows[r]
+		if e := d.rowError(row.Index); e > 0 {
+			s.inside[q] = math.Min(mostInside, 0.1*e/row.Scale)
+		}
+	}
+}
+
+const mostInside = 1e-4
+
+// rowError is the error of the corrected prediction of a quantity at the latest
+// step, in its unit.
+func (d *designer) rowError(quantity int) float64 {
+	if d.stepErrors == nil {
+		return 0
+	}
+	return d.stepErrors[quantity]
+}
+
+func (d *designer) expectedMerit(found *solution) float64 {
+	return d.plan.objective.sign()*found.aim/d.aimScale + d.weight*found.violation
+}
+
+func (d *designer) blind() bool {
+	for _, i := range d.plan.objective.reads {
+		for k := range d.fits {
+			if d.fits[k].Quantity == i && !d.fits[k].usable() {
+				return true
+			}
+		}
+	}
+	return false
+}
+
+// proposal wraps a point with the plain predictions there.
+func (d *designer) proposal(u []float64) *proposal {
+	land := d.plan.surrogates(d.fits, nil)
+	values := make([]float64, len(d.plan.quantities))
+	for i := range values {
+		values[i] = math.NaN()
+	}
+	land.values(u, values)
+	d.counts.Surrogate++
+	return &proposal{u: u, predicted: values, aim: d.plan.objective.value(values)}
+}
+
+// search looks over the whole box on the plain surrogates: evolution, then local
+// searches from its distinct points and from the best samples.
+func (d *designer) search(ctx context.Context) (*proposal, error) {
+	land := d.plan.surrogates(d.fits, nil)
+	center := d.center()
+	s := newSearcher(d.plan, land, d.aimScale)
+	s.blind = d.blind()
+	starts, err := s.explore(ctx, [][]float64{center.u}, uint64(d.settings.Seed)+uint64(len(d.samples)), wideGenerations)
+	if err != nil {
+		return nil, err
+	}
+	starts = append(starts, center.u)
+	low, high := d.plan.cube()
+	var best *solution
+	for _, start := range starts[:min(len(starts), wideStarts)] {
+		found, err := s.polish(ctx, start, low, high, localSettings)
+		if err != nil {
+			return nil, err
+		}
+		if !math.IsNaN(found.aim) && (best == nil || d.expectedMerit(found) < d.expectedMerit(best)) {
+			best = found
+		}
+	}
+	d.counts.Surrogate += land.calls
+	if best == nil {
+		return nil, nil
+	}
+	p := d.proposal(best.u)
+	p.expected = d.expectedMerit(best)
+	return p, nil
+}
+
+const (
+	wideGenerations = 60
+	wideStarts      = 6
+)
+
+// worthEvaluating reports whether a point found over the whole box promises more
+// than the step, and is not the same point.
+func (d *designer) worthEvaluating(wide, step *proposal) bool {
+	return wide != nil && distance(wide.u, step.u) > 10*apart && d.fresh(wide.u)
+}
+
+// fresh reports whether no sample stands at u already.
+func (d *designer) fresh(u []float64) bool {
+	for _, s := range d.samples {
+		if distance(s.u, u) < apart {
+			return false
+		}
+	}
+	return true
+}
+
+// scout is the point near the center that the surrogates know least: of a cloud
+// in the trust region, the one with the largest scaled deviation over aim and
+// limits that keeps the linear rows.
+func (d *designer) scout(center *sample) *proposal {
+	source := doe.Stream(d.settings.Seed, "scout")
+	for range d.counts.Infill {
+		source.Uint64()
+	}
+	var best []float64
+	most := 0.0
+	for _, unit := range doe.RandomLatinHypercube(scoutCloud, len(center.u), source) {
+		u := make([]float64, len(center.u))
+		for j := range u {
+			u[j] = math.Min(1, math.Max(0, center.u[j]+(2*unit[j]-1)*math.Min(d.radius, 0.1)))
+		}
+		if !d.plan.insideLinear(u) || !d.fresh(u) {
+			continue
+		}
+		if doubt := d.doubt(u); doubt > most {
+			best, most = u, doubt
+		}
+	}
+	if best == nil {
+		return nil
+	}
+	return d.proposal(best)
+}
+
+const scoutCloud = 64
+
+// doubt is the largest scaled deviation of the surrogates at u.
+func (d *designer) doubt(u []float64) float64 {
+	most := 0.0
+	for k := range d.fits {
+		if !d.fits[k].usable() {
+			continue
+		}
+		_, deviation := d.fits[k].Choice.Predict(u)
+		most = math.Max(most, deviation/d.unit(d.fits[k].Quantity))
+	}
+	return most
+}
+
+// unit is the scale of a quantity: of the tightest row on it, or the aim's.
+func (d *designer) unit(quantity int) float64 {
+	for _, r := range d.plan.curved {
+		if d.plan.rows[r].Index == quantity {
+			return d.plan.rows[r].Scale
+		}
+	}
+	return d.aimScale
+}

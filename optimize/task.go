@@ -1,0 +1,71 @@
+package optimize
+
+import (
+	"errors"
+	"fmt"
+
+	"rampwright/problems"
+)
+
+// Task is what to search: a problem, the limits on its quantities and the aim.
+type Task struct {
+	Problem problems.Problem
+	Limits  []problems.Limit
+	Aim     problems.Aim
+}
+
+// Settings steer a design. The zero value asks for the defaults.
+type Settings struct {
+	Samples   int     // exact evaluations before the first fit; default 15 a variable
+	Infill    int     // exact evaluations the search may add; default 10 a variable
+	Seed      int64   // of every random choice; default 1
+	Agreement float64 // largest error of the surrogates at the optimum, scaled; default 1e-3
+	Jobs      int     // evaluations and fits run side by side; default 1. No result depends on it
+}
+
+const (
+	defaultAgreement = 1e-3
+	samplesAVariable = 15
+	infillAVariable  = 10
+)
+
+// WithDefaults fills the zero fields for a problem of n variables.
+func (s Settings) WithDefaults(n int) Settings {
+	if s.Samples == 0 {
+		s.Samples = samplesAVariable * n
+	}
+	if s.Infill == 0 {
+		s.Infill = infillAVariable * n
+	}
+	if s.Seed == 0 {
+		s.Seed = 1
+	}
+	if s.Agreement == 0 {
+		s.Agreement = defaultAgreement
+	}
+	if s.Jobs == 0 {
+		s.Jobs = 1
+	}
+	return s
+}
+
+// Validate reports every setting out of range for a problem of n variables.
+func (s Settings) Validate(n int) error {
+	var wrong []error
+	if least := n + 2; s.Samples < least {
+		wrong = append(wrong, fmt.Errorf("samples %d: a fit in %d variables needs at least %d", s.Samples, n, least))
+	}
+	if s.Infill < 1 {
+		wrong = append(wrong, fmt.Errorf("infill %d: at least one evaluation must confirm the optimum", s.Infill))
+	}
+	if !(s.Agreement > 0 && s.Agreement < 1) {
+		wrong = append(wrong, fmt.Errorf("agreement %g is not within (0, 1)", s.Agreement))
+	}
+	if s.Jobs < 1 {
+		wrong = append(wrong, fmt.Errorf("jobs %d: at least one", s.Jobs))
+	}
+	return errors.Join(wrong...)
+}
+
+// ErrNothingToSearch is the answer to a problem without variables.
+var ErrNothingToSearch = errors.New("the problem has no searched variable")
