@@ -209,26 +209,27 @@ func (a *analysis) crossLipShock() {
 	}
 	a.lip = wave
 	if a.shape.err == nil && a.design.LipTurning > 0 {
-		a.miss = a.missShoulder()
+		a.miss = contour.Distance(a.shape.Shoulder, a.lipFoot()) / a.shape.height
 	}
 	if !(wave.Mach2 > 1) {
 		a.throatErr = errSonic
 	}
 }
 
-// missShoulder is the distance from the shoulder to the foot of the lip shock,
-// along ramp n or the throat wall, over capture height.
-func (a *analysis) missShoulder() float64 {
+// lipFoot is where the lip shock meets ramp n or, downstream of the shoulder, the
+// throat wall.
+func (a *analysis) lipFoot() contour.Point {
 	lipShock := contour.Line{Through: a.shape.Lip, Angle: a.flowAngle(a.design.Ramps) - a.lip.WaveAngle}
-	shoulder := contour.Line{Through: a.shape.Shoulder, Angle: a.flowAngle(a.design.Ramps)}
-	along, ok := shoulder.Reach(lipShock)
-	if !ok || along > 0 { // downstream of the shoulder the wall is the throat's
-		along, ok = a.shape.throatWall().Reach(lipShock)
+	ramp := contour.Line{Through: a.shape.Shoulder, Angle: a.flowAngle(a.design.Ramps)}
+	if along, ok := ramp.Reach(lipShock); ok && along <= 0 {
+		foot, _ := contour.Meet(ramp, lipShock)
+		return foot
 	}
+	foot, ok := contour.Meet(a.shape.throatWall(), lipShock)
 	if !ok {
-		return math.Inf(1)
+		return contour.Point{X: math.Inf(1), Y: math.Inf(1)}
 	}
-	return math.Abs(along) / a.shape.height
+	return foot
 }
 
 // enterThroat ends the compression behind the lip shock, or behind a terminal
