@@ -34,26 +34,29 @@ type designer struct {
 	settings Settings
 	observe  Observer
 
-	samples    []*sample // every exact evaluation, in order
-	training   []*sample // those the surrogates are fitted to
-	fits       []Fit
-	stale      int // training samples the fits have not seen
+	samples  []*sample // every exact evaluation, in order
+	training []*sample // those far enough apart to fit
+	wide     *surfaces // over the whole box
+	near     *surfaces // around the center
+	anchor   *anchor   // of the near surfaces, at the center
+
 	aimScale   float64
-	weight     float64 // of the violation in the merit
-	anchor     *anchor
-	radius     float64
+	weight     float64   // of the violation in the merit
+	radius     float64   // of the trust region
+	misled     bool      // the last step gained much less than expected
 	prices     []float64 // by row, at the last local solution
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
 
-	proposals map[*sample]*proposal
-	counts    Counts
-	history   []Step
-	why       string
+	audited *audit
+	refined int // rounds of refinement
+	counts  Counts
+	history []Step
+	why     string
 }
 
 const (
 	startRadius = 0.25
-	leastRadius = 1e-5
+	leastRadius = 1e-4
 	// apart is the least distance, in the unit cube, between training samples:
 	// closer ones add no information and spoil the conditioning of a process.
 	apart = 2e-3
@@ -99,10 +102,10 @@ func (d *designer) sample(ctx context.Context) error {
 			return err
 		}
 		d.samples = append(d.samples, samples...)
+		d.training = append(d.training, samples...)
 		d.counts.Samples += len(samples)
 		d.tell("samples")
 	}
-	d.training = append(d.training, d.samples...)
 	d.scale()
 	return nil
 }
@@ -118,28 +121,22 @@ func (d *designer) scale() {
 	if high > low {
 		d.aimScale = high - low
 	}
-	d.weight = 10
+	d.weight = leastWeight
 }
 
-// refitEvery is how many new training samples call for a new choice of kinds.
-const refitEvery = 10
+// leastWeight is the weight of the scaled violation in the merit before prices
+// are known.
+const leastWeight = 10
 
-// fit brings the surrogates up to the training samples.
+// fit brings the surrogates up to the samples: those around the center always,
+// those over the whole box while it is searched.
 func (d *designer) fit(ctx context.Context) error {
-	if d.fits != nil && d.stale == 0 {
-		return nil
+	if d.exploring() {
+		if err := d.fitWide(ctx); err != nil {
+			return err
+		}
 	}
-	earlier := d.fits
-	if len(d.training)%refitEvery == 0 {
-		earlier = nil
-	}
-	fits, err := d.plan.fitAll(ctx, d.settings.Jobs, d.settings.Seed, d.training, earlier)
-	if err != nil {
-		return err
-	}
-	d.fits, d.stale = fits, 0
-	d.anchor = nil
-	return nil
+	return d.fitNear(ctx, d.center(), nil)
 }
 
 // center is the sample of best merit.
@@ -187,12 +184,8 @@ func (d *designer) evaluate(ctx context.Context, proposals []*proposal) error {
 	if err != nil {
 		return err
 	}
-	if d.proposals == nil {
-		d.proposals = map[*sample]*proposal{}
-	}
 	for i, s := range samples {
 		proposals[i].sample = s
-		d.proposals[s] = proposals[i]
 	}
 	d.samples = append(d.samples, samples...)
 	d.counts.Infill += len(samples)
@@ -226,16 +219,26 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 	if len(d.samples) == 0 {
 		return nil, errors.Join(errNothingEvaluated, ctx.Err())
 	}
-	r := &Result{Rows: d.plan.rows, Fits: d.fits, History: d.history, Why: d.why}
+	r := &Result{Rows: d.plan.rows, History: d.history, Why: d.why}
 	finalists := d.finalists()
 	for _, s := range finalists {
-		candidate, err := d.candidate(s)
+		candidate, err := d.candidate(ctx, s)
 		if err != nil {
 			return nil, err
 		}
 		r.Candidates = append(r.Candidates, candidate)
 	}
 	r.Best = r.Candidates[0]
+	if err := d.fitWide(context.WithoutCancel(ctx)); err == nil {
+		r.Fits = d.wide.fits
+	}
+	for i, s := range d.samples {
+		purpose := "sample"
+		if i >= d.counts.Samples {
+			purpose = "infill"
+		}
+		r.Samples = append(r.Samples, Sample{purpose, s.x, s.evaluation})
+	}
 	r.Counts = d.counts
 	r.Status = d.status(ctx, &r.Best)
 	return r, nil
@@ -292,6 +295,10 @@ func (d *designer) finalists() []*sample {
 	return list
 }
 
-// localSettings are tight: a solution's last digits decide whether its exact
-// margins are negative.
-var localSettings = local.Settings{Tolerance: 1e-8, Iterations: 100}
+// Local searches are tight: a solution's last digits decide whether its exact
+// margins are negative. Sums of a surrogate cancel, so its values are rougher
+// than those of the model.
+var (
+	surrogateSearch = local.Settings{Tolerance: 1e-8, Iterations: 100, Rounding: 5e-11}
+	exactPolish     = local.Settings{Tolerance: 1e-8, Iterations: 100}
+)

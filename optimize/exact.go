@@ -44,7 +44,7 @@ func SearchExact(ctx context.Context, task Task, settings Settings) (*ExactSearc
 	low, high := plan.cube()
 	inSlots(settings.Jobs, len(starts), func(i int) {
 		own := newExactLandscape(ctx, plan)
-		found[i], failures[i] = newSearcher(plan, own, 1).polish(ctx, starts[i], low, high, localSettings)
+		found[i], failures[i] = newSearcher(plan, own, 1).polish(ctx, starts[i], low, high, exactPolish)
 		counts[i] = own.evaluations
 		if failures[i] == nil {
 			failures[i] = own.err

@@ -22,18 +22,23 @@ type Fit struct {
 	never bool
 }
 
-// candidates are the kinds that compete for every quantity.
-func candidates(seed int64) []surrogate.Model {
-	return []surrogate.Model{
-		pce.OLS{},
-		pce.Ridge{},
-		gpr.Config{Seed: seed},
-	}
+// wideKinds compete for every quantity over the whole box.
+func wideKinds(seed int64) []surrogate.Model {
+	return []surrogate.Model{pce.OLS{}, pce.Ridge{}, gpr.Config{Seed: seed}}
 }
+
+// nearKinds compete around an optimum, where a kind must follow the samples it is
+// given closely.
+func nearKinds(seed int64) []surrogate.Model {
+	return []surrogate.Model{gpr.Config{Seed: seed}, gpr.Config{Kernel: gpr.Matern52, Seed: seed}}
+}
+
+// transforms of the outputs that compete.
+var transforms = []crossval.Transform{crossval.Identity, crossval.Log}
 
 // fitAll chooses a surrogate for every fitted quantity. Earlier fits, where
 // given, are refitted warm instead of chosen again.
-func (p *plan) fitAll(ctx context.Context, jobs int, seed int64, samples []*sample, earlier []Fit) ([]Fit, error) {
+func (p *plan) fitAll(ctx context.Context, jobs int, kinds []surrogate.Model, samples []*sample, earlier []Fit) ([]Fit, error) {
 	fits := make([]Fit, len(p.fitted))
 	failures := make([]error, len(p.fitted))
 	inSlots(jobs, len(p.fitted), func(k int) {
@@ -41,7 +46,7 @@ func (p *plan) fitAll(ctx context.Context, jobs int, seed int64, samples []*samp
 		if earlier != nil && earlier[k].Err == nil && !earlier[k].never {
 			before = &earlier[k]
 		}
-		fits[k] = fitOne(ctx, p.fitted[k], seed, samples, before)
+		fits[k] = fitOne(ctx, p.fitted[k], kinds, samples, before)
 		failures[k] = ctx.Err()
 	})
 	for _, err := range failures {
@@ -52,7 +57,7 @@ func (p *plan) fitAll(ctx context.Context, jobs int, seed int64, samples []*samp
 	return fits, nil
 }
 
-func fitOne(ctx context.Context, quantity int, seed int64, samples []*sample, before *Fit) Fit {
+func fitOne(ctx context.Context, quantity int, kinds []surrogate.Model, samples []*sample, before *Fit) Fit {
 	fit := Fit{Quantity: quantity}
 	var x [][]float64
 	var y []float64
@@ -75,7 +80,7 @@ func fitOne(ctx context.Context, quantity int, seed int64, samples []*sample, be
 			return fit
 		}
 	}
-	fit.Choice, fit.Err = crossval.Choose(ctx, candidates(seed), x, y)
+	fit.Choice, fit.Err = crossval.Settings{Candidates: kinds, Transforms: transforms}.Choose(ctx, x, y)
 	return fit
 }
 

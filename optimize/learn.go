@@ -8,17 +8,17 @@ import (
 // learn judges the step against what was expected, moves the trust region, and
 // takes the new samples into the training set or the correction.
 func (d *designer) learn(proposals []*proposal) {
-	before := d.anchor
+	before, fitted := d.anchor, len(d.training)
+	d.misled = false
 	for _, p := range proposals {
 		if p.exploit {
-			d.judgeStep(p, before)
+			d.judgeStep(p)
 		}
-		if d.freshTraining(p.sample.u) {
+		if d.apartFromTraining(p.sample.u) {
 			d.training = append(d.training, p.sample)
-			d.stale++
 		}
 	}
-	if d.stale == 0 && before != nil {
+	if len(d.training) == fitted {
 		d.correct(proposals, before)
 	}
 	d.note(proposals)
@@ -27,32 +27,33 @@ func (d *designer) learn(proposals []*proposal) {
 
 // judgeStep compares the gain of a step with the gain expected (trust-region
 // ratio, Nocedal & Wright alg. 4.1).
-func (d *designer) judgeStep(p *proposal, at *anchor) {
+func (d *designer) judgeStep(p *proposal) {
 	d.stepErrors = make([]float64, len(d.plan.quantities))
-	for k := range d.fits {
-		q := d.fits[k].Quantity
-		exact := p.sample.values[q]
-		if d.fits[k].usable() && !math.IsNaN(exact) && !math.IsInf(exact, 0) {
-			d.stepErrors[q] = math.Abs(exact - d.fits[k].Choice.Mean(p.u) - at.at(k, p.u))
+	for k := range d.near.fits {
+		fit := &d.near.fits[k]
+		exact := p.sample.values[fit.Quantity]
+		if fit.usable() && !math.IsNaN(exact) && !math.IsInf(exact, 0) {
+			d.stepErrors[fit.Quantity] = math.Abs(exact - fit.Choice.Mean(p.u) - d.anchor.at(k, p.u))
 		}
 	}
-	expected := d.merit(at.sample) - p.expected
-	gained := d.merit(at.sample) - d.merit(p.sample)
+	expected := d.merit(d.anchor.sample) - p.expected
+	gained := d.merit(d.anchor.sample) - d.merit(p.sample)
 	length := 0.0
 	for j := range p.u {
-		length = math.Max(length, math.Abs(p.u[j]-at.sample.u[j]))
+		length = math.Max(length, math.Abs(p.u[j]-d.anchor.sample.u[j]))
 	}
 	switch ratio := gained / expected; {
 	case !(expected > 0):
 	case ratio < 0.25:
-		d.radius = math.Max(leastRadius, 0.5*math.Min(d.radius, length))
+		d.radius = math.Max(leastRadius, 0.5*d.radius)
+		d.misled = true
 	case ratio > 0.75 && length > 0.9*d.radius:
 		d.radius = math.Min(1, 2*d.radius)
 	}
 }
 
-// freshTraining reports whether u is far enough from every training sample.
-func (d *designer) freshTraining(u []float64) bool {
+// apartFromTraining reports whether u is far enough from every training sample.
+func (d *designer) apartFromTraining(u []float64) bool {
 	for _, s := range d.training {
 		if distance(s.u, u) < apart {
 			return false
@@ -65,63 +66,83 @@ func (d *designer) freshTraining(u []float64) bool {
 // slopes, without a new fit.
 func (d *designer) correct(proposals []*proposal, before *anchor) {
 	for _, p := range proposals {
-		before.learn(p.sample, d.fits)
+		before.learn(p.sample, d.near.fits)
 	}
 	if center := d.center(); center != before.sample {
-		d.anchor = newAnchor(center, d.fits, before.tilt)
+		d.anchor = newAnchor(center, d.near.fits, before.tilt)
 	}
 }
 
 // note appends a line to the history.
 func (d *designer) note(proposals []*proposal) {
-	step := Step{Evaluations: len(d.samples), Aim: math.NaN(), Violation: d.leastViolation(), Radius: d.radius}
+	step := Step{Evaluations: len(d.samples), Aim: math.NaN(), Violation: d.leastViolation(), Radius: d.radius, Error: math.NaN()}
 	if best := d.best(); best != nil {
 		step.Aim = best.aim
 	}
 	for _, p := range proposals {
 		if p.exploit {
-			step.Error = d.surrogateError(p)
+			step.Error = d.surrogateError(p.sample, p.predicted)
 		}
 	}
 	d.history = append(d.history, step)
 }
 
-// surrogateError is the largest scaled error of the plain predictions of a
-// proposal over aim and limits.
-func (d *designer) surrogateError(p *proposal) float64 {
+// surrogateError is the largest scaled difference of predictions from the exact
+// values of a sample, over aim and limits.
+func (d *designer) surrogateError(s *sample, predicted []float64) float64 {
 	worst := 0.0
-	for k := range d.fits {
-		q := d.fits[k].Quantity
-		exact, predicted := p.sample.values[q], p.predicted[q]
-		if math.IsInf(exact, 1) && math.IsInf(predicted, 1) {
-			continue
+	for _, q := range d.plan.fitted {
+		exact, guess := s.values[q], predicted[q]
+		if math.IsInf(exact, 1) && math.IsInf(guess, 1) {
+			continue // does not apply, and was never fitted
 		}
-		if math.IsNaN(exact) || math.IsInf(predicted, 1) {
+		if math.IsNaN(exact) || math.IsInf(guess, 1) {
 			return math.Inf(1)
 		}
-		worst = math.Max(worst, math.Abs(predicted-exact)/d.unit(q))
+		worst = math.Max(worst, math.Abs(guess-exact)/d.unit(q))
 	}
 	return worst
 }
 
-// settled reports whether the step changes nothing: it stands at the center, or
-// promises less than the tolerance, and the center is feasible and was predicted
-// within the agreement.
-func (d *designer) settled(step *proposal) bool {
-	best := d.best()
-	if best == nil || d.center() != best || d.lastError() > d.settings.Agreement {
-		return false
+// audit is what surrogates fitted to every other sample say of one sample.
+type audit struct {
+	sample    *sample
+	near      *surfaces
+	predicted []float64 // by quantity index
+	aim       float64
+	err       float64 // see surrogateError
+}
+
+// audit predicts a sample by near surfaces that have not seen it, and leaves
+// them in place: the evidence of a result is the surrogates it was checked with.
+func (d *designer) audit(ctx context.Context, s *sample) error {
+	if d.audited != nil && d.audited.sample == s && d.audited.near == d.near {
+		return nil
 	}
-	return d.merit(best)-step.expected < settledGain
+	if err := d.fitNear(ctx, s, s); err != nil {
+		return err
+	}
+	p := d.proposal(s.u, d.near)
+	d.audited = &audit{sample: s, near: d.near, predicted: p.predicted, aim: p.aim, err: d.surrogateError(s, p.predicted)}
+	return nil
+}
+
+// atRest reports whether the step from a feasible center promises nothing.
+func (d *designer) atRest(step *proposal) bool {
+	best := d.best()
+	return best != nil && d.center() == best && d.merit(best)-step.expected < settledGain
 }
 
 // settledGain is the scaled gain of a step below which it is not worth an exact
 // evaluation.
-const settledGain = 1e-7
+const settledGain = 1e-10
 
 // challenge looks once more over the whole box: a better point elsewhere is
 // evaluated, none ends the search.
 func (d *designer) challenge(ctx context.Context, center *sample) ([]*proposal, error) {
+	if err := d.fitWide(ctx); err != nil {
+		return nil, err
+	}
 	wide, err := d.search(ctx)
 	if err != nil {
 		return nil, err

@@ -2,6 +2,7 @@ package optimize
 
 import (
 	"context"
+	"fmt"
 	"math"
 
 	"rampwright/surrogate/doe"
@@ -18,20 +19,24 @@ type proposal struct {
 	sample    *sample   // once evaluated
 }
 
-// propose returns the points to evaluate next: the best point of the surrogates
-// over the whole box while it moves, and a step of the corrected surrogates from
-// the center. None means that the search is done.
+// propose returns the points to evaluate next: a step of the corrected surrogates
+// from the center, with the best point of the surrogates over the whole box
+// while that is searched, or a point near the center they know least where they
+// misled. None means that the search is done.
 func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
-	center := d.center()
-	if d.anchor == nil || d.anchor.sample != center {
-		d.anchor = newAnchor(center, d.fits, nil)
-	}
+	center := d.anchor.sample
 	step, err := d.exploit(ctx, center)
 	if err != nil {
 		return nil, err
 	}
-	if d.settled(step) {
-		return d.challenge(ctx, center)
+	if d.atRest(step) {
+		if err := d.audit(ctx, center); err != nil {
+			return nil, err
+		}
+		if d.audited.err <= d.settings.Agreement {
+			return d.challenge(ctx, center)
+		}
+		return d.refine(center), nil
 	}
 	proposals := []*proposal{step}
 	if d.exploring() {
@@ -40,46 +45,53 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 			return nil, err
 		}
 		if d.worthEvaluating(wide, step) {
-			proposals = append(proposals, wide)
-		} else if near := d.scout(center); near != nil {
-			proposals = append(proposals, near)
+			return d.affordable(append(proposals, wide)), nil
 		}
 	}
-	return proposals[:min(len(proposals), d.settings.Infill-d.counts.Infill)], nil
+	// Where the region is smaller than the scouts' distance, slopes are learned
+	// from the steps alone.
+	if d.exploring() || d.misled && d.radius > leastScout {
+		proposals = append(proposals, d.scouts(center, 1, math.Min(d.radius, scoutRadius))...)
+	}
+	return d.affordable(proposals), nil
 }
 
 // exploring reports whether the box is still searched widely: in the first
-// rounds, until the surrogates predict what the search finds.
-func (d *designer) exploring() bool {
-	return len(d.history) < wideRounds || d.lastError() > d.settings.Agreement
-}
+// rounds.
+func (d *designer) exploring() bool { return len(d.history) < wideRounds }
 
 const wideRounds = 3
 
-func (d *designer) lastError() float64 {
-	if len(d.history) == 0 {
-		return math.Inf(1)
-	}
-	return d.history[len(d.history)-1].Error
+// refine spends a pair of evaluations near the optimum, ever closer, where the
+// surrogates know least: they still miss it by more than the agreement.
+func (d *designer) refine(center *sample) []*proposal {
+	d.refined++
+	radius := math.Max(leastScout, scoutRadius*math.Pow(0.8, float64(d.refined)))
+	return d.affordable(d.scouts(center, 2, radius))
+}
+
+// affordable cuts proposals to the infill left.
+func (d *designer) affordable(proposals []*proposal) []*proposal {
+	return proposals[:min(len(proposals), d.settings.Infill-d.counts.Infill)]
 }
 
 // exploit searches the corrected surrogates within the trust region.
 func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, error) {
-	land := d.plan.surrogates(d.fits, d.anchor)
+	land := d.plan.surrogates(d.near.fits, d.anchor)
 	s := newSearcher(d.plan, land, d.aimScale)
-	s.blind = d.blind()
+	s.blind = d.blind(d.near)
 	d.stayInside(s)
 	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
 	for j, u := range center.u {
 		low[j], high[j] = math.Max(0, u-d.radius), math.Min(1, u+d.radius)
 	}
-	found, err := s.polish(ctx, center.u, low, high, localSettings)
+	found, err := s.polish(ctx, center.u, low, high, surrogateSearch)
 	if err != nil {
 		return nil, err
 	}
 	d.counts.Surrogate += land.calls
 	d.setPrices(found.prices)
-	p := d.proposal(found.u)
+	p := d.proposal(found.u, d.near)
 	p.exploit = true
 	p.expected = d.expectedMerit(found)
 	return p, nil
@@ -97,9 +109,6 @@ func (d *designer) setPrices(prices []float64) {
 // stayInside backs the active limits off by a tenth of the last prediction error
 // there, so that the exact margins of the next step are not negative.
 func (d *designer) stayInside(s *searcher) {
-	if d.anchor == nil {
-		return
-	}
 	for q, r := range d.plan.curved {
 		row := &d.plan.rows[r]
 		if e := d.rowError(row.Index); e > 0 {
@@ -123,10 +132,11 @@ func (d *designer) expectedMerit(found *solution) float64 {
 	return d.plan.objective.sign()*found.aim/d.aimScale + d.weight*found.violation
 }
 
-func (d *designer) blind() bool {
+// blind reports whether the surfaces cannot predict the aim.
+func (d *designer) blind(on *surfaces) bool {
 	for _, i := range d.plan.objective.reads {
-		for k := range d.fits {
-			if d.fits[k].Quantity == i && !d.fits[k].usable() {
+		for k := range on.fits {
+			if on.fits[k].Quantity == i && !on.fits[k].usable() {
 				return true
 			}
 		}
@@ -134,9 +144,9 @@ func (d *designer) blind() bool {
 	return false
 }
 
-// proposal wraps a point with the plain predictions there.
-func (d *designer) proposal(u []float64) *proposal {
-	land := d.plan.surrogates(d.fits, nil)
+// proposal wraps a point with the plain predictions of surfaces there.
+func (d *designer) proposal(u []float64, on *surfaces) *proposal {
+	land := d.plan.surrogates(on.fits, nil)
 	values := make([]float64, len(d.plan.quantities))
 	for i := range values {
 		values[i] = math.NaN()
@@ -149,10 +159,10 @@ func (d *designer) proposal(u []float64) *proposal {
 // search looks over the whole box on the plain surrogates: evolution, then local
 // searches from its distinct points and from the best samples.
 func (d *designer) search(ctx context.Context) (*proposal, error) {
-	land := d.plan.surrogates(d.fits, nil)
+	land := d.plan.surrogates(d.wide.fits, nil)
 	center := d.center()
 	s := newSearcher(d.plan, land, d.aimScale)
-	s.blind = d.blind()
+	s.blind = d.blind(d.wide)
 	starts, err := s.explore(ctx, [][]float64{center.u}, uint64(d.settings.Seed)+uint64(len(d.samples)), wideGenerations)
 	if err != nil {
 		return nil, err
@@ -161,7 +171,7 @@ func (d *designer) search(ctx context.Context) (*proposal, error) {
 	low, high := d.plan.cube()
 	var best *solution
 	for _, start := range starts[:min(len(starts), wideStarts)] {
-		found, err := s.polish(ctx, start, low, high, localSettings)
+		found, err := s.polish(ctx, start, low, high, surrogateSearch)
 		if err != nil {
 			return nil, err
 		}
@@ -173,7 +183,7 @@ func (d *designer) search(ctx context.Context) (*proposal, error) {
 	if best == nil {
 		return nil, nil
 	}
-	p := d.proposal(best.u)
+	p := d.proposal(best.u, d.wide)
 	p.expected = d.expectedMerit(best)
 	return p, nil
 }
@@ -199,45 +209,58 @@ func (d *designer) fresh(u []float64) bool {
 	return true
 }
 
-// scout is the point near the center that the surrogates know least: of a cloud
-// in the trust region, the one with the largest scaled deviation over aim and
-// limits that keeps the linear rows.
-func (d *designer) scout(center *sample) *proposal {
-	source := doe.Stream(d.settings.Seed, "scout")
-	for range d.counts.Infill {
-		source.Uint64()
-	}
-	var best []float64
-	most := 0.0
-	for _, unit := range doe.RandomLatinHypercube(scoutCloud, len(center.u), source) {
-		u := make([]float64, len(center.u))
+// scouts are up to n points near the center that the surrogates know least: of a
+// cloud within the radius, those with the largest scaled deviation over aim and
+// limits that keep the linear rows and stand apart.
+func (d *designer) scouts(center *sample, n int, radius float64) []*proposal {
+	source := doe.Stream(d.settings.Seed, fmt.Sprintf("scouts %d", d.counts.Infill))
+	cloud := doe.RandomLatinHypercube(scoutCloud, len(center.u), source)
+	doubts := make([]float64, len(cloud))
+	for i, u := range cloud {
 		for j := range u {
-			u[j] = math.Min(1, math.Max(0, center.u[j]+(2*unit[j]-1)*math.Min(d.radius, 0.1)))
+			u[j] = math.Min(1, math.Max(0, center.u[j]+(2*u[j]-1)*radius))
 		}
-		if !d.plan.insideLinear(u) || !d.fresh(u) {
-			continue
-		}
-		if doubt := d.doubt(u); doubt > most {
-			best, most = u, doubt
+		if d.plan.insideLinear(u) && d.fresh(u) {
+			doubts[i] = d.doubt(u)
 		}
 	}
-	if best == nil {
-		return nil
+	var chosen []*proposal
+	for len(chosen) < n {
+		best := -1
+		for i, doubt := range doubts {
+			if doubt > 0 && (best < 0 || doubt > doubts[best]) {
+				best = i
+			}
+		}
+		if best < 0 {
+			break
+		}
+		chosen = append(chosen, d.proposal(cloud[best], d.near))
+		for i, u := range cloud {
+			if distance(u, cloud[best]) < radius/2 {
+				doubts[i] = 0
+			}
+		}
 	}
-	return d.proposal(best)
+	return chosen
 }
 
-const scoutCloud = 64
+const (
+	scoutCloud  = 64
+	leastScout  = 4 * apart
+	scoutRadius = 0.1
+)
 
 // doubt is the largest scaled deviation of the surrogates at u.
 func (d *designer) doubt(u []float64) float64 {
 	most := 0.0
-	for k := range d.fits {
-		if !d.fits[k].usable() {
+	for k := range d.near.fits {
+		fit := &d.near.fits[k]
+		if !fit.usable() {
 			continue
 		}
-		_, deviation := d.fits[k].Choice.Predict(u)
-		most = math.Max(most, deviation/d.unit(d.fits[k].Quantity))
+		_, deviation := fit.Choice.Predict(u)
+		most = math.Max(most, deviation/d.unit(fit.Quantity))
 	}
 	return most
 }

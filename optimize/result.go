@@ -64,6 +64,13 @@ type Candidate struct {
 	Assessment     constraints.Assessment
 }
 
+// Sample is one exact evaluation and what it was for.
+type Sample struct {
+	Purpose    string // "sample" or "infill"
+	X          []float64
+	Evaluation *problems.Evaluation
+}
+
 // Counts are the evaluations spent, by purpose.
 type Counts struct {
 	Samples   int
@@ -90,6 +97,7 @@ type Result struct {
 	Counts     Counts
 	History    []Step
 	Rows       []constraints.Row
+	Samples    []Sample // every exact evaluation, in order
 	// Why is one sentence on the way the search ended.
 	Why string
 }

@@ -13,25 +13,23 @@ import (
 const RouteAgreement = 1e-10
 
 // candidate closes the evidence on a sample: the second route, margins, prices.
-func (d *designer) candidate(s *sample) (Candidate, error) {
+func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) {
 	c := Candidate{
 		X: s.x, Exact: s.evaluation, RouteGap: math.NaN(),
 		AimExact: s.aim, AimPredicted: math.NaN(), SurrogateError: math.Inf(1),
 		Assessment: constraints.Assess(d.plan.rows, s.evaluation),
 	}
-	for r := range c.Assessment.Checks {
-		if check := &c.Assessment.Checks[r]; check.Active && d.prices != nil {
-			check.Price = d.prices[r]
-		}
+	if err := d.audit(context.WithoutCancel(ctx), s); err != nil {
+		return c, err
 	}
-	if p := d.proposals[s]; p != nil {
-		c.Predicted, c.AimPredicted = p.predicted, p.aim
-		c.SurrogateError = d.surrogateError(p)
+	c.Predicted, c.AimPredicted, c.SurrogateError = d.audited.predicted, d.audited.aim, d.audited.err
+	if err := d.pricesAt(context.WithoutCancel(ctx), s, c.Assessment.Checks); err != nil {
+		return c, err
 	}
 	if verifier, ok := d.plan.problem.(problems.Verifier); ok {
 		// The evidence is due even when the time is up.
 		c.Second = problems.NewEvaluation(len(d.plan.quantities))
-		if err := verifier.Verify(context.Background(), s.x, c.Second); err != nil {
+		if err := verifier.Verify(context.WithoutCancel(ctx), s.x, c.Second); err != nil {
 			return c, err
 		}
 		d.counts.Verify++
