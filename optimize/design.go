@@ -47,11 +47,12 @@ type designer struct {
 	prices     []float64 // by row, at the last local solution
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
 
-	audited *audit
-	refined int // rounds of refinement
-	counts  Counts
-	history []Step
-	why     string
+	audited   *audit
+	confirmed *sample // a center at rest whose slopes were probed once more
+	refined   int     // rounds of refinement
+	counts    Counts
+	history   []Step
+	why       string
 }
 
 const (

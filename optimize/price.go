@@ -1,11 +1,12 @@
 package optimize
 
 import (
-	"context"
 	"math"
 
+	"gonum.org/v1/gonum/floats"
+	"gonum.org/v1/gonum/mat"
+
 	"rampwright/constraints"
-	"rampwright/optimize/local"
 )
 
 // pricesAt stores in every active check at a sample the gain of the aim for each
@@ -17,11 +18,11 @@ import (
 //
 // (first-order conditions, Nocedal & Wright thm. 12.1), with the slopes of the
 // near surfaces.
-func (d *designer) pricesAt(ctx context.Context, s *sample, checks []constraints.Check) error {
+func (d *designer) pricesAt(s *sample, checks []constraints.Check) {
 	land := d.plan.surrogates(d.near.fits, d.anchor)
 	search := newSearcher(d.plan, land, 1)
 	if search.blind = d.blind(d.near); search.blind || search.worst() {
-		return nil
+		return
 	}
 	n := d.plan.dimension()
 	slope := make([]float64, n)
@@ -59,16 +60,12 @@ func (d *designer) pricesAt(ctx context.Context, s *sample, checks []constraints
 		}
 		columns, owners = append(columns, face), append(owners, -1)
 	}
-	multipliers, err := balance(ctx, slope, columns)
-	if err != nil {
-		return err
-	}
+	multipliers := balance(slope, columns)
 	for k, r := range owners {
 		if r >= 0 {
 			checks[r].Price = multipliers[k] / checks[r].Scale
 		}
 	}
-	return nil
 }
 
 // rowSlope is the gradient of a row's quantity in the unit cube, nil where none
@@ -91,36 +88,106 @@ func scaled(v []float64, factor float64) []float64 {
 	return out
 }
 
-// balance solves the non-negative least squares problem of pricesAt.
-func balance(ctx context.Context, slope []float64, columns [][]float64) ([]float64, error) {
+// balance solves the non-negative least squares problem of pricesAt by the active
+// set method of Lawson & Hanson (Solving Least Squares Problems, 1974, ch. 23).
+// Columns that depend on those already in are left out.
+func balance(slope []float64, columns [][]float64) []float64 {
 	m := len(columns)
-	if m == 0 {
-		return nil, nil
-	}
-	low, high := make([]float64, m), make([]float64, m)
-	for k := range high {
-		high[k] = math.Inf(1)
-	}
-	residual := make([]float64, len(slope))
-	result, err := local.MinimizeBox(ctx, low, high, func(x, grad []float64) float64 {
-		copy(residual, slope)
-		for k, column := range columns {
-			addScaled(residual, x[k], column)
+	x := make([]float64, m)
+	used, refused := make([]bool, m), make([]bool, m)
+	for range 3 * m {
+		k := steepest(slope, columns, x, used, refused)
+		if k < 0 {
+			break
 		}
-		sum := 0.0
-		for _, v := range residual {
-			sum += v * v
+		used[k] = true
+		if !settle(slope, columns, x, used) {
+			used[k], refused[k] = false, true
 		}
-		for k, column := range columns {
-			grad[k] = 0
-			for j, v := range column {
-				grad[k] += 2 * v * residual[j]
+	}
+	return x
+}
+
+// steepest returns the unused column whose multiplier would lower the residual
+// fastest, or -1 at the optimum.
+func steepest(slope []float64, columns [][]float64, x []float64, used, refused []bool) int {
+	residual := append([]float64(nil), slope...)
+	for k, column := range columns {
+		addScaled(residual, x[k], column)
+	}
+	best, most := -1, 1e-9*norm(slope)
+	for k, column := range columns {
+		if used[k] || refused[k] {
+			continue
+		}
+		if gain := -floats.Dot(column, residual) / norm(column); gain > most {
+			best, most = k, gain
+		}
+	}
+	return best
+}
+
+// settle solves on the used columns, giving up those whose multiplier turns
+// negative; false where the columns depend on each other.
+func settle(slope []float64, columns [][]float64, x []float64, used []bool) bool {
+	for {
+		var list []int
+		for k, in := range used {
+			if in {
+				list = append(list, k)
 			}
 		}
-		return sum
-	}, make([]float64, m), local.Settings{Tolerance: 1e-12})
-	if err != nil {
-		return nil, err
+		solution, ok := leastSquares(slope, columns, list)
+		if !ok {
+			return false
+		}
+		// Walk from x toward the solution until the first multiplier vanishes.
+		reach := 1.0
+		for i, k := range list {
+			if solution[i] <= 0 {
+				reach = math.Min(reach, x[k]/(x[k]-solution[i]))
+			}
+		}
+		for i, k := range list {
+			x[k] += reach * (solution[i] - x[k])
+			if solution[i] <= 0 && x[k] <= 1e-15 {
+				x[k], used[k] = 0, false
+			}
+		}
+		if reach == 1 {
+			return true
+		}
 	}
-	return result.X, nil
+}
+
+// leastSquares minimises |slope + sum x_k column_k| over the listed columns.
+func leastSquares(slope []float64, columns [][]float64, list []int) (x []float64, ok bool) {
+	if len(list) > len(slope) {
+		return nil, false
+	}
+	matrix, right := mat.NewDense(len(slope), len(list), nil), mat.NewVecDense(len(slope), nil)
+	lengths := make([]float64, len(list))
+	for i, k := range list {
+		lengths[i] = norm(columns[k])
+		for j, v := range columns[k] {
+			matrix.Set(j, i, v/lengths[i])
+		}
+	}
+	for j, v := range slope {
+		right.SetVec(j, -v)
+	}
+	var qr mat.QR
+	qr.Factorize(matrix)
+	if qr.Cond() > 1e8 {
+		return nil, false
+	}
+	var solution mat.VecDense
+	if err := qr.SolveVecTo(&solution, false, right); err != nil {
+		return nil, false
+	}
+	x = make([]float64, len(list))
+	for i := range x {
+		x[i] = solution.AtVec(i) / lengths[i]
+	}
+	return x, true
 }

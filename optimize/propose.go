@@ -33,10 +33,16 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		if err := d.audit(ctx, center); err != nil {
 			return nil, err
 		}
-		if d.audited.err <= d.settings.Agreement {
-			return d.challenge(ctx, center)
+		switch {
+		case d.audited.err > d.settings.Agreement:
+			return d.refine(center), nil
+		case d.confirmed != center:
+			d.confirmed = center
+			if probes := d.scouts(center, 2, leastScout); len(probes) > 0 {
+				return d.affordable(probes), nil
+			}
 		}
-		return d.refine(center), nil
+		return d.challenge(ctx, center)
 	}
 	proposals := []*proposal{step}
 	if d.exploring() {

@@ -23,9 +23,7 @@ func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) 
 		return c, err
 	}
 	c.Predicted, c.AimPredicted, c.SurrogateError = d.audited.predicted, d.audited.aim, d.audited.err
-	if err := d.pricesAt(context.WithoutCancel(ctx), s, c.Assessment.Checks); err != nil {
-		return c, err
-	}
+	d.pricesAt(s, c.Assessment.Checks)
 	if verifier, ok := d.plan.problem.(problems.Verifier); ok {
 		// The evidence is due even when the time is up.
 		c.Second = problems.NewEvaluation(len(d.plan.quantities))

@@ -26,14 +26,14 @@ type room struct {
 }
 
 const (
-	gonum       = "gonum.org/v1/gonum"
-	plot        = "gonum.org/v1/plot"
-	svgo        = "github.com/ajstarks/svgo"
-	yaml        = "gopkg.in/yaml.v3"
-	expression  = "github.com/expr-lang/expr"
-	cobra       = "github.com/spf13/cobra"
-	progressBar = "github.com/schollz/progressbar/v3"
-	eaopt       = "github.com/MaxHalford/eaopt"
+	gonumPath       = "gonum.org/v1/gonum"
+	plotPath        = "gonum.org/v1/plot"
+	svgoPath        = "github.com/ajstarks/svgo"
+	yamlPath        = "gopkg.in/yaml.v3"
+	expressionPath  = "github.com/expr-lang/expr"
+	cobraPath       = "github.com/spf13/cobra"
+	progressBarPath = "github.com/schollz/progressbar/v3"
+	eaoptPath       = "github.com/MaxHalford/eaopt"
 )
 
 // rooms is the whole policy: a package that is not a key, or an import its line
@@ -49,7 +49,7 @@ var rooms = map[string]room{
 	"problems/wave":       library("problems/gas", "problems/shock", "problems/contour"),
 	"problems/inlet": library("problems", "problems/gas", "problems/contour", "problems/atmosphere",
 		"problems/shock", "problems/ramp", "problems/wave", "problems/viscous"),
-	"problems/external": {may: []string{"problems"}, third: []string{gonum}}, // runs the user's own program
+	"problems/external": {may: []string{"problems"}, third: []string{gonumPath}}, // runs the user's own program
 	"problems/analytic": library("problems"),
 
 	"surrogate":          library(),
@@ -62,26 +62,26 @@ var rooms = map[string]room{
 
 	"optimize":        with(search(), "optimize/global"), // the loops drive both searches
 	"optimize/local":  library(),
-	"optimize/global": search(eaopt),
+	"optimize/global": search(eaoptPath),
 	"optimize/front":  search(),
 	"optimize/robust": search(),
 
 	"cmd/rampwright": {
 		may:   []string{"problems", "problems/...", "surrogate", "surrogate/...", "constraints", "optimize", "optimize/...", "cmd/rampwright/..."},
-		third: []string{cobra, progressBar, "golang.org/x/term"},
+		third: []string{cobraPath, progressBarPath, "golang.org/x/term"},
 	},
 	"cmd/rampwright/internal/brief": {
 		may:   []string{"problems", "problems/...", "surrogate", "surrogate/...", "constraints", "optimize", "optimize/..."},
-		third: []string{yaml, expression},
+		third: []string{yamlPath, expressionPath},
 	},
-	"cmd/rampwright/internal/chart":    {third: []string{plot, svgo}},
+	"cmd/rampwright/internal/chart":    {third: []string{plotPath, svgoPath}},
 	"cmd/rampwright/internal/report":   results("cmd/rampwright/internal/chart"),
 	"cmd/rampwright/internal/handoff":  results(),
 	"cmd/rampwright/internal/runstore": results(),
 }
 
 func library(may ...string) room {
-	return room{may: may, third: []string{gonum}, bare: true}
+	return room{may: may, third: []string{gonumPath}, bare: true}
 }
 
 func search(third ...string) room {
@@ -227,7 +227,7 @@ func breaches(files []source) []string {
 			continue
 		}
 		for _, imported := range imports(file.tree) {
-			if imported == eaopt {
+			if imported == eaoptPath {
 				engines++
 			}
 			if why := policy.refuses(imported); why != "" {
@@ -241,7 +241,7 @@ func breaches(files []source) []string {
 		}
 	}
 	if engines > 1 {
-		found = append(found, fmt.Sprintf("%d files import %s, want one", engines, eaopt))
+		found = append(found, fmt.Sprintf("%d files import %s, want one", engines, eaoptPath))
 	}
 	return found
 }

@@ -64,22 +64,21 @@ type layer struct {
 }
 
 // layers holds the bases and gradients of U.S. Standard Atmosphere 1976,
-// table 4, completed with the temperature and pressure each layer hands to the
-// next. The first base extends down to Lowest.
+// table 4, with the temperatures they give at the bases, completed with the
+// pressure each layer hands to the next. The first layer extends down to Lowest.
 var layers = stack([]layer{
-	{base: 0, gradient: -6.5e-3},
-	{base: 11000, gradient: 0},
-	{base: 20000, gradient: 1e-3},
-	{base: 32000, gradient: 2.8e-3},
-	{base: 47000, gradient: 0},
-	{base: 51000, gradient: -2.8e-3},
-	{base: 71000, gradient: -2e-3},
+	{base: 0, temperature: 288.15, gradient: -6.5e-3, pressure: seaLevel},
+	{base: 11000, temperature: 216.65, gradient: 0},
+	{base: 20000, temperature: 216.65, gradient: 1e-3},
+	{base: 32000, temperature: 228.65, gradient: 2.8e-3},
+	{base: 47000, temperature: 270.65, gradient: 0},
+	{base: 51000, temperature: 270.65, gradient: -2.8e-3},
+	{base: 71000, temperature: 214.65, gradient: -2e-3},
 })
 
 func stack(table []layer) []layer {
-	table[0].temperature, table[0].pressure = 288.15, seaLevel
 	for i := 1; i < len(table); i++ {
-		table[i].temperature, table[i].pressure = table[i-1].at(table[i].base)
+		_, table[i].pressure = table[i-1].at(table[i].base)
 	}
 	return table
 }

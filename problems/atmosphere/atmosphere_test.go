@@ -107,6 +107,15 @@ func TestPressureAndAltitudeInvertEachOther(t *testing.T) {
 	})
 }
 
+func TestLayersJoin(t *testing.T) {
+	for i := 1; i < len(layers); i++ {
+		below, _ := layers[i-1].at(layers[i].base)
+		if math.Abs(below-layers[i].temperature) > 1e-9 {
+			t.Errorf("at %v m the temperature jumps from %v to %v K", layers[i].base, below, layers[i].temperature)
+		}
+	}
+}
+
 // TestHydrostaticBalance checks dp/dh = -rho g0 against central differences
 // away from the layer bases, where the second derivative jumps.
 func TestHydrostaticBalance(t *testing.T) {

@@ -3,12 +3,12 @@
 package gas
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
 
-// SpecificConstantAir is R of air, J/(kg K): U.S. Standard Atmosphere 1976,
-// 8314.32 / 28.9644.
+// SpecificConstantAir is R of air, J/(kg K): ISO 2533, 8314.32 / 28.964420.
 const SpecificConstantAir = 287.05287
 
 // Perfect is a calorically perfect gas. Gamma is the ratio of specific heats,
@@ -21,16 +21,18 @@ type Perfect struct {
 // Air is air with constant specific heats, gamma 1.4.
 var Air = Perfect{Gamma: 1.4, R: SpecificConstantAir}
 
-// Validate reports a ratio of specific heats outside (1, 5/3] (kinetic theory:
-// a monatomic gas has 5/3) or a gas constant that is not positive.
+// Validate reports, all at once, a ratio of specific heats outside (1, 5/3]
+// (kinetic theory: a monatomic gas has 5/3) and a gas constant that is not
+// positive.
 func (g Perfect) Validate() error {
+	var ratio, constant error
 	if !(g.Gamma > 1 && g.Gamma <= 5.0/3) {
-		return fmt.Errorf("ratio of specific heats %v outside (1, 5/3]", g.Gamma)
+		ratio = fmt.Errorf("ratio of specific heats %v outside (1, 5/3]", g.Gamma)
 	}
 	if !(g.R > 0) || math.IsInf(g.R, 1) {
-		return fmt.Errorf("specific gas constant %v J/(kg K) is not positive", g.R)
+		constant = fmt.Errorf("specific gas constant %v J/(kg K) is not positive", g.R)
 	}
-	return nil
+	return errors.Join(ratio, constant)
 }
 
 // SoundSpeed returns a = sqrt(g R T), m/s, for T in K.

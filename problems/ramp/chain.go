@@ -56,8 +56,12 @@ func March(g gas.Perfect, mach float64, turning []float64, waves []shock.Oblique
 //
 //	pi = (prod rho2/rho1)^(g/(g-1)) (prod p2/p1)^(-1/(g-1))
 //
-// ok is false where a shock is detached. It allocates nothing.
+// ok is false where a shock is detached, a turning is not in [0, pi/2), or
+// mach is below 1. It allocates nothing.
 func Recovery(g gas.Perfect, mach float64, turning []float64) (recovery, machBehind float64, ok bool) {
+	if !(mach >= 1) {
+		return math.NaN(), math.NaN(), false
+	}
 	square := mach * mach
 	density, cooling := 1.0, 1.0
 	for _, theta := range turning {
@@ -110,9 +114,9 @@ func (s *step) cross(gamma, square, tangent float64) bool {
 	return true
 }
 
-// tangent of a turning; a turning of a right angle or more has no shock.
+// tangent of a turning in [0, pi/2); outside there is no shock.
 func tangent(theta float64) float64 {
-	if theta >= math.Pi/2 {
+	if !(theta >= 0 && theta < math.Pi/2) {
 		return math.NaN()
 	}
 	return math.Tan(theta)

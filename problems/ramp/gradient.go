@@ -13,6 +13,9 @@ import (
 // differentiated implicitly, dx = -(F_m dM^2 + F_T dT)/F_x, and the chain is
 // swept backward once: two adjoints, one of ln(pi) and one of M^2 behind.
 func RecoveryGradient(g gas.Perfect, mach float64, turning, dRecovery, dMach []float64) (recovery, machBehind float64, ok bool) {
+	if !(mach >= 1) {
+		return math.NaN(), math.NaN(), false
+	}
 	var steps [MaxRamps]step
 	n := len(turning)
 	square := mach * mach

@@ -39,7 +39,7 @@ func Expand(g gas.Perfect, mach, turning float64) (mach2, pressureRatio float64,
 	if !(target < PrandtlMeyer(g, math.Inf(1))) {
 		return math.NaN(), math.NaN(), &Vacuum{Mach: mach, Turning: turning}
 	}
-	mach2 = machOfPrandtlMeyer(g, target, mach)
+	mach2 = math.Max(mach, machOfPrandtlMeyer(g, target, mach)) // 1/(1/M) may round below M
 	return mach2, g.TotalPressureRatio(mach) / g.TotalPressureRatio(mach2), nil
 }
 

@@ -12,99 +12,93 @@ import (
 // criterion (Ben-Dor, Shock Wave Reflection Phenomena, from memory). For
 // g = 1.4 the second exists from M = 2.202 up.
 func RegularReflection(g gas.Perfect, mach float64) float64 {
-	detachment := ReflectionDetachment(g, mach)
-	if equilibrium, ok := equilibriumBelow(g, mach, detachment, cross, bracketedRoot); ok {
-		return equilibrium
+	m := newMirror(g, mach)
+	x := m.detachment()
+	if equilibrium, exists := m.equilibrium(x); exists {
+		x = equilibrium
 	}
-	return detachment
-}
-
-// RegularReflectionBracketed is the second route to RegularReflection, on
-// WeakBracketed and bisection.
-func RegularReflectionBracketed(g gas.Perfect, mach float64) float64 {
-	across := func(g gas.Perfect, mach, turning float64) (mach2, pressure float64, ok bool) {
-		wave, err := WeakBracketed(g, mach, turning)
-		return wave.Mach2, wave.Jump.Pressure, err == nil
-	}
-	detachment := detachmentOfReflection(g, mach, across, func(g gas.Perfect, mach float64) float64 {
-		turning, _ := LargestTurningSearched(g, mach)
-		return turning
-	}, bisect)
-	if equilibrium, ok := equilibriumBelow(g, mach, detachment, across, bisect); ok {
-		return equilibrium
-	}
-	return detachment
+	return math.Atan(m.tangent(x))
 }
 
 // ReflectionDetachment returns the turning at which the reflected shock is just
 // attached: theta = theta_max(M2(M, theta)), rad.
 func ReflectionDetachment(g gas.Perfect, mach float64) float64 {
-	return detachmentOfReflection(g, mach, cross, func(g gas.Perfect, mach float64) float64 {
-		turning, _ := LargestTurning(g, mach)
-		return turning
-	}, bracketedRoot)
+	m := newMirror(g, mach)
+	return math.Atan(m.tangent(m.detachment()))
 }
 
 // MechanicalEquilibrium returns the turning at which the pressure behind the
 // regular reflection equals that behind a normal shock in the same flow, rad,
-// and whether such a turning exists below detachment of the reflection.
+// and whether such a turning exists below detachment of the reflection; NaN
+// where it does not.
 func MechanicalEquilibrium(g gas.Perfect, mach float64) (turning float64, exists bool) {
-	return equilibriumBelow(g, mach, ReflectionDetachment(g, mach), cross, bracketedRoot)
-}
-
-// crossing gives the Mach number and pressure ratio behind a weak shock.
-type crossing func(g gas.Perfect, mach, turning float64) (mach2, pressure float64, ok bool)
-
-type rootFinder func(f func(float64) float64, a, b float64) float64
-
-// cross is the lean form of Weak.
-func cross(g gas.Perfect, mach, turning float64) (mach2, pressure float64, ok bool) {
-	if !(mach >= 1) {
-		return 0, 0, false
-	}
-	cotangent, ok := WeakCotangent(g.Gamma, mach*mach, math.Tan(turning))
-	if !ok {
-		return 0, 0, false
-	}
-	normalSquare := mach * mach / (1 + cotangent*cotangent)
-	pressure = pressureRatio(g.Gamma, normalSquare)
-	temperature := pressure / densityRatio(g.Gamma, normalSquare)
-	return math.Sqrt((g.TotalTemperatureRatio(mach)/temperature - 1) * 2 / (g.Gamma - 1)), pressure, true
-}
-
-func detachmentOfReflection(g gas.Perfect, mach float64, across crossing, largest func(gas.Perfect, float64) float64, root rootFinder) float64 {
-	sonic, _ := SonicTurning(g, mach)
-	return root(func(turning float64) float64 {
-		behind, _, ok := across(g, mach, turning)
-		if !ok || behind <= 1 {
-			return -turning
-		}
-		return largest(g, behind) - turning
-	}, 0, sonic)
-}
-
-// equilibriumBelow looks for the turning of mechanical equilibrium just inside
-// detachment, where the reflected shock is still attached.
-func equilibriumBelow(g gas.Perfect, mach, detachment float64, across crossing, root rootFinder) (turning float64, exists bool) {
-	stem := pressureRatio(g.Gamma, mach*mach)
-	excess := func(turning float64) float64 {
-		behind, incident, ok := across(g, mach, turning)
-		if !ok {
-			return math.NaN()
-		}
-		_, reflected, ok := across(g, behind, turning)
-		if !ok {
-			return math.NaN()
-		}
-		return incident*reflected - stem
-	}
-	high := detachment * (1 - justInside)
-	if !(excess(high) > 0) {
+	m := newMirror(g, mach)
+	x, exists := m.equilibrium(m.detachment())
+	if !exists {
 		return math.NaN(), false
 	}
-	return root(excess, 0, high), true
+	return math.Atan(m.tangent(x)), true
 }
 
-// justInside keeps the reflected shock attached against rounding of the
-// detachment turning; the criterion is lost only within 1e-9 of M = 2.202.
-const justInside = 1e-9
+// mirror is the regular reflection in a flow of M^2 = square. Its unknown is
+// x = cot(beta) of the incident shock, of which turning, pressure and Mach
+// number behind are rational: turning falls from detachment to the Mach wave as
+// x rises to sqrt(M^2-1).
+type mirror struct {
+	gas            gas.Perfect
+	square, excess float64 // M^2, M^2 - 1
+}
+
+func newMirror(g gas.Perfect, mach float64) mirror {
+	return mirror{gas: g, square: mach * mach, excess: (mach - 1) * (mach + 1)}
+}
+
+func (m *mirror) tangent(x float64) float64 {
+	return turningTangent(m.gas.Gamma, m.square, m.excess, x)
+}
+
+// behind is M2^2 behind the incident shock.
+func (m *mirror) behind(x float64) float64 {
+	return squareBehind(m.gas.Gamma, m.square, m.square/(1+x*x))
+}
+
+// detachment returns x where the largest turning behind the incident shock
+// equals that of the incident shock. The bracket runs from the largest turning
+// of the incident shock, behind which the flow is subsonic, to the Mach wave.
+func (m *mirror) detachment() float64 {
+	gamma := m.gas.Gamma
+	_, low := largestTangent(gamma, m.square, m.excess)
+	return bracketedRoot(func(x float64) float64 {
+		behind := m.behind(x)
+		if behind <= 1 {
+			return -m.tangent(x)
+		}
+		largest, _ := largestTangent(gamma, behind, behind-1)
+		return largest - m.tangent(x)
+	}, low, math.Sqrt(m.excess))
+}
+
+// equilibrium returns x where the pressure behind the reflected shock is that
+// behind a normal shock. It rises with the turning, so that an equilibrium
+// below detachment (x above it) exists where it is larger at detachment.
+func (m *mirror) equilibrium(detachment float64) (x float64, exists bool) {
+	stem := pressureRatio(m.gas.Gamma, m.square)
+	if !(m.reflected(detachment) > stem) {
+		return math.NaN(), false
+	}
+	return bracketedRoot(func(x float64) float64 {
+		return m.reflected(x) - stem
+	}, detachment, math.Sqrt(m.excess)), true
+}
+
+// reflected is the pressure behind the reflected shock over that ahead of the
+// incident one, for x from detachment of the reflection up. Rounding may call
+// the shock at detachment itself detached: it is the one of largest turning.
+func (m *mirror) reflected(x float64) float64 {
+	gamma, behind := m.gas.Gamma, m.behind(x)
+	second, attached := WeakCotangent(gamma, behind, m.tangent(x))
+	if !attached {
+		_, second = largestTangent(gamma, behind, behind-1)
+	}
+	return pressureRatio(gamma, m.square/(1+x*x)) * pressureRatio(gamma, behind/(1+second*second))
+}

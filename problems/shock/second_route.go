@@ -19,7 +19,7 @@ import (
 //
 // Special cases and errors are those of Weak.
 func WeakBracketed(g gas.Perfect, mach, turning float64) (Oblique, error) {
-	if !(turning >= 0) || !(mach >= 1) {
+	if !(turning >= 0) || !(mach >= 1) || turning >= math.Pi/2 {
 		return Oblique{}, notAttached(g, mach, turning)
 	}
 	machAngle := math.Asin(1 / mach)
@@ -34,17 +34,17 @@ func WeakBracketed(g gas.Perfect, mach, turning float64) (Oblique, error) {
 		return Turning(g, mach, beta) - turning
 	}, machAngle, atLargest)
 	normal := mach * math.Sin(wave)
-	density := math.Tan(wave) / math.Tan(wave-turning)
-	pressure := 1 + g.Gamma*normal*normal*(1-1/density)
-	temperature := pressure / density
-	entropy := math.Log(temperature)*g.Gamma/(g.Gamma-1) - math.Log(pressure) // (s2 - s1)/R
+	// tan(beta)/tan(beta-theta) - 1, which keeps its digits in a weak shock.
+	crowd := math.Sin(turning) / (math.Cos(wave) * math.Sin(wave-turning))
+	squeeze := g.Gamma * normal * normal * crowd / (1 + crowd)
+	temperature := (1 + squeeze) / (1 + crowd)
 	return Oblique{
 		Mach:       mach,
 		Turning:    turning,
 		WaveAngle:  wave,
 		NormalMach: normal,
 		Mach2:      mach * math.Cos(wave) / math.Cos(wave-turning) / math.Sqrt(temperature),
-		Jump:       Jump{pressure, density, temperature, math.Exp(-entropy)},
+		Jump:       Jump{1 + squeeze, 1 + crowd, temperature, math.Exp(-entropyRise(g, crowd, squeeze))},
 	}, nil
 }
 
@@ -59,10 +59,16 @@ func NormalByPrandtl(g gas.Perfect, mach float64) (mach2 float64, jump Jump) {
 	critical := (gamma + 1) * mach * mach / (2 + (gamma-1)*mach*mach)
 	behind := 1 / critical
 	mach2 = math.Sqrt(2 * behind / (gamma + 1 - (gamma-1)*behind))
-	pressure := 1 + gamma*mach*mach*(1-1/critical)
-	temperature := pressure / critical
-	entropy := math.Log(temperature)*gamma/(gamma-1) - math.Log(pressure)
-	return mach2, Jump{pressure, critical, temperature, math.Exp(-entropy)}
+	crowd := 2 * (mach - 1) * (mach + 1) / (2 + (gamma-1)*mach*mach) // M*^2 - 1
+	squeeze := gamma * mach * mach * crowd / (1 + crowd)
+	temperature := (1 + squeeze) / (1 + crowd)
+	return mach2, Jump{1 + squeeze, 1 + crowd, temperature, math.Exp(-entropyRise(g, crowd, squeeze))}
+}
+
+// entropyRise is (s2 - s1)/R = (ln(p2/p1) - g ln(rho2/rho1))/(g-1), from
+// rho2/rho1 - 1 and p2/p1 - 1.
+func entropyRise(g gas.Perfect, crowd, squeeze float64) float64 {
+	return (math.Log1p(squeeze) - g.Gamma*math.Log1p(crowd)) / (g.Gamma - 1)
 }
 
 // LargestTurningSearched is the second route to the largest attached turning:

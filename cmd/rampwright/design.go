@@ -1,0 +1,258 @@
+package main
+
+import (
+	"context"
+	"encoding/json"
+	"fmt"
+	"path/filepath"
+	"runtime"
+	"strings"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	"rampwright/cmd/rampwright/internal/brief"
+	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/cmd/rampwright/internal/runstore"
+	"rampwright/optimize"
+	"rampwright/problems/inlet"
+)
+
+func (a *app) designCommand() *cobra.Command {
+	var dir string
+	cmd := &cobra.Command{
+		Use: "design BRIEF", Short: "Search the inlet a brief asks for and verify it exactly", Args: exactArgs(1),
+		Long: `Search the inlet a brief asks for: sample the exact flow, fit surrogates to the
+aim and every limited quantity, search them under the limits, add exact
+evaluations until surrogate and exact agree at the optimum, and verify the
+result by a second exact route. Everything is written to a result folder; a
+run that was cut short resumes from it.`,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			study, err := read(cmd, args[0])
+			if err != nil {
+				return err
+			}
+			if refused := brief.CheckSearch(study.brief); len(refused) > 0 {
+				return refused
+			}
+			if dir == "" {
+				dir = strings.TrimSuffix(filepath.Base(args[0]), filepath.Ext(args[0])) + "-result"
+			}
+			return a.design(study, dir)
+		},
+	}
+	cmd.Flags().StringVarP(&dir, "output", "o", "", "result folder (default ./<brief name>-result)")
+	cmd.Flags().BoolVar(&a.json, "json", false, "print one JSON document")
+	a.searchFlags(cmd)
+	briefFlags(cmd)
+	return cmd
+}
+
+// searchFlags adds the flags of every command that searches.
+func (a *app) searchFlags(cmd *cobra.Command) {
+	cmd.Flags().IntVar(&a.jobs, "jobs", runtime.NumCPU(), "evaluations and fits side by side; never changes the result")
+	cmd.Flags().StringVar(&a.timeLimit, "time-limit", "", "stop with the best so far after this time, such as 90s or 10m")
+	cmd.Flags().BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	cmd.Flags().BoolVar(&a.force, "force", false, "replace a result folder of another title")
+}
+
+// limit reads --time-limit.
+func (a *app) limit() (time.Duration, error) {
+	if a.timeLimit == "" {
+		return 0, nil
+	}
+	limit, err := time.ParseDuration(a.timeLimit)
+	if err != nil || limit <= 0 {
+		return 0, &usageError{fmt.Sprintf("--time-limit %q is not a time above zero", a.timeLimit), "write 90s, 10m or 1h30m"}
+	}
+	return limit, nil
+}
+
+// settings are the brief's effort with the jobs of the command line.
+func (a *app) settings(study *study) optimize.Settings {
+	effort := study.brief.Effort
+	return optimize.Settings{
+		Samples: effort.Samples, Infill: effort.Infill, Seed: effort.Seed, Agreement: effort.Agreement, Jobs: a.jobs,
+	}
+}
+
+// design runs the main job into a result folder.
+func (a *app) design(study *study, dir string) (err error) {
+	limit, err := a.limit()
+	if err != nil {
+		return err
+	}
+	if a.jobs < 1 {
+		return &usageError{fmt.Sprintf("--jobs %d: at least one", a.jobs), ""}
+	}
+	began := time.Now()
+	model := study.modelHash()
+	folder, err := runstore.Open(dir, study.brief.Title, study.brief.Hash(), runstore.Options{Force: a.force, Models: []string{model}})
+	if err != nil {
+		return err
+	}
+	defer func() {
+		if closing := folder.Abandon(); err == nil {
+			err = closing
+		}
+	}()
+	a.notices(folder)
+
+	ctx, interruption := watch(limit)
+	defer interruption.stop()
+	cached, counter := runstore.Cached(study.problem, folder.Ledger(), model)
+	task := optimize.Task{Problem: cached, Limits: study.limits, Aim: study.brief.Aim}
+	settings := a.settings(study)
+	progress := a.progress()
+	result, err := optimize.Design(ctx, task, settings, progress.observe)
+	progress.end()
+	if err != nil {
+		return a.cutShort(err, interruption)
+	}
+	exact, flow, err := a.yardstick(ctx, study, settings, result)
+	if err != nil {
+		return err
+	}
+	document := report.NewDesign(study.head(settings.Seed), report.Study{
+		Problem: study.problem, Aim: study.brief.Aim, Agreement: settings.Agreement,
+		Result: result, Exact: exact, Flow: flow,
+	})
+	run := runRecord(began, a.jobs, counter)
+	if err := store(folder, study, document, result, flow, run); err != nil {
+		return err
+	}
+	if err := folder.Commit(); err != nil {
+		return err
+	}
+	if err := a.print(document); err != nil {
+		return err
+	}
+	a.say("result folder: %s\n", folder.Dir())
+	return ending(result.Status, interruption)
+}
+
+// cutShort explains an interruption that came before there was anything to keep.
+func (a *app) cutShort(err error, interruption *interruption) error {
+	if code := interruption.code.Load(); code != 0 {
+		a.say("interrupted before the first design was evaluated; the ledger keeps what was\n")
+		return &endedWith{int(code)}
+	}
+	return err
+}
+
+// yardstick searches the exact model alone, afterwards, and computes the flow of
+// the best design.
+func (a *app) yardstick(ctx context.Context, study *study, settings optimize.Settings, result *optimize.Result) (*optimize.ExactSearch, *inlet.Flow, error) {
+	flow, err := study.problem.Flow(context.WithoutCancel(ctx), result.Best.X)
+	if err != nil {
+		return nil, nil, err
+	}
+	if ctx.Err() != nil {
+		return nil, flow, nil // no time left for it; the document says so
+	}
+	task := optimize.Task{Problem: study.problem, Limits: study.limits, Aim: study.brief.Aim}
+	exact, err := optimize.SearchExact(ctx, task, settings)
+	if err != nil && ctx.Err() == nil {
+		return nil, nil, err
+	}
+	if err != nil {
+		exact = nil
+	}
+	return exact, flow, nil
+}
+
+// ending turns a status into the exit code.
+func ending(status optimize.Status, interruption *interruption) error {
+	if code := interruption.code.Load(); code != 0 {
+		return &endedWith{int(code)}
+	}
+	switch status {
+	case optimize.Infeasible, optimize.NotVerified:
+		return &endedWith{exitNotMet}
+	case optimize.Stopped:
+		return &endedWith{exitStopped}
+	}
+	return nil
+}
+
+// record is run.json: what must not be in result.json.
+type record struct {
+	Format       int            `json:"format"`
+	Program      string         `json:"program"`
+	Started      string         `json:"started"`
+	Seconds      float64        `json:"seconds"`
+	Platform     string         `json:"platform"`
+	Jobs         int            `json:"jobs"`
+	ModelCalls   map[string]int `json:"model_calls"`
+	LedgerAnswer map[string]int `json:"answered_from_ledger"`
+}
+
+func runRecord(began time.Time, jobs int, counter *runstore.Counter) record {
+	calls, hits := map[string]int{}, map[string]int{}
+	for _, route := range []runstore.Route{runstore.Primary, runstore.Second} {
+		calls[string(route)], hits[string(route)] = counter.Calls(route), counter.Hits(route)
+	}
+	return record{
+		Format: 1, Program: program, Started: began.UTC().Format(time.RFC3339), Seconds: time.Since(began).Seconds(),
+		Platform: runtime.GOOS + "/" + runtime.GOARCH + " " + runtime.Version(), Jobs: jobs,
+		ModelCalls: calls, LedgerAnswer: hits,
+	}
+}
+
+// store writes the files of a result.
+func store(folder *runstore.Folder, study *study, document *report.DesignDocument, result *optimize.Result, flow *inlet.Flow, run record) error {
+	runJSON, err := json.MarshalIndent(run, "", "  ")
+	if err != nil {
+		return err
+	}
+	states, err := stations(flow)
+	if err != nil {
+		return err
+	}
+	files := []file{
+		{"result.json", document.JSON()},
+		{"run.json", append(runJSON, '\n')},
+		{"brief.yaml", study.brief.ResolvedYAML()},
+		{"samples.csv", report.SamplesCSV(study.problem, sampleRows(result))},
+		{"stations.csv", states},
+	}
+	if flow.ContourErr == nil {
+		drawing, err := drawings(study, flow)
+		if err != nil {
+			return err
+		}
+		files = append(files, drawing...)
+	}
+	for _, f := range files {
+		if err := folder.WriteFile(f.name, f.data); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+type file struct {
+	name string
+	data []byte
+}
+
+// drawings are the files of a contour that closes.
+func drawings(study *study, flow *inlet.Flow) ([]file, error) {
+	points, err := profile(flow)
+	if err != nil {
+		return nil, err
+	}
+	view, err := sideView(study.brief.Title, "preliminary geometry: inviscid flow, sharp edges; read the cautions of the result", flow)
+	if err != nil {
+		return nil, err
+	}
+	return []file{{"profile.csv", points}, {"inlet.svg", view}}, nil
+}
+
+func sampleRows(result *optimize.Result) []report.Sample {
+	rows := make([]report.Sample, len(result.Samples))
+	for i, s := range result.Samples {
+		rows[i] = report.Sample{Purpose: s.Purpose, X: s.X, Evaluation: s.Evaluation}
+	}
+	return rows
+}

@@ -1,0 +1,154 @@
+package main
+
+import (
+	"context"
+	"encoding/json"
+	"fmt"
+	"io"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/problems"
+)
+
+func (a *app) flowCommand() *cobra.Command {
+	var of string
+	var strict bool
+	cmd := &cobra.Command{
+		Use: "flow BRIEF", Short: "Compute the exact flow of one fixed geometry at every flight point", Args: exactArgs(1),
+		Long: `Compute the exact flow of one fixed geometry at every flight point of the brief.
+
+Values the brief searches are fixed by flags (--ramp-angle-deg 8.08,7.22,8.44
+--cowl-angle-deg 8) or taken from a result folder (--of DIR), a flag winning. A
+detached shock is an answer, not an error: --strict turns it into exit code 4.`,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			study, err := read(cmd, args[0])
+			if err != nil {
+				return err
+			}
+			return a.flow(study, of, strict)
+		},
+	}
+	cmd.Flags().StringVar(&of, "of", "", "take searched values from this result folder")
+	cmd.Flags().BoolVar(&strict, "strict", false, "exit with code 4 unless every point is attached")
+	cmd.Flags().BoolVar(&a.json, "json", false, "print one JSON document")
+	briefFlags(cmd)
+	return cmd
+}
+
+func (a *app) flow(study *study, of string, strict bool) error {
+	x, err := study.fixed(of)
+	if err != nil {
+		return err
+	}
+	flow, err := study.problem.Flow(context.Background(), x)
+	if err != nil {
+		return err
+	}
+	document := report.NewFlow(study.head(0), study.problem, flow)
+	if err := a.print(document); err != nil {
+		return err
+	}
+	for i := range flow.Points {
+		if strict && flow.Points[i].Err != nil {
+			return &endedWith{exitNotMet}
+		}
+	}
+	return nil
+}
+
+// document is what a command prints.
+type document interface {
+	JSON() []byte
+	Text(width int) string
+}
+
+// print writes a document to the output, as JSON where asked for.
+func (a *app) print(d document) error {
+	if a.json {
+		_, err := a.out.Write(d.JSON())
+		return err
+	}
+	_, err := io.WriteString(a.out, d.Text(a.width()))
+	return err
+}
+
+// head names what a document is about.
+func (s *study) head(seed int64) report.Head {
+	return report.Head{Program: program, Title: s.brief.Title, BriefHash: s.brief.Hash(), Seed: seed}
+}
+
+// fixed returns a value for every searched setting: from the result folder given
+// by --of, or an error that names the flags.
+func (s *study) fixed(of string) ([]float64, error) {
+	variables := s.problem.Variables()
+	if len(variables) == 0 {
+		return nil, nil
+	}
+	if of == "" {
+		var missing []string
+		for _, v := range variables {
+			if flag := variableFlag(v.Name); len(missing) == 0 || missing[len(missing)-1] != flag {
+				missing = append(missing, flag)
+			}
+		}
+		return nil, &usageError{
+			"the brief searches " + variableNames(variables) + "; flow needs one fixed geometry",
+			"give " + strings.Join(missing, ", ") + ", or --of DIR for the best of a design",
+		}
+	}
+	best, err := readBest(of)
+	if err != nil {
+		return nil, err
+	}
+	x := make([]float64, len(variables))
+	for i, v := range variables {
+		value, ok := best[v.Name]
+		if !ok {
+			return nil, &usageError{
+				fmt.Sprintf("the result in %s has no %s", of, v.Name),
+				"it was made from another brief: give " + variableFlag(v.Name),
+			}
+		}
+		x[i] = value
+	}
+	return x, nil
+}
+
+// readBest reads the variables of the best design of a result folder.
+func readBest(dir string) (map[string]float64, error) {
+	file := filepath.Join(dir, "result.json")
+	data, err := os.ReadFile(file)
+	if err != nil {
+		return nil, &usageError{"no result there: " + err.Error(), "rampwright design writes one"}
+	}
+	var result struct {
+		Best struct {
+			Variables map[string]float64 `json:"variables"`
+		} `json:"best"`
+	}
+	if err := json.Unmarshal(data, &result); err != nil {
+		return nil, &usageError{file + " is not a result: " + err.Error(), ""}
+	}
+	return result.Best.Variables, nil
+}
+
+// variableFlag is the flag that fixes a variable: every ramp has the same.
+func variableFlag(name string) string {
+	if strings.HasPrefix(name, "ramp_") {
+		return "--ramp-angle-deg"
+	}
+	return "--" + strings.ReplaceAll(name, "_", "-")
+}
+
+func variableNames(variables []problems.Variable) string {
+	names := make([]string, len(variables))
+	for i, v := range variables {
+		names[i] = v.Name
+	}
+	return strings.Join(names, ", ")
+}

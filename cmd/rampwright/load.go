@@ -1,0 +1,93 @@
+package main
+
+import (
+	"crypto/sha256"
+	"encoding/hex"
+	"encoding/json"
+	"fmt"
+	"os"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"rampwright/cmd/rampwright/internal/brief"
+	"rampwright/problems"
+	"rampwright/problems/inlet"
+)
+
+// maxBrief is the size a brief may have.
+const maxBrief = 1 << 20
+
+// study is a brief made ready: the problem it poses and what it asks of it.
+type study struct {
+	brief   *brief.Brief
+	problem *inlet.Problem
+	limits  []problems.Limit
+}
+
+// briefFlags adds a flag for every value of the brief that may be set on the
+// command line.
+func briefFlags(cmd *cobra.Command) {
+	for _, key := range brief.FlagKeys() {
+		meaning := key.Meaning
+		if key.Unit != "" {
+			meaning += ", " + key.Unit
+		}
+		cmd.Flags().String(strings.TrimPrefix(key.FlagName(), "--"), "", meaning)
+	}
+}
+
+// overrides collects the brief flags that were given.
+func overrides(cmd *cobra.Command) brief.Overrides {
+	given := brief.Overrides{}
+	for _, key := range brief.FlagKeys() {
+		if flag := cmd.Flags().Lookup(strings.TrimPrefix(key.FlagName(), "--")); flag != nil && flag.Changed {
+			given[key.Name] = flag.Value.String()
+		}
+	}
+	return given
+}
+
+// read reads a brief with the overrides of the command line.
+func read(cmd *cobra.Command, file string) (*study, error) {
+	info, err := os.Stat(file)
+	if err != nil {
+		return nil, &usageError{"cannot read the brief: " + err.Error(), "rampwright new " + file + " writes a starter"}
+	}
+	if info.IsDir() {
+		return nil, &usageError{file + " is a folder, not a brief", "name the YAML file"}
+	}
+	if info.Size() > maxBrief {
+		return nil, &usageError{fmt.Sprintf("%s has %d bytes; a brief has at most %d", file, info.Size(), maxBrief), ""}
+	}
+	data, err := os.ReadFile(file)
+	if err != nil {
+		return nil, err
+	}
+	b, err := brief.Read(file, data, overrides(cmd))
+	if err != nil {
+		return nil, err
+	}
+	problem, err := inlet.New(b.Definition)
+	if err != nil {
+		return nil, err
+	}
+	return &study{
+		brief: b, problem: problem,
+		limits: b.Resolve(inlet.HardLimits(b.Definition), inlet.DefaultLimits(b.Definition)),
+	}, nil
+}
+
+// modelHash names the true model: everything an evaluation at x depends on.
+func (s *study) modelHash() string {
+	data, err := json.Marshal(struct {
+		Version    string
+		Definition inlet.Definition
+		Quantities []problems.Quantity
+	}{version, s.brief.Definition, s.problem.Quantities()})
+	if err != nil {
+		panic("a definition holds finite numbers only: " + err.Error())
+	}
+	sum := sha256.Sum256(data)
+	return hex.EncodeToString(sum[:])
+}

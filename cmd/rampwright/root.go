@@ -1,0 +1,92 @@
+package main
+
+import (
+	"io"
+	"strings"
+
+	"github.com/spf13/cobra"
+)
+
+// version is the one constant that names this build.
+const version = "0.1.0"
+
+const program = "rampwright " + version
+
+// app is one run of the program: its streams and the flags all commands share.
+type app struct {
+	in       io.Reader
+	out      io.Writer
+	messages io.Writer
+
+	json      bool
+	quiet     bool
+	force     bool
+	jobs      int
+	timeLimit string
+}
+
+// root builds the command tree.
+func (a *app) root() *cobra.Command {
+	root := &cobra.Command{
+		Use:   "rampwright",
+		Short: "Size planar high-speed air inlets: surrogates to search, exact shock relations to verify",
+		Long: `rampwright sizes planar high-speed air inlets (Mach 2 to 10) in early design.
+It reads a brief, searches surrogates of the exact flow under the brief's
+limits, verifies every candidate with the exact shock relations by two routes,
+and writes the geometry.
+
+Exit codes:
+` + exitHelp(),
+		SilenceUsage:               true,
+		SilenceErrors:              true,
+		SuggestionsMinimumDistance: 2,
+		CompletionOptions:          cobra.CompletionOptions{HiddenDefaultCmd: true},
+		RunE: func(cmd *cobra.Command, args []string) error {
+			return cmd.Help()
+		},
+	}
+	root.SetIn(a.in)
+	root.SetOut(a.out)
+	root.SetErr(a.messages)
+	root.SetFlagErrorFunc(func(cmd *cobra.Command, err error) error {
+		return &usageError{err.Error(), "see " + cmd.CommandPath() + " --help"}
+	})
+	root.AddCommand(
+		a.designCommand(), a.flowCommand(), a.newCommand(),
+		a.quantitiesCommand(), a.versionCommand(),
+	)
+	root.SetHelpCommand(&cobra.Command{
+		Use: "help [command]", Short: "Explain a command",
+		RunE: func(cmd *cobra.Command, args []string) error {
+			about, _, err := root.Find(args)
+			if err != nil {
+				return &usageError{err.Error(), "see rampwright --help"}
+			}
+			return about.Help()
+		},
+	})
+	return root
+}
+
+// exactArgs refuses a wrong number of arguments as bad usage.
+func exactArgs(n int) cobra.PositionalArgs {
+	return func(cmd *cobra.Command, args []string) error {
+		if len(args) != n {
+			return &usageError{
+				"expected " + count(n, "argument") + ", got " + count(len(args), "argument"),
+				"usage: " + strings.TrimSpace(cmd.UseLine()),
+			}
+		}
+		return nil
+	}
+}
+
+func (a *app) versionCommand() *cobra.Command {
+	return &cobra.Command{
+		Use: "version", Short: "Print the version", Args: exactArgs(0),
+		RunE: func(cmd *cobra.Command, args []string) error {
+			_, err := io.WriteString(a.out, program+"\n")
+			return err
+		},
+	}
+}

@@ -1,0 +1,160 @@
+package main
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+
+	"rampwright/cmd/rampwright/internal/chart"
+	"rampwright/cmd/rampwright/internal/handoff"
+	"rampwright/problems/contour"
+	"rampwright/problems/inlet"
+)
+
+const degree = 180 / math.Pi
+
+// sideView draws the inlet at its first flight point: mold line, shocks, lip
+// streamline and the names of the stations.
+func sideView(title, caution string, flow *inlet.Flow) ([]byte, error) {
+	at := &flow.Points[0]
+	shape := &flow.Contour
+	behind := ductLength(shape)
+	view := chart.SideView{
+		Title:     title,
+		Subtitle:  []string{fmt.Sprintf("%s, Mach %.4g, incidence %.3g deg: %s", at.Point.Name, at.Point.Mach, at.Point.Incidence*degree, at.Status())},
+		Caution:   caution,
+		Incidence: at.Point.Incidence,
+		Body:      body(shape, behind),
+		CowlInner: []chart.Vertex{vertex("", shape.Lip), vertex("", along(shape.Lip, shape.CowlInner, innerLength(shape, behind)))},
+		CowlOuter: []chart.Vertex{vertex("", shape.Lip), vertex("", along(shape.Lip, shape.CowlOuter, math.Max(flow.CowlLength, 0.1*shape.Lip.Y)/math.Cos(shape.CowlOuter)))},
+		Stations:  stationPlaces(flow, at),
+	}
+	view.Body[0].Name = "leading edge"
+	view.CowlInner[0].Name = "cowl lip"
+	for _, s := range at.Shocks {
+		kind := chart.RampShock
+		if s.Name == "lip shock" {
+			kind = chart.LipShock
+		}
+		view.Waves = append(view.Waves, chart.Wave{Name: s.Name, Kind: kind, X1: s.From.X, Y1: s.From.Y, X2: s.To.X, Y2: s.To.Y})
+	}
+	for _, p := range at.Streamline {
+		view.LipStreamline = append(view.LipStreamline, vertex("", p))
+	}
+	var out bytes.Buffer
+	if err := chart.WriteSideView(&out, view); err != nil {
+		return nil, err
+	}
+	return out.Bytes(), nil
+}
+
+// ductLength is how much of the duct behind the shoulder is drawn and handed
+// over: four throat heights.
+func ductLength(shape *contour.Inlet) float64 { return 4 * shape.Throat }
+
+// body is the ramp surface from the leading edge, past the shoulder into the
+// duct.
+func body(shape *contour.Inlet, behind float64) []chart.Vertex {
+	var list []chart.Vertex
+	for i, c := range shape.Corners {
+		list = append(list, vertex(cornerName(i), c))
+	}
+	return append(list, vertex("shoulder", shape.Shoulder), vertex("", along(shape.Shoulder, shape.CowlInner, behind)))
+}
+
+func cornerName(i int) string {
+	if i == 0 {
+		return "leading edge"
+	}
+	return fmt.Sprintf("corner %d", i+1)
+}
+
+// innerLength ends the inner cowl surface abreast of the body's end.
+func innerLength(shape *contour.Inlet, behind float64) float64 {
+	wall := contour.Line{Through: shape.Lip, Angle: shape.CowlInner}
+	return wall.Along(along(shape.Shoulder, shape.CowlInner, behind))
+}
+
+func along(p contour.Point, angle, distance float64) contour.Point {
+	sin, cos := math.Sincos(angle)
+	return contour.Point{X: p.X + distance*cos, Y: p.Y + distance*sin}
+}
+
+func vertex(name string, p contour.Point) chart.Vertex {
+	return chart.Vertex{Name: name, X: p.X, Y: p.Y}
+}
+
+// stationPlaces puts each station's name into its region: ahead of the first
+// shock, above the middle of each ramp, and in the duct.
+func stationPlaces(flow *inlet.Flow, at *inlet.PointFlow) []chart.Vertex {
+	shape := &flow.Contour
+	height := shape.Lip.Y
+	places := []chart.Vertex{{Name: "free stream", X: 0.02 * shape.Lip.X, Y: 0.75 * height}}
+	for i := range shape.Corners {
+		if i+1 >= len(at.Stations) {
+			return places
+		}
+		end := shape.Shoulder
+		if i+1 < len(shape.Corners) {
+			end = shape.Corners[i+1]
+		}
+		start := shape.Corners[i]
+		middle := contour.Point{X: (start.X + 2*end.X) / 3, Y: (start.Y + 2*end.Y) / 3}
+		places = append(places, vertex(at.Stations[i+1].Name, along(middle, shape.Angles[i]+math.Pi/2, 0.03*height)))
+	}
+	if last := at.Stations[len(at.Stations)-1]; last.Name == "throat" {
+		places = append(places, vertex("throat", along(along(shape.Shoulder, shape.CowlInner, 2*shape.Throat), shape.CowlInner+math.Pi/2, shape.Throat/2)))
+	}
+	return places
+}
+
+// profile lists the mold line for the hand-over, surface by surface.
+func profile(flow *inlet.Flow) ([]byte, error) {
+	shape := &flow.Contour
+	behind := ductLength(shape)
+	var points []handoff.ProfilePoint
+	add := func(surface, name string, p contour.Point) {
+		points = append(points, handoff.ProfilePoint{Surface: surface, Name: name, X: p.X, Y: p.Y})
+	}
+	for i, c := range shape.Corners {
+		add("body", cornerName(i), c)
+	}
+	add("body", "shoulder", shape.Shoulder)
+	add("body", "duct end", along(shape.Shoulder, shape.CowlInner, behind))
+	add("cowl inner", "lip", shape.Lip)
+	add("cowl inner", "duct end", along(shape.Lip, shape.CowlInner, innerLength(shape, behind)))
+	add("cowl outer", "lip", shape.Lip)
+	add("cowl outer", "outer end", along(shape.Lip, shape.CowlOuter, flow.CowlLength/math.Cos(shape.CowlOuter)))
+	var out bytes.Buffer
+	if err := handoff.WriteProfile(&out, points); err != nil {
+		return nil, err
+	}
+	return out.Bytes(), nil
+}
+
+// stations lists the states of every flight point for the hand-over.
+func stations(flow *inlet.Flow) ([]byte, error) {
+	var points []handoff.FlightPoint
+	for i := range flow.Points {
+		p := &flow.Points[i]
+		point := handoff.FlightPoint{
+			Name: p.Point.Name, Mach: p.Point.Mach, IncidenceDeg: p.Point.Incidence * degree, Status: p.Status(),
+		}
+		for _, s := range p.Stations {
+			point.Stations = append(point.Stations, handoff.Station{
+				Name: s.Name, Mach: s.Mach,
+				FlowAngleDeg: s.FlowAngle * degree, WaveAngleDeg: s.WaveAngle * degree,
+				WaveAngleAbsoluteDeg: s.WaveAngleAbsolute * degree, NormalMach: s.NormalMach,
+				StaticPressureRatio: s.PressureRatio, StaticTemperatureRatio: s.TemperatureRatio,
+				TotalPressureRatio: s.TotalPressure,
+				PressureKPa:        s.Pressure / 1000, TemperatureK: s.Temperature,
+			})
+		}
+		points = append(points, point)
+	}
+	var out bytes.Buffer
+	if err := handoff.WriteStations(&out, points); err != nil {
+		return nil, err
+	}
+	return out.Bytes(), nil
+}
