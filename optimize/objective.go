@@ -30,7 +30,7 @@ func newObjective(quantities []problems.Quantity, aim problems.Aim) (objective, 
 		for _, read := range p.Reads {
 			var members []int
 			for i, q := range quantities {
-				if q.Name == read.Quantity && q.Point == read.Point {
+				if q.Name == read.Quantity && q.Point == read.Point && (read.Member == "" || q.Member == read.Member) {
 					members = append(members, i)
 					used[i] = true
 				}

@@ -12,10 +12,12 @@ const (
 	Worst
 )
 
-// Read is one quantity an aim depends on. For a group it is the least member.
+// Read is one quantity an aim depends on. For a group it is the least member, or
+// the one named.
 type Read struct {
 	Quantity string
 	Point    string
+	Member   string // empty for the whole group
 }
 
 // Part is the value an aim takes at one flight point: Formula of the quantities

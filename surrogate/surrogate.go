@@ -1,5 +1,7 @@
 // Package surrogate states what every surrogate kind offers: an immutable
-// configuration that fits, and a fitted model that predicts.
+// configuration that fits, and a fitted model that predicts. Around it stand
+// the checks on data, the scalings, the figures of quality that every kind
+// shares, and the judgement of how far a prediction can be trusted.
 //
 // Inputs are points of the unit cube: the caller scales its box to [0,1]^d.
 // Outputs are in the caller's own unit; a kind standardises them inside and
@@ -17,16 +19,26 @@ type Model interface {
 	Fit(ctx context.Context, x [][]float64, y []float64) (Fitted, error)
 }
 
-// Fitted is a fitted model, safe for concurrent use.
+// Fitted is a fitted model, safe for concurrent use. Points have the dimension
+// of the samples; a wrong length is a programmer's mistake and panics.
 type Fitted interface {
+	// Mean returns the mean at x. It does not allocate and costs far less than
+	// Predict.
+	Mean(x []float64) float64
 	// Predict returns the mean and the standard deviation at x.
 	Predict(x []float64) (mean, deviation float64)
 	// Gradient stores d(mean)/dx in dst (length d) and returns the mean.
 	Gradient(dst, x []float64) float64
-	// LeaveOneOut returns the closed-form leave-one-out predictions, one a sample.
+	// LeaveOneOut returns the closed-form leave-one-out predictions, one a
+	// sample. The caller must not change the slice.
 	LeaveOneOut() []float64
+	// LeaveOneOutDeviation returns their standard deviations.
+	LeaveOneOutDeviation() []float64
 	// Complexity orders kinds when their errors tie: smaller is simpler.
 	Complexity() int
 	// Describe returns a short description: "degree 4, 70 terms".
 	Describe() string
+	// Warm returns the configuration that refits this very structure cheaply,
+	// starting from what this fit found, after a few samples were added.
+	Warm() Model
 }

@@ -52,7 +52,7 @@ Exit codes:
 		return &usageError{err.Error(), "see " + cmd.CommandPath() + " --help"}
 	})
 	root.AddCommand(
-		a.designCommand(), a.flowCommand(), a.newCommand(),
+		a.designCommand(), a.flowCommand(), a.checkCommand(), a.newCommand(),
 		a.quantitiesCommand(), a.versionCommand(),
 	)
 	root.SetHelpCommand(&cobra.Command{

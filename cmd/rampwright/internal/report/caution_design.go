@@ -1,0 +1,227 @@
+package report
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"rampwright/constraints"
+	"rampwright/optimize"
+	"rampwright/problems"
+	"rampwright/problems/inlet"
+)
+
+const (
+	lowQ2         = 0.9    // below it a surrogate explains too little to be searched on
+	yardstickMiss = 0.9999 // of the exact search's aim
+	onBound       = 1e-6   // of a variable's range
+)
+
+// cautions lists what a design raises: the Mach number ahead of a terminal shock
+// first, how the search ended next, then flow, margins, limits and surrogates.
+func (s *Study) cautions() []Caution {
+	flow := exactCautions(s.Problem, s.Flow)
+	var list []Caution
+	if len(flow) > 0 && flow[0].Rule == "terminal_mach" {
+		list, flow = flow[:1:1], flow[1:]
+	}
+	list = append(list, s.endingCautions()...)
+	list = append(list, flow...)
+	list = append(list, s.noMargin()...)
+	list = append(list, s.liftedDefaults()...)
+	list = append(list, s.boundCautions()...)
+	list = append(list, s.surrogateCautions()...)
+	if list == nil {
+		return []Caution{}
+	}
+	return list
+}
+
+// endingCautions say what the result is not.
+func (s *Study) endingCautions() []Caution {
+	var list []Caution
+	add := func(rule, text string, args ...any) {
+		list = append(list, Caution{rule, "", fmt.Sprintf(text, args...)})
+	}
+	best := &s.Result.Best
+	switch s.Result.Status {
+	case optimize.Infeasible:
+		add("infeasible", "No exact evaluation holds every limit; this one misses them least: %s.", unmet(best.Assessment))
+	case optimize.Stopped, optimize.Interrupted:
+		add("unfinished", "The search was ended early (%s): a better design may exist.", s.Result.Status)
+	}
+	switch {
+	case math.IsInf(best.RouteGap, 1):
+		add("routes_differ", "Only one of the two exact routes has a value for every quantity: do not use these numbers.")
+	case best.RouteGap > optimize.RouteAgreement:
+		add("routes_differ", "The two exact routes differ by %.2g, more than %g: do not use these numbers.", best.RouteGap, optimize.RouteAgreement)
+	}
+	switch {
+	case s.Result.Status == optimize.Verified:
+	case math.IsInf(best.SurrogateError, 1):
+		add("surrogate_error", "No surrogate foresaw this design: nothing shows that the search knew its surroundings.")
+	case best.SurrogateError > s.Agreement:
+		add("surrogate_error", "The surrogates missed this design by %.2g of scale, more than the agreement %g: a better one may exist.", best.SurrogateError, s.Agreement)
+	}
+	if s.Exact != nil && s.Exact.Feasible {
+		ratio := s.ratio()
+		if ratio < yardstickMiss {
+			add("yardstick", "The search on the exact model alone found a better design: this one reaches %.5g of its aim.", ratio)
+		} else if !best.Assessment.Feasible {
+			add("yardstick", "The search on the exact model alone found a design that holds every limit.")
+		}
+	}
+	return list
+}
+
+// unmet names the rows an assessment does not meet.
+func unmet(a constraints.Assessment) string {
+	var names []string
+	for _, c := range a.Checks {
+		if c.Met {
+			continue
+		}
+		name := responseName(c.Quantity)
+		if c.Missing != nil {
+			names = append(names, name+" has no value: "+c.Missing.Error())
+			continue
+		}
+		names = append(names, fmt.Sprintf("%s is %s, asked %s", name, significant(c.Value), bounds(c.Low, c.High)))
+	}
+	if names == nil {
+		return "the aim has no value"
+	}
+	return strings.Join(names, "; ")
+}
+
+func responseName(q problems.Quantity) string {
+	name := q.Name
+	if q.Member != "" {
+		name += " (" + q.Member + ")"
+	}
+	if q.Point == problems.Geometry {
+		return name
+	}
+	return name + " at " + q.Point
+}
+
+// noMargin names the limits the design stands on.
+func (s *Study) noMargin() []Caution {
+	var names []string
+	for _, c := range s.Result.Best.Assessment.Checks {
+		if name := responseName(c.Quantity); c.Active && !slices.Contains(names, name) {
+			names = append(names, name)
+		}
+	}
+	switch len(names) {
+	case 0:
+		return nil
+	case 1:
+		return []Caution{{"no_margin", "", "A limit is met without margin: " + names[0] + ". It is violated in about half of all built inlets."}}
+	}
+	return []Caution{{"no_margin", "", fmt.Sprintf("%d limits are met without margin: %s. Each is violated in about half of all built inlets, at least one of them in more.",
+		len(names), strings.Join(names, ", "))}}
+}
+
+// liftedDefaults names default limits that no row keeps, or only a looser one.
+func (s *Study) liftedDefaults() []Caution {
+	var lifted, loosened grouped
+	kept := false
+	for _, d := range inlet.DefaultLimits(s.Problem.Definition()) {
+		low, high := math.Inf(-1), math.Inf(1)
+		for _, row := range s.Result.Rows {
+			if row.Quantity.Name == d.Quantity && row.Quantity.Point == d.Point && row.Kind != problems.Hard {
+				low, high = math.Max(low, row.Low), math.Min(high, row.High)
+			}
+		}
+		switch {
+		case d.Low > low && math.IsInf(low, -1), d.High < high && math.IsInf(high, 1):
+			lifted.add(d.Quantity, d.Point)
+		case d.Low > low || d.High < high:
+			loosened.add(fmt.Sprintf("%s (%s instead of %s)", d.Quantity, bounds(low, high), bounds(d.Low, d.High)), d.Point)
+		default:
+			kept = true
+		}
+	}
+	if !kept && loosened.keys == nil {
+		return []Caution{{"defaults_lifted", "", "The default limits are switched off: only those of the model itself and of the brief hold."}}
+	}
+	var list []Caution
+	if lifted.keys != nil {
+		list = append(list, Caution{"defaults_lifted", "", "Default limits are switched off: " + s.places(&lifted) + "."})
+	}
+	if loosened.keys != nil {
+		list = append(list, Caution{"defaults_loosened", "", "Default limits are loosened: " + s.places(&loosened) + "."})
+	}
+	return list
+}
+
+// places names each key with its points.
+func (s *Study) places(g *grouped) string {
+	parts := make([]string, len(g.keys))
+	for i, key := range g.keys {
+		switch points := g.items[key]; {
+		case points[0] == problems.Geometry:
+			parts[i] = key
+		case len(points) > 1 && len(points) == len(s.Flow.Points):
+			parts[i] = key + " at every point"
+		default:
+			parts[i] = key + " at " + strings.Join(points, " and ")
+		}
+	}
+	return strings.Join(parts, ", ")
+}
+
+// boundCautions are those of variables at the end of their range.
+func (s *Study) boundCautions() []Caution {
+	var list []Caution
+	for i, v := range s.Problem.Variables() {
+		side, bound := boundSide(v, s.Result.Best.X[i])
+		if side == "" {
+			continue
+		}
+		text := fmt.Sprintf("%s ends on the %s end of its range, %g: a wider range may hold a better design.", v.Name, side, bound)
+		if strings.HasPrefix(v.Name, "ramp_") && side == "lower" {
+			text = fmt.Sprintf("%s stands at its smallest angle, %g deg: the search asks to delete this ramp.", v.Name, bound)
+		}
+		list = append(list, Caution{"on_bound", "", text})
+	}
+	return list
+}
+
+// surrogateCautions are those of the surrogates of aim and limits.
+func (s *Study) surrogateCautions() []Caution {
+	var none, weak []string
+	quantities := s.Problem.Quantities()
+	for i := range s.Result.Fits {
+		f := &s.Result.Fits[i]
+		name := responseName(quantities[f.Quantity])
+		switch {
+		case f.Err != nil:
+			none = append(none, fmt.Sprintf("%s (%v)", name, f.Err))
+		case f.Choice.Fitted != nil && f.Choice.Quality.Q2 < lowQ2:
+			weak = append(weak, fmt.Sprintf("%s (Q2 %.3f)", name, f.Choice.Quality.Q2))
+		}
+	}
+	var list []Caution
+	if none != nil {
+		list = append(list, Caution{"no_surrogate", "", "No surrogate for " + strings.Join(none, ", ") + ": judged on exact values only."})
+	}
+	if weak != nil {
+		list = append(list, Caution{"weak_surrogate", "", "Surrogates that explain little of their quantity over the box: " + strings.Join(weak, ", ") + "."})
+	}
+	return list
+}
+
+// boundSide names the end of its range a variable stands on; empty inside.
+func boundSide(v problems.Variable, x float64) (side string, bound float64) {
+	reach := onBound * (v.High - v.Low)
+	switch {
+	case x <= v.Low+reach:
+		return "lower", v.Low
+	case x >= v.High-reach:
+		return "upper", v.High
+	}
+	return "", 0
+}

@@ -1,0 +1,201 @@
+// Package crossval chooses among surrogate kinds and output transforms by
+// leave-one-out error and keeps every kind's figures.
+package crossval
+
+import (
+	"context"
+	"errors"
+	"math"
+	"sync"
+
+	"rampwright/surrogate"
+	"rampwright/surrogate/gpr"
+	"rampwright/surrogate/pce"
+)
+
+// Settings says what to choose among. The zero value has no candidates; see
+// Choose for the usual call.
+type Settings struct {
+	// Candidates in the order of the table.
+	Candidates []surrogate.Model
+	// Transforms tried with each, where valid; none means Identity, Log, Logit.
+	Transforms []Transform
+	// Tie is the relative excess of error up to which a simpler fit is
+	// preferred; 0 means 0.01.
+	Tie float64
+	// Jobs is the number of fits run side by side; 0 means 1. The result does
+	// not depend on it.
+	Jobs int
+}
+
+// Figure is one line of the table of figures.
+type Figure struct {
+	Kind        string
+	Transform   Transform
+	Description string
+	Q2          float64
+	RMSE        float64 // of leave-one-out, in the output's unit
+	Coverage    float64 // of 95 % intervals
+	Candidate   int     // place in Settings.Candidates
+	Chosen      bool
+	Err         error // why there is no fit; the figures are then NaN
+}
+
+// Choice is the fit with the least leave-one-out error, and the figures of all.
+type Choice struct {
+	surrogate.Fitted
+	Kind      string
+	Transform Transform
+	Quality   surrogate.Quality
+	Figures   []Figure
+}
+
+// Choose fits every candidate on every valid transform and returns the best.
+func Choose(ctx context.Context, candidates []surrogate.Model, x [][]float64, y []float64) (Choice, error) {
+	return Settings{Candidates: candidates}.Choose(ctx, x, y)
+}
+
+const (
+	defaultTie = 0.01
+	// exactTie is the leave-one-out error, relative to the spread of the data,
+	// below which all fits count as exact.
+	exactTie = 1e-9
+)
+
+// Choose fits every candidate on every valid transform and returns the one with
+// the least root mean square leave-one-out error, in the output's unit; among
+// those within Tie of it, the simplest: least complexity, then the earliest
+// transform. A candidate that cannot be fitted keeps its error in the table;
+// when none can, the first error is returned.
+func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
+	if err := surrogate.Check(x, y, 1); err != nil {
+		return Choice{}, err
+	}
+	if len(s.Candidates) == 0 {
+		return Choice{}, errors.New("no candidate surrogate kinds")
+	}
+	figures, fits := s.fitAll(ctx, x, y)
+	if err := ctx.Err(); err != nil {
+		return Choice{}, err
+	}
+	best := s.pick(figures, fits, y)
+	if best < 0 {
+		return Choice{}, figures[0].Err
+	}
+	figures[best].Chosen = true
+	return Choice{
+		Fitted: fits[best], Kind: figures[best].Kind, Transform: figures[best].Transform,
+		Quality: surrogate.Assess(fits[best], y), Figures: figures,
+	}, nil
+}
+
+// fitAll fills one line and one fit for each candidate and valid transform.
+func (s Settings) fitAll(ctx context.Context, x [][]float64, y []float64) ([]Figure, []surrogate.Fitted) {
+	var figures []Figure
+	for c, model := range s.Candidates {
+		for _, t := range s.transforms() {
+			if t == Identity || t.Valid(y) == nil {
+				figures = append(figures, Figure{Kind: model.Kind(), Transform: t, Candidate: c})
+			}
+		}
+	}
+	fits := make([]surrogate.Fitted, len(figures))
+	jobs := min(max(s.Jobs, 1), len(figures))
+	var group sync.WaitGroup
+	for job := range jobs {
+		group.Go(func() {
+			for i := job; i < len(figures); i += jobs {
+				fits[i] = figures[i].fit(ctx, s.Candidates[figures[i].Candidate], x, y)
+			}
+		})
+	}
+	group.Wait()
+	return figures, fits
+}
+
+func (s Settings) transforms() []Transform {
+	if len(s.Transforms) == 0 {
+		return Transforms
+	}
+	return s.Transforms
+}
+
+// fit fits the model and fills the line.
+func (f *Figure) fit(ctx context.Context, model surrogate.Model, x [][]float64, y []float64) surrogate.Fitted {
+	fitted, err := Transformed{model, f.Transform}.Fit(ctx, x, y)
+	if err != nil {
+		f.Err, f.Q2, f.RMSE, f.Coverage = err, math.NaN(), math.NaN(), math.NaN()
+		return nil
+	}
+	quality := surrogate.Assess(fitted, y)
+	f.Description, f.Q2, f.RMSE, f.Coverage = fitted.Describe(), quality.Q2, quality.RMSE, quality.Coverage
+	return fitted
+}
+
+// pick returns the place of the best fit, or -1.
+func (s Settings) pick(figures []Figure, fits []surrogate.Fitted, y []float64) int {
+	least := math.Inf(1)
+	for i := range figures {
+		if fits[i] != nil {
+			least = math.Min(least, figures[i].RMSE)
+		}
+	}
+	tie := s.Tie
+	if tie == 0 {
+		tie = defaultTie
+	}
+	scaling, _, constant := surrogate.Standardise(y)
+	limit := math.Max(least*(1+tie), exactTie*scaling.Scale)
+	if constant {
+		limit = math.Max(least*(1+tie), exactTie*math.Abs(scaling.Center))
+	}
+	best := -1
+	for i := range figures {
+		if fits[i] == nil || !(figures[i].RMSE <= limit) {
+			continue
+		}
+		if best < 0 || simpler(figures[i], fits[i], figures[best], fits[best]) {
+			best = i
+		}
+	}
+	return best
+}
+
+func simpler(f Figure, fit surrogate.Fitted, g Figure, other surrogate.Fitted) bool {
+	if f.Transform != g.Transform && fit.Complexity() == other.Complexity() {
+		return f.Transform < g.Transform
+	}
+	return fit.Complexity() < other.Complexity()
+}
+
+// Refit fits the chosen kind on the chosen transform again, starting from what
+// it found: cheap, for a few samples more. The figures of the other kinds are
+// those of the choice. It returns *TransformError when a new output leaves the
+// domain of the transform: choose again then.
+func (c Choice) Refit(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
+	fitted, err := c.Fitted.Warm().Fit(ctx, x, y)
+	if err != nil {
+		return Choice{}, err
+	}
+	c.Fitted, c.Quality = fitted, surrogate.Assess(fitted, y)
+	c.Figures = append([]Figure(nil), c.Figures...)
+	for i := range c.Figures {
+		if f := &c.Figures[i]; f.Chosen {
+			f.Description, f.Q2, f.RMSE, f.Coverage = fitted.Describe(), c.Quality.Q2, c.Quality.RMSE, c.Quality.Coverage
+		}
+	}
+	return c, nil
+}
+
+// Default returns the candidates of a design run: least-squares, least-angle
+// and weighted expansion, and RBF Gaussian process. On 30..150 samples of 2..8
+// inputs the four with all transforms fit in well under a second.
+func Default(seed int64) []surrogate.Model {
+	return []surrogate.Model{pce.OLS{}, pce.LeastAngle{}, pce.Ridge{}, gpr.Config{Seed: seed}}
+}
+
+// Every returns the default candidates and, beyond them, the lasso and a
+// rougher Gaussian process, for studies where time does not matter.
+func Every(seed int64) []surrogate.Model {
+	return append(Default(seed), pce.Lasso{Seed: seed}, gpr.Config{Kernel: gpr.Matern52, Seed: seed})
+}

@@ -1,0 +1,95 @@
+package pce
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/blas"
+	"gonum.org/v1/gonum/blas/blas64"
+)
+
+// regression is a least-squares solution on P columns, standardised outputs.
+type regression struct {
+	coefficients []float64
+	residual     []float64
+	leverage     []float64 // h_i, diagonal of Q Q'
+	looResidual  []float64 // e_i/(1 - h_i)
+	looDeviation []float64 // s/sqrt(1 - h_i)
+	s            float64   // sqrt(RSS/(n - P))
+	columns      []int     // place of the regressed terms in the basis; nil: all of them
+	r            blas64.Triangular
+}
+
+// leading solves the least-squares problem on the first p columns.
+//
+// Leave-one-out residual e_i/(1 - h_i), its standard deviation s/sqrt(1 - h_i),
+// s^2 = RSS/(n - p) (Allen 1974; Cook 1977). With n = p, s is 0.
+func (f *qr) leading(p int, y []float64) *regression {
+	n := len(y)
+	g := &regression{
+		residual: append([]float64(nil), y...), leverage: make([]float64, n),
+		looResidual: make([]float64, n), looDeviation: make([]float64, n),
+		coefficients: make([]float64, p),
+		r:            blas64.Triangular{Uplo: blas.Upper, Diag: blas.NonUnit, N: p, Stride: p, Data: make([]float64, p*p)},
+	}
+	for k := range p {
+		copy(g.r.Data[k*p:(k+1)*p], f.r.Data[k*f.r.Stride:k*f.r.Stride+p])
+		for i := range y {
+			g.coefficients[k] += f.q.Data[i*f.q.Stride+k] * y[i]
+		}
+		f.project(k, g.residual, g.leverage)
+	}
+	blas64.Trsv(blas.NoTrans, g.r, blas64.Vector{N: p, Inc: 1, Data: g.coefficients})
+	rss := 0.0
+	for _, e := range g.residual {
+		rss += e * e
+	}
+	if n > p {
+		g.s = math.Sqrt(rss / float64(n-p))
+	}
+	for i, e := range g.residual {
+		room := math.Max(1-g.leverage[i], leverageFloor)
+		g.looResidual[i] = e / room
+		g.looDeviation[i] = g.s / math.Sqrt(room)
+	}
+	return g
+}
+
+// inflate multiplies the leave-one-out residuals and all deviations.
+func (g *regression) inflate(residuals, deviations float64) {
+	g.s *= deviations
+	for i := range g.looResidual {
+		g.looResidual[i] *= residuals
+		g.looDeviation[i] *= deviations
+	}
+}
+
+// deviation returns the prediction standard deviation of a new observation,
+//
+//	s sqrt(1 + psi' (Psi'Psi)^-1 psi) = s sqrt(1 + |R^-T psi|^2)
+//
+// (regression theory, e.g. Draper & Smith; the misfit is treated as noise).
+func (g *regression) deviation(s *scratch) float64 {
+	p := len(g.coefficients)
+	v := s.room(p)
+	if g.columns == nil {
+		copy(v, s.values)
+	} else {
+		for k, t := range g.columns {
+			v[k] = s.values[t]
+		}
+	}
+	blas64.Trsv(blas.Trans, g.r, blas64.Vector{N: p, Inc: 1, Data: v})
+	sum := 1.0
+	for _, c := range v {
+		sum += c * c
+	}
+	return g.s * math.Sqrt(sum)
+}
+
+// room returns n numbers of working space.
+func (s *scratch) room(n int) []float64 {
+	if cap(s.projected) < n {
+		s.projected = make([]float64, n)
+	}
+	return s.projected[:n]
+}

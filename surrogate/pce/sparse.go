@@ -1,0 +1,129 @@
+package pce
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/blas/blas64"
+	"rampwright/surrogate"
+)
+
+// selector proposes terms of a design matrix (column 0 the constant) for
+// standardised outputs, the most important first. With prefixes every leading
+// part of the list is a candidate, otherwise only the whole.
+type selector func(design blas64.General, y []float64) (order []int, prefixes bool)
+
+// mostSupport is the largest share of the samples that a sparse expansion may
+// have as terms.
+const mostSupport = 0.8
+
+// sparseFit is a candidate: least squares on selected columns of a level.
+type sparseFit struct {
+	level   int
+	columns []int // the constant first
+	factors *qr
+	error   float64 // corrected leave-one-out, root mean square
+}
+
+// fitSparse fits least squares on selected terms, level by level, and keeps the
+// level and support of least corrected leave-one-out error (Blatman & Sudret
+// 2011); beyond level 3 it stops after two levels without gain.
+func fitSparse(ctx context.Context, t Truncation, inputs []Input, most int, exactly bool, choose selector, x [][]float64, y []float64) (*Expansion, int, error) {
+	var extra []string
+	if most < 0 {
+		extra = []string{fmt.Sprintf("%d terms", most)}
+	}
+	resolved, scaling, scaled, err := prepare(t, inputs, extra, x, y)
+	if err != nil {
+		return nil, 0, err
+	}
+	if most == 0 {
+		most = defaultTerms
+	}
+	terms, ends := t.indices(len(resolved), most)
+	full := newBasis(resolved, terms)
+	design := full.design(x)
+	first := 0
+	if exactly {
+		first = len(ends) - 1
+	}
+	var best *sparseFit
+	for level := first; level < len(ends) && (best == nil || level <= max(best.level+2, 3)); level++ {
+		if err := ctx.Err(); err != nil {
+			return nil, 0, err
+		}
+		if fit := trySupport(design, ends[level], level, choose, scaled); best == nil || fit.error < best.error && best.error > exactError {
+			best = fit
+		}
+	}
+	return best.expansion(full, scaling, scaled, y), best.level, nil
+}
+
+// trySupport selects among the first p columns and returns the best support.
+func trySupport(design blas64.General, p, level int, choose selector, y []float64) *sparseFit {
+	columns, prefixes := []int{0}, false
+	if p > 1 {
+		var order []int
+		order, prefixes = choose(leadingColumns(design, p), y)
+		columns = append(columns, order...)
+	}
+	columns = columns[:min(len(columns), max(1, int(mostSupport*float64(len(y)))))]
+	factors := factorise(pick(design, columns))
+	errors, factor := factors.looErrors(y), factors.corrections()
+	size, least := 1, math.Inf(1)
+	for k, e := range errors {
+		if !prefixes && k > 0 && k < len(errors)-1 {
+			continue // the constant and the whole
+		}
+		if corrected := e * math.Sqrt(factor[k]); corrected < least && least > exactError {
+			size, least = k+1, corrected
+		}
+	}
+	return &sparseFit{level: level, columns: columns[:size], factors: factors, error: least}
+}
+
+// expansion builds the fitted expansion on the selected columns. Its terms were
+// selected on the samples they are fitted to, so plain leave-one-out flatters
+// it: residuals are those of the corrected error (times sqrt(T)), and the
+// variance is T RSS/n.
+func (f *sparseFit) expansion(full *basis, scaling surrogate.Scaling, scaled, y []float64) *Expansion {
+	keep := make([]bool, len(full.terms))
+	for _, t := range f.columns {
+		keep[t] = true
+	}
+	terms, from := closed(full.terms, full, keep)
+	place := make(map[int]int, len(from))
+	for to, t := range from {
+		place[t] = to
+	}
+	size := len(f.columns)
+	r := f.factors.leading(size, scaled)
+	if factor := f.factors.corrections()[size-1]; size > 1 && !math.IsInf(factor, 1) {
+		r.inflate(math.Sqrt(factor), math.Sqrt(factor*float64(len(y)-size)/float64(len(y))))
+	}
+	e := &Expansion{basis: newBasis(full.inputs, terms), scaling: scaling, spread: r, active: size}
+	e.scaled = make([]float64, len(terms))
+	for k, t := range f.columns {
+		r.columns = append(r.columns, place[t])
+		e.scaled[place[t]] = r.coefficients[k]
+	}
+	e.setLeaveOneOut(y, r.looResidual, r.looDeviation)
+	e.rank = 500_000
+	return e
+}
+
+func leadingColumns(m blas64.General, p int) blas64.General {
+	return blas64.General{Rows: m.Rows, Cols: p, Stride: m.Stride, Data: m.Data}
+}
+
+// pick returns a copy of the given columns.
+func pick(m blas64.General, columns []int) blas64.General {
+	out := blas64.General{Rows: m.Rows, Cols: len(columns), Stride: len(columns), Data: make([]float64, m.Rows*len(columns))}
+	for i := range m.Rows {
+		for k, c := range columns {
+			out.Data[i*out.Stride+k] = m.Data[i*m.Stride+c]
+		}
+	}
+	return out
+}
