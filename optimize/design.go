@@ -230,7 +230,10 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 		r.Candidates = append(r.Candidates, candidate)
 	}
 	r.Best = r.Candidates[0]
-	if err := d.fitWide(context.WithoutCancel(ctx)); err == nil {
+	if len(d.training) > d.plan.dimension()+2 {
+		if err := d.fitWide(context.WithoutCancel(ctx)); err != nil {
+			return nil, err
+		}
 		r.Fits = d.wide.fits
 	}
 	for i, s := range d.samples {

@@ -4,6 +4,7 @@ import (
 	"context"
 	"math"
 
+	"rampwright/constraints"
 	"rampwright/problems"
 )
 
@@ -49,9 +50,7 @@ type Relaxation struct {
 // Explanation is why no exact design meets all limits, by exact search.
 type Explanation struct {
 	Feasible    bool      // a design that meets all limits was found after all
-	X           []float64 // of least violation, in the variables' units
-	Evaluation  *problems.Evaluation
-	Violation   float64 // sum of scaled violations there
+	Least       Candidate // the exact design of least violation; no surrogate predicted it
 	Conflicts   []Conflict
 	Relaxations []Relaxation
 	Starts      int // local searches behind each answer "cannot be met"
@@ -69,9 +68,8 @@ func Explain(ctx context.Context, task Task, settings Settings) (*Explanation, e
 	if err != nil {
 		return nil, err
 	}
-	out := &Explanation{Feasible: least.violation == 0, X: least.x, Violation: least.violation, Starts: e.starts}
-	out.Evaluation = problems.NewEvaluation(len(task.Problem.Quantities()))
-	if err := task.Problem.Evaluate(ctx, least.x, out.Evaluation); err != nil {
+	out := &Explanation{Feasible: least.violation == 0, Starts: e.starts}
+	if out.Least, err = e.evidence(least.x); err != nil {
 		return nil, err
 	}
 	if !out.Feasible {
@@ -84,6 +82,25 @@ func Explain(ctx context.Context, task Task, settings Settings) (*Explanation, e
 	}
 	out.Evaluations = e.evaluations
 	return out, nil
+}
+
+// evidence judges a design by both exact routes.
+func (e *explainer) evidence(x []float64) (Candidate, error) {
+	plan, err := newPlan(e.task)
+	if err != nil {
+		return Candidate{}, err
+	}
+	evaluation := problems.NewEvaluation(len(plan.quantities))
+	if err := e.task.Problem.Evaluate(e.ctx, x, evaluation); err != nil {
+		return Candidate{}, err
+	}
+	e.evaluations++
+	s := plan.judge(plan.normal(x), evaluation)
+	c := Candidate{
+		X: x, Exact: evaluation, AimExact: s.aim, AimPredicted: math.NaN(), SurrogateError: math.NaN(),
+		Predicted: unpredicted(len(plan.quantities)), Assessment: constraints.Assess(plan.rows, evaluation),
+	}
+	return c, c.verify(e.ctx, e.task.Problem)
 }
 
 // explainer is an explanation under way.

@@ -15,25 +15,51 @@ const RouteAgreement = 1e-10
 // candidate closes the evidence on a sample: the second route, margins, prices.
 func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) {
 	c := Candidate{
-		X: s.x, Exact: s.evaluation, RouteGap: math.NaN(),
-		AimExact: s.aim, AimPredicted: math.NaN(), SurrogateError: math.Inf(1),
+		X: s.x, Exact: s.evaluation, AimExact: s.aim, AimPredicted: math.NaN(), SurrogateError: math.Inf(1),
 		Assessment: constraints.Assess(d.plan.rows, s.evaluation),
 	}
-	if err := d.audit(context.WithoutCancel(ctx), s); err != nil {
-		return c, err
-	}
-	c.Predicted, c.AimPredicted, c.SurrogateError = d.audited.predicted, d.audited.aim, d.audited.err
-	d.pricesAt(s, c.Assessment.Checks)
-	if verifier, ok := d.plan.problem.(problems.Verifier); ok {
-		// The evidence is due even when the time is up.
-		c.Second = problems.NewEvaluation(len(d.plan.quantities))
-		if err := verifier.Verify(context.WithoutCancel(ctx), s.x, c.Second); err != nil {
+	if len(d.training) > d.plan.dimension()+2 { // fewer, after an interruption, fit nothing
+		if err := d.audit(context.WithoutCancel(ctx), s); err != nil {
 			return c, err
 		}
+		c.Predicted, c.AimPredicted, c.SurrogateError = d.audited.predicted, d.audited.aim, d.audited.err
+		d.pricesAt(s, c.Assessment.Checks)
+	} else {
+		c.Predicted = unpredicted(len(d.plan.quantities))
+	}
+	// The evidence is due even when the time is up.
+	if err := c.verify(context.WithoutCancel(ctx), d.plan.problem); err != nil {
+		return c, err
+	}
+	if c.Second != nil {
 		d.counts.Verify++
-		c.RouteGap = routeGap(c.Exact, c.Second)
 	}
 	return c, nil
+}
+
+// unpredicted is a prediction of nothing.
+func unpredicted(n int) []float64 {
+	values := make([]float64, n)
+	for i := range values {
+		values[i] = math.NaN()
+	}
+	return values
+}
+
+// verify computes the candidate by the second exact route, where the problem has
+// one.
+func (c *Candidate) verify(ctx context.Context, problem problems.Problem) error {
+	c.RouteGap = math.NaN()
+	verifier, ok := problem.(problems.Verifier)
+	if !ok {
+		return nil
+	}
+	c.Second = problems.NewEvaluation(len(c.Exact.Values))
+	if err := verifier.Verify(ctx, c.X, c.Second); err != nil {
+		return err
+	}
+	c.RouteGap = routeGap(c.Exact, c.Second)
+	return nil
 }
 
 // routeGap is the largest difference between two evaluations, relative to values

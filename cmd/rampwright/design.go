@@ -109,13 +109,17 @@ func (a *app) design(study *study, dir string) (err error) {
 	if err != nil {
 		return a.cutShort(err, interruption)
 	}
-	exact, flow, err := a.yardstick(ctx, study, settings, result)
+	exact, explained, err := a.afterwards(ctx, study, settings, result)
+	if err != nil {
+		return err
+	}
+	flow, err := study.problem.Flow(context.WithoutCancel(ctx), result.Best.X)
 	if err != nil {
 		return err
 	}
 	document := report.NewDesign(study.head(settings.Seed), report.Study{
 		Problem: study.problem, Aim: study.brief.Aim, Agreement: settings.Agreement,
-		Result: result, Exact: exact, Flow: flow,
+		Result: result, Exact: exact, Explained: explained, Flow: flow,
 	})
 	run := runRecord(began, a.jobs, counter)
 	if err := store(folder, study, document, result, flow, run); err != nil {
@@ -140,25 +144,39 @@ func (a *app) cutShort(err error, interruption *interruption) error {
 	return err
 }
 
-// yardstick searches the exact model alone, afterwards, and computes the flow of
-// the best design.
-func (a *app) yardstick(ctx context.Context, study *study, settings optimize.Settings, result *optimize.Result) (*optimize.ExactSearch, *inlet.Flow, error) {
-	flow, err := study.problem.Flow(context.WithoutCancel(ctx), result.Best.X)
-	if err != nil {
-		return nil, nil, err
-	}
-	if ctx.Err() != nil {
-		return nil, flow, nil // no time left for it; the document says so
-	}
+// afterwards runs what never feeds the search: the exact search as yardstick and,
+// where nothing holds every limit, the explanation why. A context that ends
+// leaves them out; the document says so.
+func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Settings, result *optimize.Result) (*optimize.ExactSearch, *optimize.Explanation, error) {
 	task := optimize.Task{Problem: study.problem, Limits: study.limits, Aim: study.brief.Aim}
-	exact, err := optimize.SearchExact(ctx, task, settings)
-	if err != nil && ctx.Err() == nil {
-		return nil, nil, err
+	if result.Status != optimize.Infeasible {
+		exact, err := optimize.SearchExact(ctx, task, settings)
+		return exact, nil, unlessEnded(ctx, err)
 	}
+	a.say("nothing holds every limit yet: searching the exact model for the reason\n")
+	explained, err := optimize.Explain(ctx, task, settings)
 	if err != nil {
-		exact = nil
+		return nil, nil, unlessEnded(ctx, err)
 	}
-	return exact, flow, nil
+	if explained.Feasible {
+		result.Status = optimize.NotVerified
+		result.Why = "the exact search found a design that holds every limit; the surrogates did not lead to one: raise effort.samples or effort.infill"
+	}
+	result.Best = explained.Least
+	result.Candidates = []optimize.Candidate{explained.Least}
+	if explained.Feasible {
+		explained = nil
+	}
+	exact, err := optimize.SearchExact(ctx, task, settings)
+	return exact, explained, unlessEnded(ctx, err)
+}
+
+// unlessEnded drops the error of a search cut short.
+func unlessEnded(ctx context.Context, err error) error {
+	if ctx.Err() != nil {
+		return nil
+	}
+	return err
 }
 
 // ending turns a status into the exit code.
@@ -213,7 +231,7 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 		{"result.json", document.JSON()},
 		{"run.json", append(runJSON, '\n')},
 		{"brief.yaml", study.brief.ResolvedYAML()},
-		{"samples.csv", report.SamplesCSV(study.problem, sampleRows(result))},
+		{"samples.csv", report.SamplesCSV(study.problem, result.Samples)},
 		{"stations.csv", states},
 	}
 	if flow.ContourErr == nil {
@@ -247,12 +265,4 @@ func drawings(study *study, flow *inlet.Flow) ([]file, error) {
 		return nil, err
 	}
 	return []file{{"profile.csv", points}, {"inlet.svg", view}}, nil
-}
-
-func sampleRows(result *optimize.Result) []report.Sample {
-	rows := make([]report.Sample, len(result.Samples))
-	for i, s := range result.Samples {
-		rows[i] = report.Sample{Purpose: s.Purpose, X: s.X, Evaluation: s.Evaluation}
-	}
-	return rows
 }

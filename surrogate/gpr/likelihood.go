@@ -16,7 +16,7 @@ type solver struct {
 	slopes  []float64         // kernel sensitivity of each pair
 	inverse []float64         // 1/l_j^2
 	white   []float64         // L^-1 y, then residuals
-	trended []float64         // L^-1 F, n x q by rows
+	trended []float64         // (L^-1 F)', q x n by rows
 	gram    blas64.Triangular // Cholesky factor of F' R^-1 F
 	beta    []float64         // trend coefficients
 	alpha   []float64         // R^-1 (y - F beta)
@@ -85,28 +85,19 @@ func (s *solver) factorise() bool {
 func (s *solver) profile() bool {
 	n, q := s.n, s.q
 	copy(s.white, s.y)
-	blas64.Trsv(blas.NoTrans, s.r, vector(s.white))
+	forward(s.r, s.white)
 	if q > 0 {
 		copy(s.trended, s.f)
-		trended := blas64.General{Rows: n, Cols: q, Stride: q, Data: s.trended}
-		blas64.Trsm(blas.Left, blas.NoTrans, 1, s.r, trended)
+		trended := blas64.General{Rows: q, Cols: n, Stride: n, Data: s.trended}
+		blas64.Trsm(blas.Right, blas.Trans, 1, s.r, trended)
 		gram := blas64.Symmetric{Uplo: blas.Lower, N: q, Stride: q, Data: s.gram.Data}
-		blas64.Syrk(blas.Trans, 1, trended, 0, gram)
-		largest := 0.0
-		for j := range q {
-			largest = math.Max(largest, s.gram.Data[j*q+j])
-		}
-		if _, ok := lapack64.Potrf(gram); !ok {
+		blas64.Syrk(blas.NoTrans, 1, trended, 0, gram)
+		if !s.factoriseGram(gram) {
 			return false
 		}
-		for j := range q {
-			if pivot := s.gram.Data[j*q+j]; pivot*pivot < trendFloor*largest {
-				return false
-			}
-		}
-		blas64.Gemv(blas.Trans, 1, trended, vector(s.white), 0, vector(s.beta))
+		blas64.Gemv(blas.NoTrans, 1, trended, vector(s.white), 0, vector(s.beta))
 		s.solveGram(s.beta)
-		blas64.Gemv(blas.NoTrans, -1, trended, vector(s.beta), 1, vector(s.white))
+		blas64.Gemv(blas.Trans, -1, trended, vector(s.beta), 1, vector(s.white))
 	}
 	quadratic := 0.0
 	for _, w := range s.white {
@@ -114,7 +105,25 @@ func (s *solver) profile() bool {
 	}
 	s.s2 = quadratic / float64(n)
 	copy(s.alpha, s.white)
-	blas64.Trsv(blas.Trans, s.r, vector(s.alpha))
+	backward(s.r, s.alpha)
+	return true
+}
+
+// factoriseGram replaces F'R^-1 F by its Cholesky factor; false when the trend
+// functions depend on one another at the samples.
+func (s *solver) factoriseGram(gram blas64.Symmetric) bool {
+	largest := 0.0
+	for j := range s.q {
+		largest = math.Max(largest, gram.Data[j*s.q+j])
+	}
+	if _, ok := lapack64.Potrf(gram); !ok {
+		return false
+	}
+	for j := range s.q {
+		if pivot := gram.Data[j*s.q+j]; pivot*pivot < trendFloor*largest {
+			return false
+		}
+	}
 	return true
 }
 
@@ -124,8 +133,8 @@ const trendFloor = 1e-13
 
 // solveGram overwrites v by (F'R^-1 F)^-1 v.
 func (s *solver) solveGram(v []float64) {
-	blas64.Trsv(blas.NoTrans, s.gram, vector(v))
-	blas64.Trsv(blas.Trans, s.gram, vector(v))
+	forward(s.gram, v)
+	backward(s.gram, v)
 }
 
 // smallestVariance keeps the logarithm finite where the trend alone reproduces
@@ -182,5 +191,3 @@ func (s *solver) gradient(dst []float64, nugget float64) {
 		dst[d] = 0.5 * nugget * trace
 	}
 }
-
-func vector(v []float64) blas64.Vector { return blas64.Vector{N: len(v), Inc: 1, Data: v} }

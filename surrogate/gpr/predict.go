@@ -122,7 +122,7 @@ func (p *Process) Predict(x []float64) (mean, deviation float64) {
 		sum += a * s.k[i]
 	}
 	copy(s.white, s.k)
-	blas64.Trsv(blas.NoTrans, p.factor, vector(s.white))
+	forward(p.factor, s.white)
 	ofTrend := p.trendVariance(s, x)
 	variance := 1 - blas64.Dot(vector(s.white), vector(s.white))
 	if variance < cancelled {
@@ -138,9 +138,9 @@ func (p *Process) trendVariance(s *scratch, x []float64) float64 {
 		return 0
 	}
 	p.config.Trend.functions(s.trend, x)
-	trended := blas64.General{Rows: p.n, Cols: p.q, Stride: p.q, Data: p.trended}
-	blas64.Gemv(blas.Trans, -1, trended, vector(s.white), 1, vector(s.trend))
-	blas64.Trsv(blas.NoTrans, p.gram, vector(s.trend))
+	trended := blas64.General{Rows: p.q, Cols: p.n, Stride: p.n, Data: p.trended}
+	blas64.Gemv(blas.NoTrans, -1, trended, vector(s.white), 1, vector(s.trend))
+	forward(p.gram, s.trend)
 	return dot(s.trend, s.trend)
 }
 
@@ -158,7 +158,7 @@ func (p *Process) nearSample(s *scratch, i int, least float64) float64 {
 		s.white[k] = s.k[k] - p.config.Kernel.correlation(p.squared(own, k))
 	}
 	s.white[i] = -(p.hyper.Nugget + away)
-	blas64.Trsv(blas.NoTrans, p.factor, vector(s.white))
+	forward(p.factor, s.white)
 	return p.hyper.Nugget + 2*away - blas64.Dot(vector(s.white), vector(s.white))
 }
 

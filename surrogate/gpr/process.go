@@ -22,7 +22,7 @@ type Process struct {
 	beta    []float64
 	s2      float64 // process variance, standardised
 	factor  blas64.Triangular
-	trended []float64 // L^-1 F, n x q
+	trended []float64 // (L^-1 F)', q x n
 	gram    blas64.Triangular
 
 	hyper        Hyper
@@ -103,17 +103,19 @@ func (s *search) process(f found, scaling surrogate.Scaling, y []float64) (*Proc
 func (p *Process) leaveOneOut(w *solver, y []float64) {
 	n, q := p.n, p.q
 	lapack64.Potri(w.r)
-	solved := append([]float64(nil), p.trended...) // R^-1 F
+	solved := append([]float64(nil), p.trended...) // (R^-1 F)'
 	if q > 0 {
-		blas64.Trsm(blas.Left, blas.Trans, 1, p.factor, blas64.General{Rows: n, Cols: q, Stride: q, Data: solved})
+		blas64.Trsm(blas.Right, blas.NoTrans, 1, p.factor, blas64.General{Rows: q, Cols: n, Stride: n, Data: solved})
 	}
 	p.loo, p.looDeviation = make([]float64, n), make([]float64, n)
 	row := make([]float64, q)
 	for i := range n {
 		diagonal := w.r.Data[i*w.r.Stride+i]
 		if q > 0 {
-			copy(row, solved[i*q:(i+1)*q])
-			blas64.Trsv(blas.NoTrans, p.gram, vector(row))
+			for j := range row {
+				row[j] = solved[j*n+i]
+			}
+			forward(p.gram, row)
 			diagonal -= dot(row, row)
 		}
 		diagonal = math.Max(diagonal, smallestVariance)

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"runtime"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -352,4 +353,72 @@ func BenchmarkPredict(b *testing.B) {
 
 func name(n int) string {
 	return fmt.Sprintf("n=%d", n)
+}
+
+// On up to 200 samples the subset and polish end at the optimum of the full
+// multi-start: log posteriors within 0.05, lengths within 2 %. And the bytes are
+// the same for one and two processors.
+func TestSubsetThenPolish(t *testing.T) {
+	x, y := samples(200, 3, 11, smooth)
+	full := fit(t, Config{SubsetAbove: -1, Jobs: 2}, x, y)
+	before := runtime.GOMAXPROCS(1)
+	one := fit(t, Config{}, x, y)
+	runtime.GOMAXPROCS(2)
+	p := fit(t, Config{Jobs: 2}, x, y)
+	runtime.GOMAXPROCS(before)
+	if !(p.Evidence().LogPosterior > full.Evidence().LogPosterior-0.05) {
+		t.Errorf("log posterior %g, full search %g", p.Evidence().LogPosterior, full.Evidence().LogPosterior)
+	}
+	for j, l := range p.Hyper().Lengths {
+		near(t, "length", l, full.Hyper().Lengths[j], 0.02)
+		if l != one.Hyper().Lengths[j] {
+			t.Errorf("length %d is %v on two processors, %v on one", j, l, one.Hyper().Lengths[j])
+		}
+	}
+}
+
+// Pooled over ten designs, 95 % intervals cover 85 to 100 % of fresh points.
+func TestIntervalsCover(t *testing.T) {
+	for _, c := range []Config{{}, {Kernel: Matern52}, {Noise: Estimate}, {Trend: Linear}} {
+		inside, total := 0, 0
+		for seed := range int64(10) {
+			x, y := samples(40, 3, seed, smooth)
+			p := fit(t, c, x, y)
+			fresh, truth := samples(100, 3, 100+seed, smooth)
+			for i, u := range fresh {
+				mean, deviation := p.Predict(u)
+				if math.Abs(mean-truth[i]) <= 1.96*deviation {
+					inside++
+				}
+				total++
+			}
+		}
+		if share := float64(inside) / float64(total); share < 0.85 {
+			t.Errorf("%+v: 95 %% intervals cover %.3f", c, share)
+		}
+	}
+}
+
+// With noise of standard deviation 0.1 on the outputs the estimated nugget
+// finds its variance within a factor 1.5, and the mean lies closer to the truth
+// than the noise.
+func TestNoiseIsEstimated(t *testing.T) {
+	x, y := samples(120, 2, 12, smooth)
+	noise := doe.Stream(1, "noise")
+	clean := append([]float64(nil), y...)
+	for i := range y {
+		y[i] += 0.1 * noise.NormFloat64()
+	}
+	p := fit(t, Config{Noise: Estimate}, x, y)
+	found := math.Sqrt(p.Hyper().Nugget * p.Hyper().Variance)
+	if found < 0.1/1.5 || found > 0.1*1.5 {
+		t.Errorf("noise deviation %g, want 0.1", found)
+	}
+	sum := 0.0
+	for i := range x {
+		sum += (p.Mean(x[i]) - clean[i]) * (p.Mean(x[i]) - clean[i])
+	}
+	if rmse := math.Sqrt(sum / 120); rmse > 0.05 {
+		t.Errorf("the mean is off by %g", rmse)
+	}
 }

@@ -7,7 +7,7 @@ type sample struct {
 	y       []float64 // standardised outputs
 	kernel  Kernel
 	trend   Trend
-	f       []float64 // n x q trend functions, by rows
+	f       []float64 // q x n trend functions, by rows
 	q       int
 	squares []float64 // (x_ij - x_kj)^2 of each pair i > k, pair by pair, d numbers each
 }
@@ -19,8 +19,12 @@ func newSample(x [][]float64, y []float64, kernel Kernel, trend Trend) *sample {
 	q := trend.terms(d)
 	s := &sample{n: n, d: d, x: x, y: y, kernel: kernel, trend: trend, q: q,
 		f: make([]float64, n*q), squares: make([]float64, 0, n*(n-1)/2*d)}
+	functions := make([]float64, q)
 	for i, a := range x {
-		trend.functions(s.f[i*q:(i+1)*q], a)
+		trend.functions(functions, a)
+		for j, v := range functions {
+			s.f[j*n+i] = v
+		}
 		for _, b := range x[:i] {
 			for j, v := range a {
 				s.squares = append(s.squares, (v-b[j])*(v-b[j]))

@@ -11,12 +11,12 @@ import (
 type regression struct {
 	coefficients []float64
 	residual     []float64
-	leverage     []float64 // h_i, diagonal of Q Q'
-	looResidual  []float64 // e_i/(1 - h_i)
-	looDeviation []float64 // s/sqrt(1 - h_i)
-	s            float64   // sqrt(RSS/(n - P))
-	columns      []int     // place of the regressed terms in the basis; nil: all of them
-	r            blas64.Triangular
+	leverage     []float64         // h_i, diagonal of Q Q'
+	looResidual  []float64         // e_i/(1 - h_i)
+	looDeviation []float64         // s/sqrt(1 - h_i)
+	s            float64           // sqrt(RSS/(n - P))
+	columns      []int             // place of the regressed terms in the basis; nil: all of them
+	lower        blas64.Triangular // R'
 }
 
 // leading solves the least-squares problem on the first p columns.
@@ -29,16 +29,18 @@ func (f *qr) leading(p int, y []float64) *regression {
 		residual: append([]float64(nil), y...), leverage: make([]float64, n),
 		looResidual: make([]float64, n), looDeviation: make([]float64, n),
 		coefficients: make([]float64, p),
-		r:            blas64.Triangular{Uplo: blas.Upper, Diag: blas.NonUnit, N: p, Stride: p, Data: make([]float64, p*p)},
+		lower:        blas64.Triangular{Uplo: blas.Lower, Diag: blas.NonUnit, N: p, Stride: p, Data: make([]float64, p*p)},
 	}
 	for k := range p {
-		copy(g.r.Data[k*p:(k+1)*p], f.r.Data[k*f.r.Stride:k*f.r.Stride+p])
+		for i := range k + 1 {
+			g.lower.Data[k*p+i] = f.r.Data[i*f.r.Stride+k]
+		}
 		for i := range y {
 			g.coefficients[k] += f.q.Data[i*f.q.Stride+k] * y[i]
 		}
 		f.project(k, g.residual, g.leverage)
 	}
-	blas64.Trsv(blas.NoTrans, g.r, blas64.Vector{N: p, Inc: 1, Data: g.coefficients})
+	blas64.Trsv(blas.Trans, g.lower, vector(g.coefficients))
 	rss := 0.0
 	for _, e := range g.residual {
 		rss += e * e
@@ -78,7 +80,8 @@ func (g *regression) deviation(s *scratch) float64 {
 			v[k] = s.values[t]
 		}
 	}
-	blas64.Trsv(blas.Trans, g.r, blas64.Vector{N: p, Inc: 1, Data: v})
+	row := blas64.General{Rows: 1, Cols: p, Stride: p, Data: v} // solved by dot products
+	blas64.Trsm(blas.Right, blas.Trans, 1, g.lower, row)
 	sum := 1.0
 	for _, c := range v {
 		sum += c * c

@@ -16,6 +16,7 @@ type Study struct {
 	Agreement float64 // largest scaled error of the surrogates asked for; 0 means the default of optimize
 	Result    *optimize.Result
 	Exact     *optimize.ExactSearch // the yardstick; nil when it was not run
+	Explained *optimize.Explanation // why nothing holds every limit; nil where something does
 	Flow      *inlet.Flow           // exact flow of Result.Best
 }
 
@@ -33,8 +34,8 @@ type DesignDocument struct {
 	Fits        []Fit       `json:"fits"`
 	ExactSearch ExactSearch `json:"exact_search"`
 	Evaluations Evaluations `json:"evaluations"`
-	Conflicts   []any       `json:"conflicts"`
-	Relaxation  []any       `json:"relaxation"`
+	Conflicts   []Conflict  `json:"conflicts"`
+	Relaxation  []Loosened  `json:"relaxation"`
 	History     []Step      `json:"history"`
 	Inlet       Shape       `json:"inlet"`
 	Points      []Point     `json:"points"` // stations; quantities are in Best
@@ -96,7 +97,6 @@ type Limit struct {
 	Active   bool           `json:"active"`
 	Price    Number         `json:"price"` // gain of the aim for each unit the limit is loosened
 	Kind     string         `json:"kind"`
-	Source   string         `json:"source"`
 	Missing  Object[string] `json:"missing,omitzero"`
 }
 
@@ -151,7 +151,7 @@ func NewDesign(head Head, study Study) *DesignDocument {
 	d := &DesignDocument{
 		Format: format, Program: head.Program, Title: head.Title, Seed: head.Seed, BriefHash: head.BriefHash,
 		Status: result.Status.String(), Why: result.Why,
-		Candidates: []Candidate{}, Fits: []Fit{}, History: []Step{}, Conflicts: []any{}, Relaxation: []any{},
+		Candidates: []Candidate{}, Fits: []Fit{}, History: []Step{}, Conflicts: study.conflicts(), Relaxation: study.relaxation(),
 		Evaluations: Evaluations(result.Counts),
 		Inlet:       flow.Inlet, Points: flow.Points, Assumptions: flow.Assumptions,
 		study: study, readings: readings(study.Problem.Quantities(), result.Best.Exact),
@@ -307,7 +307,7 @@ func newLimit(c *constraints.Check) Limit {
 	l := Limit{
 		Quantity: c.Quantity.Name, Member: c.Quantity.Member, At: c.Quantity.Point,
 		Low: Number(c.Low), High: Number(c.High), Value: Number(c.Value), Margin: Number(c.Margin),
-		Met: c.Met, Active: c.Active, Price: Number(c.Price), Kind: c.Kind.String(), Source: c.Source,
+		Met: c.Met, Active: c.Active, Price: Number(c.Price), Kind: c.Kind.String(),
 	}
 	if c.Missing != nil {
 		l.Missing = Object[string]{{"value", c.Missing.Error()}}

@@ -1,0 +1,337 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"math"
+	"math/rand/v2"
+	"runtime"
+	"sync"
+	"testing"
+
+	gonum "gonum.org/v1/gonum/optimize"
+
+	"rampwright/problems"
+)
+
+const (
+	// leastShare of the independent optimum a design must reach.
+	leastShare = 0.9999
+	// yardstickStarts are random starts of the independent search.
+	yardstickStarts = 200
+	// yardstickAgain are the best of them searched again from a fresh simplex.
+	yardstickAgain = 20
+)
+
+// Every starter design is verified, and as good as the best point an independent
+// search finds on the exact model.
+func TestStartersReachTheIndependentOptimum(t *testing.T) {
+	for _, name := range starters {
+		t.Run(name, func(t *testing.T) {
+			var result yardstickResult
+			d := designStarter(t, name)
+			decode(t, d.out, &result)
+			if string(d.out) != string(d.files["result.json"]) {
+				t.Error("the document printed is not result.json")
+			}
+			result.check(t)
+			target := newPenalty(starterStudy(t, name))
+			best := target.search(t)
+			t.Logf("design %.10f, independent search %.10f, ratio %.8f", result.Best.Aim.Exact, best, result.Best.Aim.Exact/best)
+			if share := result.Best.Aim.Exact / best; !(share >= leastShare) {
+				t.Errorf("the design reaches %.6f of the independent optimum %.8f", share, best)
+			}
+			// A yardstick that falls short itself measures nothing.
+			if !(best >= leastShare*result.Best.Aim.Exact) {
+				t.Errorf("the independent search found %.8f only, the design %.8f", best, result.Best.Aim.Exact)
+			}
+		})
+	}
+}
+
+type yardstickResult struct {
+	Status string
+	Best   struct {
+		Feasible bool
+		Evidence struct {
+			RouteGap       *float64 `json:"route_gap"`
+			SurrogateError *float64 `json:"surrogate_error"`
+		}
+		Aim    struct{ Exact float64 }
+		Limits []struct {
+			Quantity, Member, At string
+			Margin               *float64
+		}
+	}
+	ExactSearch struct{ Aim float64 } `json:"exact_search"`
+}
+
+func (r *yardstickResult) check(t *testing.T) {
+	t.Helper()
+	if r.Status != "verified" || !r.Best.Feasible {
+		t.Errorf("status %s, feasible %t", r.Status, r.Best.Feasible)
+	}
+	if gap := r.Best.Evidence.RouteGap; gap == nil || !(*gap <= 1e-10) {
+		t.Errorf("route gap %v", gap)
+	}
+	if e := r.Best.Evidence.SurrogateError; e == nil || !(*e <= 1e-3) {
+		t.Errorf("surrogate error %v", e)
+	}
+	judged := 0
+	for _, limit := range r.Best.Limits {
+		if limit.Margin == nil {
+			continue // does not apply; the status says so
+		}
+		judged++
+		if !(*limit.Margin >= 0) {
+			t.Errorf("%s %s at %s has margin %g", limit.Quantity, limit.Member, limit.At, *limit.Margin)
+		}
+	}
+	if judged < 10 {
+		t.Errorf("only %d limits were judged", judged)
+	}
+}
+
+// penalty is the aim of a study with its limits as an exact l1 penalty, worked
+// out from the limits themselves: it shares only the model with the design.
+type penalty struct {
+	problem *indexed
+	limits  []indexedLimit
+	parts   []indexedPart
+	weights float64
+	linear  []linearLimit
+}
+
+type indexed struct {
+	problems.Problem
+	variables []problems.Variable
+	size      int
+}
+
+type indexedLimit struct {
+	index      int
+	low, high  float64
+	scale      float64
+	unlimiting bool
+}
+
+type indexedPart struct {
+	weight float64
+	index  int
+}
+
+type linearLimit struct {
+	a            []float64
+	b, low, high float64
+}
+
+// penaltyWeight exceeds every multiplier of the starters, whose largest price is
+// below 5 for one scaled unit.
+const penaltyWeight = 20
+
+func newPenalty(s *study) *penalty {
+	quantities := s.problem.Quantities()
+	p := &penalty{problem: &indexed{s.problem, s.problem.Variables(), len(quantities)}}
+	for _, limit := range s.limits {
+		for i, q := range quantities {
+			if q.Name != limit.Quantity || q.Point != limit.Point {
+				continue
+			}
+			scale := 1.0
+			for _, side := range []float64{limit.Low, limit.High} {
+				if !math.IsInf(side, 0) {
+					scale = math.Max(scale, math.Abs(side))
+				}
+			}
+			p.limits = append(p.limits, indexedLimit{index: i, low: limit.Low, high: limit.High, scale: scale})
+			if a, b, ok := s.problem.LinearForm(i); ok {
+				p.linear = append(p.linear, linearLimit{a, b, limit.Low, limit.High})
+			}
+		}
+	}
+	for _, part := range s.brief.Aim.Parts {
+		weight := part.Weight
+		if s.brief.Aim.Aggregate == problems.Single {
+			weight = 1
+		}
+		for i, q := range quantities {
+			if q.Name == part.Reads[0].Quantity && q.Point == part.Reads[0].Point {
+				p.parts = append(p.parts, indexedPart{weight, i})
+				p.weights += weight
+			}
+		}
+	}
+	return p
+}
+
+// walker evaluates the penalty on one goroutine and keeps the best point that
+// met every limit.
+type walker struct {
+	*penalty
+	evaluation *problems.Evaluation
+	x          []float64
+	best       float64
+	failed     error
+}
+
+func (p *penalty) walker() *walker {
+	return &walker{
+		penalty: p, evaluation: problems.NewEvaluation(p.problem.size),
+		x: make([]float64, len(p.problem.variables)), best: math.Inf(-1),
+	}
+}
+
+// value is the negative aim plus the weighted violation at u, whose entries are
+// drawn back into the unit cube at a cost.
+func (w *walker) value(u []float64) float64 {
+	violation := 0.0
+	for j, v := range w.problem.variables {
+		inside := math.Min(1, math.Max(0, u[j]))
+		violation += math.Abs(u[j] - inside)
+		w.x[j] = math.Min(v.High, v.Low+inside*(v.High-v.Low))
+	}
+	outside := violation > 0
+	if err := w.problem.Evaluate(context.Background(), w.x, w.evaluation); err != nil {
+		w.failed = err
+		return math.Inf(1)
+	}
+	for _, limit := range w.limits {
+		violation += w.violation(&limit)
+	}
+	aim := 0.0
+	for _, part := range w.parts {
+		aim += part.weight * w.evaluation.Values[part.index] / w.weights
+	}
+	if math.IsNaN(aim) {
+		return penaltyWeight * (1 + violation)
+	}
+	if violation == 0 && !outside {
+		w.best = math.Max(w.best, aim)
+	}
+	return penaltyWeight*violation - aim
+}
+
+func (w *walker) violation(limit *indexedLimit) float64 {
+	v := w.evaluation.Values[limit.index]
+	if math.IsNaN(v) {
+		var notApplicable *problems.NotApplicable
+		if errors.As(w.evaluation.Reasons[limit.index], &notApplicable) {
+			return 0
+		}
+		return 1
+	}
+	return math.Max(0, math.Max(limit.low-v, v-limit.high)) / limit.scale
+}
+
+// start draws a random point inside the linear limits.
+func (p *penalty) start(random *rand.Rand) []float64 {
+	u := make([]float64, len(p.problem.variables))
+	for {
+		for j := range u {
+			u[j] = random.Float64()
+		}
+		if p.insideLinear(u) {
+			return u
+		}
+	}
+}
+
+func (p *penalty) insideLinear(u []float64) bool {
+	for _, limit := range p.linear {
+		sum := limit.b
+		for j, v := range p.problem.variables {
+			sum += limit.a[j] * (v.Low + u[j]*(v.High-v.Low))
+		}
+		if !(limit.low <= sum && sum <= limit.high) {
+			return false
+		}
+	}
+	return true
+}
+
+// search runs the simplex method of Nelder & Mead from random starts, then again
+// from fresh simplexes of shrinking size at the best of them: a simplex flattens
+// on the kinks of the penalty. It returns the best aim that met every limit.
+func (p *penalty) search(t *testing.T) float64 {
+	t.Helper()
+	random := rand.New(rand.NewPCG(1, 200))
+	begins := make([][]float64, yardstickStarts)
+	for i := range begins {
+		begins[i] = p.start(random)
+	}
+	ends := p.descend(t, begins, func(w *walker, u []float64) []float64 {
+		return w.simplex(u, 0.1, 300)
+	})
+	best := math.Inf(-1)
+	order := ends.ordered()
+	for _, end := range p.descend(t, order[:yardstickAgain], func(w *walker, u []float64) []float64 {
+		for size := 0.05; size > 1e-6; size /= 3 {
+			u = w.simplex(u, size, 300)
+		}
+		return u
+	}) {
+		best = math.Max(best, end.feasible)
+	}
+	return best
+}
+
+// descent is the end of one search.
+type descent struct {
+	u        []float64
+	value    float64
+	feasible float64 // best aim on the way that met every limit
+}
+
+type descents []descent
+
+func (list descents) ordered() [][]float64 {
+	points := make([][]float64, 0, len(list))
+	taken := make([]bool, len(list))
+	for range list {
+		best := -1
+		for i := range list {
+			if !taken[i] && (best < 0 || list[i].value < list[best].value) {
+				best = i
+			}
+		}
+		taken[best] = true
+		points = append(points, list[best].u)
+	}
+	return points
+}
+
+// descend runs one search a start, side by side.
+func (p *penalty) descend(t *testing.T, starts [][]float64, search func(w *walker, u []float64) []float64) descents {
+	t.Helper()
+	ends := make(descents, len(starts))
+	failures := make([]error, len(starts))
+	var group sync.WaitGroup
+	slots := make(chan struct{}, runtime.GOMAXPROCS(0))
+	for i := range starts {
+		slots <- struct{}{}
+		group.Go(func() {
+			w := p.walker()
+			u := search(w, starts[i])
+			ends[i] = descent{u, w.value(u), w.best}
+			failures[i] = w.failed
+			<-slots
+		})
+	}
+	group.Wait()
+	if err := errors.Join(failures...); err != nil {
+		t.Fatal(err)
+	}
+	return ends
+}
+
+// simplex is one run of Nelder & Mead of at most the evaluations given.
+func (w *walker) simplex(u []float64, size float64, evaluations int) []float64 {
+	result, err := gonum.Minimize(gonum.Problem{Func: w.value}, u, &gonum.Settings{
+		FuncEvaluations: evaluations, Converger: gonum.NeverTerminate{},
+	}, &gonum.NelderMead{SimplexSize: size})
+	if err != nil {
+		w.failed = err
+		return u
+	}
+	return result.X
+}
