@@ -10,6 +10,11 @@ import (
 // ActiveMargin is the scaled margin below which a limit counts as active.
 const ActiveMargin = 1e-6
 
+// Rounding is the scaled margin below zero that still counts as met: a design
+// stated to stand on a limit, such as 8 + 4 = 12 degrees, misses it in the last
+// digit.
+const Rounding = 1e-14
+
 // Check is a row judged on an evaluation.
 type Check struct {
 	Row
@@ -75,7 +80,7 @@ func judge(row *Row, evaluation *problems.Evaluation) Check {
 		return check
 	}
 	check.Margin = row.Margin(check.Value)
-	check.Met = check.Margin >= 0
+	check.Met = check.Margin >= -Rounding*row.Scale
 	check.Active = math.Abs(check.Margin) <= ActiveMargin*row.Scale
 	return check
 }

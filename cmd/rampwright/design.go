@@ -109,20 +109,16 @@ func (a *app) design(study *study, dir string) (err error) {
 	if err != nil {
 		return a.cutShort(err, interruption)
 	}
-	exact, explained, err := a.afterwards(ctx, study, settings, result)
-	if err != nil {
+	finished := report.Study{Problem: study.problem, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
+	if err := a.afterwards(ctx, study, settings, &finished); err != nil && ctx.Err() == nil {
+		return err // a search that was cut short is left out, and the document says so
+	}
+	if finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), result.Best.X); err != nil {
 		return err
 	}
-	flow, err := study.problem.Flow(context.WithoutCancel(ctx), result.Best.X)
-	if err != nil {
-		return err
-	}
-	document := report.NewDesign(study.head(settings.Seed), report.Study{
-		Problem: study.problem, Aim: study.brief.Aim, Agreement: settings.Agreement,
-		Result: result, Exact: exact, Explained: explained, Flow: flow,
-	})
+	document := report.NewDesign(study.head(settings.Seed), finished)
 	run := runRecord(began, a.jobs, counter)
-	if err := store(folder, study, document, result, flow, run); err != nil {
+	if err := store(folder, study, document, &finished, run); err != nil {
 		return err
 	}
 	if err := folder.Commit(); err != nil {
@@ -144,39 +140,50 @@ func (a *app) cutShort(err error, interruption *interruption) error {
 	return err
 }
 
-// afterwards runs what never feeds the search: the exact search as yardstick and,
-// where nothing holds every limit, the explanation why. A context that ends
-// leaves them out; the document says so.
-func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Settings, result *optimize.Result) (*optimize.ExactSearch, *optimize.Explanation, error) {
+// afterwards runs what never feeds the search, on the exact model: the exact
+// search as yardstick; the nearest design in tenths of a degree and the play of
+// the variables where the limits hold; the reason why where nothing holds them.
+func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Settings, finished *report.Study) (err error) {
 	task := optimize.Task{Problem: study.problem, Limits: study.limits, Aim: study.brief.Aim}
-	if result.Status != optimize.Infeasible {
-		exact, err := optimize.SearchExact(ctx, task, settings)
-		return exact, nil, unlessEnded(ctx, err)
+	if finished.Result.Status == optimize.Infeasible {
+		a.say("nothing holds every limit yet: searching the exact model for the reason\n")
+		if err := explain(ctx, task, settings, finished); err != nil {
+			return err
+		}
 	}
-	a.say("nothing holds every limit yet: searching the exact model for the reason\n")
-	explained, err := optimize.Explain(ctx, task, settings)
-	if err != nil {
-		return nil, nil, unlessEnded(ctx, err)
+	if finished.Exact, err = optimize.SearchExact(ctx, task, settings); err != nil {
+		return err
 	}
-	if explained.Feasible {
-		result.Status = optimize.NotVerified
-		result.Why = "the exact search found a design that holds every limit; the surrogates did not lead to one: raise effort.samples or effort.infill"
-	}
-	result.Best = explained.Least
-	result.Candidates = []optimize.Candidate{explained.Least}
-	if explained.Feasible {
-		explained = nil
-	}
-	exact, err := optimize.SearchExact(ctx, task, settings)
-	return exact, explained, unlessEnded(ctx, err)
-}
-
-// unlessEnded drops the error of a search cut short.
-func unlessEnded(ctx context.Context, err error) error {
-	if ctx.Err() != nil {
+	best := finished.Result.Best
+	if !best.Assessment.Feasible {
 		return nil
 	}
+	if finished.Rounded, err = optimize.Round(ctx, task, best.X, roundedStep); err != nil {
+		return err
+	}
+	finished.Plays, err = optimize.Plays(ctx, task, best.X, report.PlayLoss)
 	return err
+}
+
+// roundedStep is the angle, in degrees, a workshop is asked for.
+const roundedStep = 0.1
+
+// explain puts the design of least violation and the reason for it into a study,
+// or the feasible design the surrogates did not lead to.
+func explain(ctx context.Context, task optimize.Task, settings optimize.Settings, finished *report.Study) error {
+	explained, err := optimize.Explain(ctx, task, settings)
+	if err != nil {
+		return err
+	}
+	result := finished.Result
+	result.Best, result.Candidates = explained.Least, []optimize.Candidate{explained.Least}
+	if !explained.Feasible {
+		finished.Explained = explained
+		return nil
+	}
+	result.Status = optimize.NotVerified
+	result.Why = "the exact search found a design that holds every limit; the surrogates did not lead to one: raise effort.samples or effort.infill"
+	return nil
 }
 
 // ending turns a status into the exit code.
@@ -218,12 +225,12 @@ func runRecord(began time.Time, jobs int, counter *runstore.Counter) record {
 }
 
 // store writes the files of a result.
-func store(folder *runstore.Folder, study *study, document *report.DesignDocument, result *optimize.Result, flow *inlet.Flow, run record) error {
+func store(folder *runstore.Folder, study *study, document *report.DesignDocument, finished *report.Study, run record) error {
 	runJSON, err := json.MarshalIndent(run, "", "  ")
 	if err != nil {
 		return err
 	}
-	states, err := stations(flow)
+	states, err := stations(document.Points)
 	if err != nil {
 		return err
 	}
@@ -231,11 +238,11 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 		{"result.json", document.JSON()},
 		{"run.json", append(runJSON, '\n')},
 		{"brief.yaml", study.brief.ResolvedYAML()},
-		{"samples.csv", report.SamplesCSV(study.problem, result.Samples)},
+		{"samples.csv", report.SamplesCSV(study.problem, finished.Result.Samples)},
 		{"stations.csv", states},
 	}
-	if flow.ContourErr == nil {
-		drawing, err := drawings(study, flow)
+	if finished.Flow.ContourErr == nil {
+		drawing, err := drawings(study, finished.Flow)
 		if err != nil {
 			return err
 		}

@@ -7,6 +7,7 @@ import (
 
 	"rampwright/cmd/rampwright/internal/chart"
 	"rampwright/cmd/rampwright/internal/handoff"
+	"rampwright/cmd/rampwright/internal/report"
 	"rampwright/problems/contour"
 	"rampwright/problems/inlet"
 )
@@ -132,22 +133,21 @@ func profile(flow *inlet.Flow) ([]byte, error) {
 	return out.Bytes(), nil
 }
 
-// stations lists the states of every flight point for the hand-over.
-func stations(flow *inlet.Flow) ([]byte, error) {
+// stations lists the states of every flight point for the hand-over, as the
+// document has them.
+func stations(flow []report.Point) ([]byte, error) {
 	var points []handoff.FlightPoint
-	for i := range flow.Points {
-		p := &flow.Points[i]
+	for _, p := range flow {
 		point := handoff.FlightPoint{
-			Name: p.Point.Name, Mach: p.Point.Mach, IncidenceDeg: p.Point.Incidence * degree, Status: p.Status(),
+			Name: p.Name, Mach: float64(p.Mach), IncidenceDeg: float64(p.IncidenceDeg), Status: p.Status,
 		}
 		for _, s := range p.Stations {
 			point.Stations = append(point.Stations, handoff.Station{
-				Name: s.Name, Mach: s.Mach,
-				FlowAngleDeg: s.FlowAngle * degree, WaveAngleDeg: s.WaveAngle * degree,
-				WaveAngleAbsoluteDeg: s.WaveAngleAbsolute * degree, NormalMach: s.NormalMach,
-				StaticPressureRatio: s.PressureRatio, StaticTemperatureRatio: s.TemperatureRatio,
-				TotalPressureRatio: s.TotalPressure,
-				PressureKPa:        s.Pressure / 1000, TemperatureK: s.Temperature,
+				Name: s.Name, Mach: float64(s.Mach), FlowAngleDeg: float64(s.FlowAngleDeg),
+				WaveAngleDeg: float64(s.WaveAngleDeg), WaveAngleAbsoluteDeg: float64(s.WaveAngleAbsoluteDeg),
+				NormalMach: float64(s.NormalMach), StaticPressureRatio: float64(s.StaticPressureRatio),
+				StaticTemperatureRatio: float64(s.StaticTemperatureRatio), TotalPressureRatio: float64(s.TotalPressureRatio),
+				PressureKPa: float64(s.PressureKPa), TemperatureK: float64(s.TemperatureK),
 			})
 		}
 		points = append(points, point)

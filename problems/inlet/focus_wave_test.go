@@ -32,6 +32,21 @@ func TestSetBackLipAndTheFocusWave(t *testing.T) {
 	closed.atLeast(t, 0.8)
 }
 
+// Three equal ramps at Mach 4, either side of the bound: 18.9 deg against a Mach
+// angle of 20.7 deg behind them, and 22.5 deg against 22.2 deg. (Behind two ramps
+// of 7.5 deg the Mach angle is 19.3 deg: a bound on them would be wrong.)
+func TestFocusWaveByExample(t *testing.T) {
+	for turning, want := range map[float64]string{6.3: errFocusWave.Phrase, 7.5: ""} {
+		d := veyric().at(4, 0).lipTurned(5)
+		d.RampAngle = []Setting{Fixed(turning), Fixed(turning), Fixed(turning)}
+		d.ShockOnLip, d.LipSetback = Fixed(4), Fixed(0.005)
+		a := flowAt(t, d, first{}, 0)
+		if got := phrase(a.placeErr); got != want {
+			t.Errorf("three ramps of %v deg, Mach angle %v deg: status %q, want %q", turning, math.Asin(1/a.lipMach)/radian, got, want)
+		}
+	}
+}
+
 // Away from shock-on-lip the wave of each crossing is followed in small steps,
 // at the Mach angle of the flow it is in: the lip is behind it where it has sunk
 // below the lip level on arrival.

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"sync"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -227,6 +228,38 @@ func TestRoutesAgreeOnEveryQuantity(t *testing.T) {
 	})
 	// The rest is of use as well: what is missing must be missing in both.
 	present.atLeast(t, 0.5)
+}
+
+// One problem serves many callers at once.
+func TestConcurrentEvaluationsDoNotMix(t *testing.T) {
+	d := veyric()
+	d.RampAngle[0] = Between(5, 11)
+	p := problemOf(t, d)
+	const callers = 8
+	var alone, together [callers]*problems.Evaluation
+	var wait sync.WaitGroup
+	for i := range callers {
+		x := []float64{5 + 0.75*float64(i)}
+		alone[i], together[i] = problems.NewEvaluation(len(p.Quantities())), problems.NewEvaluation(len(p.Quantities()))
+		if err := p.Evaluate(context.Background(), x, alone[i]); err != nil {
+			t.Fatal(err)
+		}
+		wait.Go(func() {
+			for range 50 {
+				if err := p.Evaluate(context.Background(), x, together[i]); err != nil {
+					t.Error(err)
+				}
+			}
+		})
+	}
+	wait.Wait()
+	for i := range callers {
+		for k, value := range alone[i].Values {
+			if math.Float64bits(value) != math.Float64bits(together[i].Values[k]) {
+				t.Fatalf("%+v: %v alone, %v among others", p.Quantities()[k], value, together[i].Values[k])
+			}
+		}
+	}
 }
 
 // The same design gives the same bits, however often and in whatever order.

@@ -9,7 +9,7 @@ import (
 // RecoveryGradient returns what Recovery returns and stores the derivatives by
 // each turning, 1/rad: of the recovery in dRecovery and of the Mach number
 // behind the chain in dMach (either may be nil). Both must otherwise be as long
-// as turning. The cubic F(x; M^2, T) = 0 of shock.WeakCotangent is
+// as turning, at most MaxRamps. The cubic F(x; M^2, T) = 0 of WeakCotangent is
 // differentiated implicitly, dx = -(F_m dM^2 + F_T dT)/F_x, and the chain is
 // swept backward once: two adjoints, one of ln(pi) and one of M^2 behind.
 func RecoveryGradient(g gas.Perfect, mach float64, turning, dRecovery, dMach []float64) (recovery, machBehind float64, ok bool) {

@@ -17,15 +17,6 @@ func BenchmarkWeakCotangent(b *testing.B) {
 	}
 }
 
-func BenchmarkTan(b *testing.B) {
-	x := 8 * degree
-	s := 0.0
-	for b.Loop() {
-		s += math.Tan(x)
-	}
-	_ = s
-}
-
 func BenchmarkWeak(b *testing.B) {
 	b.ReportAllocs()
 	for b.Loop() {

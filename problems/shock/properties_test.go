@@ -323,6 +323,28 @@ func TestReflectionRoutesAgree(t *testing.T) {
 	})
 }
 
+// The bracket of the mechanical equilibrium holds: wherever it exists, the
+// reflected shock halfway to the Mach wave stays below the pressure of the stem.
+func TestEquilibriumIsBracketed(t *testing.T) {
+	existing := 0
+	for gamma := 1.001; gamma <= 5.0/3; gamma += 0.0166 {
+		for mach := 1.05; mach <= 30; mach *= 1.02 {
+			m := newMirror(gas.Perfect{Gamma: gamma, R: gas.SpecificConstantAir}, mach)
+			detachment := m.detachment()
+			if _, exists := m.equilibrium(detachment); !exists {
+				continue
+			}
+			existing++
+			if spare := m.tangentToSpare((detachment + math.Sqrt(m.excess)) / 2); !(spare > 0) {
+				t.Fatalf("gamma %v, Mach %v: %v halfway", gamma, mach, spare)
+			}
+		}
+	}
+	if existing < 1000 {
+		t.Errorf("only %d equilibria", existing)
+	}
+}
+
 // Ben-Dor, Shock Wave Reflection Phenomena, for gamma 1.4, to the digits given
 // (recomputed independently).
 func TestRegularReflectionValues(t *testing.T) {

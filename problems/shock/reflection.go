@@ -78,27 +78,40 @@ func (m *mirror) detachment() float64 {
 	}, low, math.Sqrt(m.excess))
 }
 
-// equilibrium returns x where the pressure behind the reflected shock is that
-// behind a normal shock. It rises with the turning, so that an equilibrium
-// below detachment (x above it) exists where it is larger at detachment.
+// equilibrium returns x where the reflected shock, which turns the flow back by
+// the turning of the incident one, reaches the pressure behind a normal shock.
+// That pressure rises with the turning, so that an equilibrium below detachment
+// (x above it) exists where it is larger at detachment, where the reflected
+// shock is that of largest turning. Halfway from there to the Mach wave it is
+// always smaller (computed for g in (1, 5/3] up to M = 30).
 func (m *mirror) equilibrium(detachment float64) (x float64, exists bool) {
-	stem := pressureRatio(m.gas.Gamma, m.square)
-	if !(m.reflected(detachment) > stem) {
+	gamma, behind := m.gas.Gamma, m.behind(detachment)
+	_, second := largestTangent(gamma, behind, behind-1)
+	largest := m.incident(detachment) * pressureRatio(gamma, behind/(1+second*second))
+	if !(largest > m.stem()) {
 		return math.NaN(), false
 	}
-	return bracketedRoot(func(x float64) float64 {
-		return m.reflected(x) - stem
-	}, detachment, math.Sqrt(m.excess)), true
+	return bracketedRoot(m.tangentToSpare, detachment, (detachment+math.Sqrt(m.excess))/2), true
 }
 
-// reflected is the pressure behind the reflected shock over that ahead of the
-// incident one, for x from detachment of the reflection up. Rounding may call
-// the shock at detachment itself detached: it is the one of largest turning.
-func (m *mirror) reflected(x float64) float64 {
+// tangentToSpare is the tangent of the turning that a second shock from behind
+// the incident one to the pressure of the stem would give, less that of the
+// incident shock: negative where the weak reflected shock passes that pressure.
+// Where even a normal shock falls short of it there is no such turning.
+func (m *mirror) tangentToSpare(x float64) float64 {
 	gamma, behind := m.gas.Gamma, m.behind(x)
-	second, attached := WeakCotangent(gamma, behind, m.tangent(x))
-	if !attached {
-		_, second = largestTangent(gamma, behind, behind-1)
+	normalSquare := 1 + (m.stem()/m.incident(x)-1)*(gamma+1)/(2*gamma)
+	square := behind/normalSquare - 1
+	if !(square > 0) {
+		return -m.tangent(x)
 	}
-	return pressureRatio(gamma, m.square/(1+x*x)) * pressureRatio(gamma, behind/(1+second*second))
+	return turningTangent(gamma, behind, behind-1, math.Sqrt(square)) - m.tangent(x)
 }
+
+// incident is the pressure behind the incident shock, stem that behind a normal
+// shock, over the pressure ahead.
+func (m *mirror) incident(x float64) float64 {
+	return pressureRatio(m.gas.Gamma, m.square/(1+x*x))
+}
+
+func (m *mirror) stem() float64 { return pressureRatio(m.gas.Gamma, m.square) }

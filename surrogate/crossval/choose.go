@@ -9,8 +9,6 @@ import (
 	"sync"
 
 	"rampwright/surrogate"
-	"rampwright/surrogate/gpr"
-	"rampwright/surrogate/pce"
 )
 
 // Settings says what to choose among. The zero value has no candidates; see
@@ -46,6 +44,7 @@ type Choice struct {
 	surrogate.Fitted
 	Kind      string
 	Transform Transform
+	Widening  float64 // factor on the deviations of the fit, see widening
 	Quality   surrogate.Quality
 	Figures   []Figure
 }
@@ -65,8 +64,9 @@ const (
 // Choose fits every candidate on every valid transform and returns the one with
 // the least root mean square leave-one-out error, in the output's unit; among
 // those within Tie of it, the simplest: least complexity, then the earliest
-// transform. A candidate that cannot be fitted keeps its error in the table;
-// when none can, the first error is returned.
+// transform. Transforms whose domain the outputs leave are left out. A candidate
+// that cannot be fitted keeps its error in the table; when none can, the first
+// error is returned.
 func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
 	if err := surrogate.Check(x, y, 1); err != nil {
 		return Choice{}, err
@@ -75,6 +75,9 @@ func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choic
 		return Choice{}, errors.New("no candidate surrogate kinds")
 	}
 	figures, fits := s.fitAll(ctx, x, y)
+	if len(figures) == 0 {
+		return Choice{}, s.transforms()[0].Valid(y)
+	}
 	if err := ctx.Err(); err != nil {
 		return Choice{}, err
 	}
@@ -83,10 +86,15 @@ func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choic
 		return Choice{}, figures[0].Err
 	}
 	figures[best].Chosen = true
-	return Choice{
-		Fitted: fits[best], Kind: figures[best].Kind, Transform: figures[best].Transform,
-		Quality: surrogate.Assess(fits[best], y), Figures: figures,
-	}, nil
+	c := Choice{Kind: figures[best].Kind, Transform: figures[best].Transform, Widening: widening(figures, best), Figures: figures}
+	return c.with(fits[best], y), nil
+}
+
+// with returns the choice with a fit of the chosen kind to the outputs y.
+func (c Choice) with(fitted surrogate.Fitted, y []float64) Choice {
+	c.Fitted = widen(fitted, c.Widening)
+	c.Quality = surrogate.Assess(c.Fitted, y)
+	return c
 }
 
 // fitAll fills one line and one fit for each candidate and valid transform.
@@ -127,9 +135,14 @@ func (f *Figure) fit(ctx context.Context, model surrogate.Model, x [][]float64, 
 		f.Err, f.Q2, f.RMSE, f.Coverage = err, math.NaN(), math.NaN(), math.NaN()
 		return nil
 	}
+	f.report(fitted, y)
+	return fitted
+}
+
+// report fills the figures of a fit.
+func (f *Figure) report(fitted surrogate.Fitted, y []float64) {
 	quality := surrogate.Assess(fitted, y)
 	f.Description, f.Q2, f.RMSE, f.Coverage = fitted.Describe(), quality.Q2, quality.RMSE, quality.Coverage
-	return fitted
 }
 
 // pick returns the place of the best fit, or -1.
@@ -177,25 +190,11 @@ func (c Choice) Refit(ctx context.Context, x [][]float64, y []float64) (Choice, 
 	if err != nil {
 		return Choice{}, err
 	}
-	c.Fitted, c.Quality = fitted, surrogate.Assess(fitted, y)
 	c.Figures = append([]Figure(nil), c.Figures...)
 	for i := range c.Figures {
 		if f := &c.Figures[i]; f.Chosen {
-			f.Description, f.Q2, f.RMSE, f.Coverage = fitted.Describe(), c.Quality.Q2, c.Quality.RMSE, c.Quality.Coverage
+			f.report(fitted, y)
 		}
 	}
-	return c, nil
-}
-
-// Default returns the candidates of a design run: least-squares, least-angle
-// and weighted expansion, and RBF Gaussian process. On 30..150 samples of 2..8
-// inputs the four with all transforms fit in well under a second.
-func Default(seed int64) []surrogate.Model {
-	return []surrogate.Model{pce.OLS{}, pce.LeastAngle{}, pce.Ridge{}, gpr.Config{Seed: seed}}
-}
-
-// Every returns the default candidates and, beyond them, the lasso and a
-// rougher Gaussian process, for studies where time does not matter.
-func Every(seed int64) []surrogate.Model {
-	return append(Default(seed), pce.Lasso{Seed: seed}, gpr.Config{Kernel: gpr.Matern52, Seed: seed})
+	return c.with(fitted, y), nil
 }

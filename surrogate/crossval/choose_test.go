@@ -151,6 +151,10 @@ func TestInvalidTransformsAreLeftOut(t *testing.T) {
 	if !errors.As(err, &outside) || !(y[outside.Row] <= 0) || outside.Value != y[outside.Row] {
 		t.Errorf("logarithm of a negative output: %v", err)
 	}
+	only := crossval.Settings{Candidates: crossval.Default(1), Transforms: []crossval.Transform{crossval.Log}}
+	if _, err = only.Choose(background, x, y); !errors.As(err, &outside) {
+		t.Errorf("no valid transform: %v", err)
+	}
 }
 
 func TestErrorsAreKept(t *testing.T) {
@@ -238,6 +242,7 @@ func TestFourRampRecovery(t *testing.T) {
 		limit   float64
 	}{{20, 2.6e-3}, {40, 4.7e-4}, {80, 6.3e-5}} {
 		var errors []float64
+		covered := 0
 		for seed := range int64(5) {
 			x, y := sampled(c.samples, 4, seed, fourRamps)
 			choice, err := crossval.Settings{Candidates: crossval.Default(seed), Jobs: 2}.Choose(background, x, y)
@@ -245,6 +250,14 @@ func TestFourRampRecovery(t *testing.T) {
 				t.Fatal(err)
 			}
 			errors = append(errors, medianError(choice, 4, fourRamps))
+			for _, u := range doe.RandomLatinHypercube(100, 4, doe.Stream(seed, "fresh points")) {
+				if mean, deviation := choice.Predict(u); math.Abs(mean-fourRamps(u)) <= 1.96*deviation {
+					covered++
+				}
+			}
+		}
+		if covered < 425 {
+			t.Errorf("%d samples: 95 %% intervals cover %d of 500 fresh points", c.samples, covered)
 		}
 		slices.Sort(errors)
 		if errors[2] > c.limit {

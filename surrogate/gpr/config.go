@@ -25,12 +25,12 @@ const (
 )
 
 // Hyper holds the hyperparameters of a process: one correlation length an input
-// on the scaled axes, the nugget as a ratio to the process variance, and that
-// variance in the square of the output's unit.
+// on the scaled axes, the nugget as a ratio to the process variance, and the
+// process standard deviation in the output's unit.
 type Hyper struct {
-	Lengths  []float64
-	Nugget   float64
-	Variance float64
+	Lengths   []float64
+	Nugget    float64
+	Deviation float64
 }
 
 // Config is a Gaussian-process configuration. The zero value is an
@@ -45,7 +45,7 @@ type Config struct {
 	// a few likelihoods.
 	Start *Hyper
 	// Fixed uses Start as it is, at the cost of one factorisation. A positive
-	// Start.Variance is then used too; otherwise it is estimated.
+	// Start.Deviation is then used too; otherwise it is estimated.
 	Fixed bool
 	// Restarts is the number of starts from a Latin hypercube in the logarithms
 	// of the lengths. Without Start, two more at lengths 0.5 and 1.5 come first,
@@ -64,8 +64,13 @@ type Config struct {
 	curvature []float64 // of the search behind Start; set by Process.Warm
 }
 
-// Kind returns "Gaussian process".
-func (Config) Kind() string { return "Gaussian process" }
+// Kind returns "Gaussian process", with the kernel when it is not RBF.
+func (c Config) Kind() string {
+	if c.Kernel == RBF {
+		return "Gaussian process"
+	}
+	return "Gaussian process, " + c.Kernel.String()
+}
 
 const (
 	shortestLength = 0.03 // of the unit cube
@@ -139,8 +144,8 @@ func (h Hyper) problems(d int) []string {
 	if !(h.Nugget >= 0 && h.Nugget <= 1) {
 		problems = append(problems, fmt.Sprintf("nugget %g of the start is not within 0..1", h.Nugget))
 	}
-	if !(h.Variance >= 0) {
-		problems = append(problems, fmt.Sprintf("variance %g of the start", h.Variance))
+	if !(h.Deviation >= 0) || math.IsInf(h.Deviation, 0) {
+		problems = append(problems, fmt.Sprintf("deviation %g of the start", h.Deviation))
 	}
 	return problems
 }

@@ -20,7 +20,7 @@ func LogLikelihood(kernel Kernel, x [][]float64, y []float64, variance float64, 
 	if err := surrogate.Check(x, y, 1); err != nil {
 		return 0, nil, err
 	}
-	problems := Hyper{Lengths: lengths, Variance: variance}.problems(len(x[0]))
+	problems := Hyper{Lengths: lengths}.problems(len(x[0]))
 	if !(variance > 0) || !(noise >= 0) || math.IsInf(variance, 0) || math.IsInf(noise, 0) {
 		problems = append(problems, "variance must be positive and noise not negative")
 	}

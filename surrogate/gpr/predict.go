@@ -104,8 +104,8 @@ const cancelled = 1e-6
 //	s2 (1 - r'R^-1 r + (f - F'R^-1 r)'(F'R^-1 F)^-1 (f - F'R^-1 r))
 //
 // (universal kriging; Jones, Schonlau & Welch 1998, equation 9, for a constant).
-// Where the first part cancels it is computed by nearSample. Rounding below zero
-// gives 0.
+// times the factor of widen. Where the first part cancels it is computed by
+// nearSample. Rounding below zero gives 0.
 func (p *Process) Predict(x []float64) (mean, deviation float64) {
 	var stack [onStack]float64
 	u := p.scaled(stack[:0], x)
@@ -128,7 +128,7 @@ func (p *Process) Predict(x []float64) (mean, deviation float64) {
 	if variance < cancelled {
 		variance = p.nearSample(s, nearest, least)
 	}
-	return p.scaling.Undo(sum), p.scaling.Scale * math.Sqrt(p.s2*math.Max(variance+ofTrend, 0))
+	return p.scaling.Undo(sum), p.scaling.Scale * p.widening * math.Sqrt(p.s2*math.Max(variance+ofTrend, 0))
 }
 
 // trendVariance returns the part of the variance ratio that belongs to the

@@ -3,7 +3,6 @@ package gpr
 import (
 	"context"
 	"errors"
-	"fmt"
 	"math"
 	"runtime"
 	"testing"
@@ -161,14 +160,14 @@ func TestGradientOfTheMean(t *testing.T) {
 func TestLeaveOneOutByRefitting(t *testing.T) {
 	x, y := samples(15, 2, 2, smooth)
 	for _, trend := range []Trend{Constant, Linear, None} {
-		h := Hyper{Lengths: []float64{0.5, 0.8}, Nugget: 1e-3, Variance: 2}
+		h := Hyper{Lengths: []float64{0.5, 0.8}, Nugget: 1e-3, Deviation: 1.4}
 		c := Config{Trend: trend, Noise: Given, Start: &h, Fixed: true}
 		p := fit(t, c, x, y)
 		for i := range x {
 			less := fit(t, c, append(append([][]float64(nil), x[:i]...), x[i+1:]...), append(append([]float64(nil), y[:i]...), y[i+1:]...))
 			mean, deviation := less.Predict(x[i])
 			near(t, "leave-one-out mean", p.LeaveOneOut()[i], mean, 1e-9)
-			near(t, "leave-one-out deviation", p.LeaveOneOutDeviation()[i], math.Hypot(deviation, math.Sqrt(h.Nugget*h.Variance)), 1e-9)
+			near(t, "leave-one-out deviation", p.LeaveOneOutDeviation()[i], math.Hypot(deviation, math.Sqrt(h.Nugget)*h.Deviation), 1e-9)
 		}
 	}
 }
@@ -292,69 +291,6 @@ func TestMeanDoesNotAllocate(t *testing.T) {
 	}
 }
 
-func BenchmarkLikelihood(b *testing.B) {
-	for _, n := range []int{60, 100, 200, 500} {
-		b.Run(name(n), func(b *testing.B) {
-			x, y := samples(n, 4, 7, smooth)
-			s := newSolver(newSample(x, y, RBF, Constant))
-			gradient := make([]float64, 4)
-			for b.Loop() {
-				s.value([]float64{0.7, 0.9, 1.1, 1.3}, 1e-8)
-				s.gradient(gradient, 1e-8)
-			}
-		})
-	}
-}
-
-func BenchmarkFit(b *testing.B) {
-	for _, n := range []int{60, 100, 200, 500} {
-		b.Run(name(n), func(b *testing.B) {
-			x, y := samples(n, 4, 8, smooth)
-			for b.Loop() {
-				p := fit(b, Config{Jobs: 2}, x, y)
-				b.ReportMetric(p.Evidence().Gradient, "gradient")
-			}
-		})
-	}
-}
-
-func BenchmarkWarmFit(b *testing.B) {
-	x, y := samples(61, 4, 9, smooth)
-	warm := fit(b, Config{}, x[:60], y[:60]).Warm()
-	for b.Loop() {
-		if _, err := warm.Fit(background, x, y); err != nil {
-			b.Fatal(err)
-		}
-	}
-}
-
-func BenchmarkPredict(b *testing.B) {
-	for _, n := range []int{100, 500} {
-		x, y := samples(n, 4, 10, smooth)
-		p := fit(b, Config{Restarts: 1}, x, y)
-		u, slope := []float64{0.21, 0.32, 0.43, 0.54}, make([]float64, 4)
-		b.Run("mean/"+name(n), func(b *testing.B) {
-			for b.Loop() {
-				p.Mean(u)
-			}
-		})
-		b.Run("gradient/"+name(n), func(b *testing.B) {
-			for b.Loop() {
-				p.Gradient(slope, u)
-			}
-		})
-		b.Run("deviation/"+name(n), func(b *testing.B) {
-			for b.Loop() {
-				p.Predict(u)
-			}
-		})
-	}
-}
-
-func name(n int) string {
-	return fmt.Sprintf("n=%d", n)
-}
-
 // On up to 200 samples the subset and polish end at the optimum of the full
 // multi-start: log posteriors within 0.05, lengths within 2 %. And the bytes are
 // the same for one and two processors.
@@ -410,7 +346,7 @@ func TestNoiseIsEstimated(t *testing.T) {
 		y[i] += 0.1 * noise.NormFloat64()
 	}
 	p := fit(t, Config{Noise: Estimate}, x, y)
-	found := math.Sqrt(p.Hyper().Nugget * p.Hyper().Variance)
+	found := math.Sqrt(p.Hyper().Nugget) * p.Hyper().Deviation
 	if found < 0.1/1.5 || found > 0.1*1.5 {
 		t.Errorf("noise deviation %g, want 0.1", found)
 	}

@@ -83,7 +83,7 @@ func TestAgainstReference(t *testing.T) {
 			near(t, "log likelihood", value, c.Lml, referenceTolerance)
 			nearAll(t, "derivative", gradient, c.GradLog, referenceTolerance)
 
-			start := &Hyper{Lengths: c.Ell, Nugget: c.Sn2 / c.Sf2, Variance: c.Sf2}
+			start := &Hyper{Lengths: c.Ell, Nugget: c.Sn2 / c.Sf2, Deviation: math.Sqrt(c.Sf2)}
 			p, err := Config{Kernel: kernel, Trend: None, Noise: Given, Start: start, Fixed: true}.FitProcess(context.Background(), r.X, r.Y)
 			if err != nil {
 				t.Fatal(err)
@@ -115,7 +115,7 @@ func TestAgainstReference(t *testing.T) {
 				t.Fatal(err)
 			}
 			near(t, "least-squares level", g.Trend()[0], c.GLSMean, referenceTolerance)
-			near(t, "variance", g.Hyper().Variance, c.GLSQuadratic*c.Sf2/8, referenceTolerance)
+			near(t, "deviation", g.Hyper().Deviation, math.Sqrt(c.GLSQuadratic*c.Sf2/8), referenceTolerance)
 		})
 	}
 }

@@ -79,9 +79,11 @@ func (c Ridge) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*E
 	e.scaled, e.spread, e.active = k.coefficients, k, len(k.coefficients)
 	e.setLeaveOneOut(y, k.looResidual, k.looDeviation)
 	e.summary = fmt.Sprintf("%s, growth %.3g", termsText(e.largestDegree(), e.active), best.growth)
-	warm := c
-	warm.Growth, warm.Degree, warm.Exactly = best.growth, best.level, true
-	e.warm = warm
+	e.warm = c
+	if best.level > 0 { // a constant says nothing about the next fit
+		c.Growth, c.Degree, c.Exactly = best.growth, best.level, true
+		e.warm = c
+	}
 	return e, nil
 }
 

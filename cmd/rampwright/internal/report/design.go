@@ -17,6 +17,8 @@ type Study struct {
 	Result    *optimize.Result
 	Exact     *optimize.ExactSearch // the yardstick; nil when it was not run
 	Explained *optimize.Explanation // why nothing holds every limit; nil where something does
+	Rounded   *optimize.Rounded     // nearest design in tenths of a degree; nil when not looked for
+	Plays     []optimize.Play       // of the variables at a loss of PlayLoss; nil when not measured
 	Flow      *inlet.Flow           // exact flow of Result.Best
 }
 
@@ -36,6 +38,9 @@ type DesignDocument struct {
 	Evaluations Evaluations `json:"evaluations"`
 	Conflicts   []Conflict  `json:"conflicts"`
 	Relaxation  []Loosened  `json:"relaxation"`
+	Rounded     *Rounded    `json:"rounded"`
+	Play        []Play      `json:"play"`
+	Notes       []string    `json:"notes"`
 	History     []Step      `json:"history"`
 	Inlet       Shape       `json:"inlet"`
 	Points      []Point     `json:"points"` // stations; quantities are in Best
@@ -152,6 +157,7 @@ func NewDesign(head Head, study Study) *DesignDocument {
 		Format: format, Program: head.Program, Title: head.Title, Seed: head.Seed, BriefHash: head.BriefHash,
 		Status: result.Status.String(), Why: result.Why,
 		Candidates: []Candidate{}, Fits: []Fit{}, History: []Step{}, Conflicts: study.conflicts(), Relaxation: study.relaxation(),
+		Rounded: study.rounded(), Play: study.plays(), Notes: []string{},
 		Evaluations: Evaluations(result.Counts),
 		Inlet:       flow.Inlet, Points: flow.Points, Assumptions: flow.Assumptions,
 		study: study, readings: readings(study.Problem.Quantities(), result.Best.Exact),
@@ -172,6 +178,9 @@ func NewDesign(head Head, study Study) *DesignDocument {
 	d.Best = study.best(d.readings)
 	d.ExactSearch = study.exactSearch()
 	d.Cautions = study.cautions()
+	if result.Best.Assessment.Feasible {
+		d.Notes = study.notes()
+	}
 	return d
 }
 
