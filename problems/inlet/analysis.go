@@ -157,25 +157,34 @@ func (a *analysis) upstream(place contour.Point, i int, distance float64) contou
 	return contour.Point{X: place.X + distance*cos, Y: place.Y + distance*sin}
 }
 
-// behindFocusWave reports whether the wave that leaves the crossing of two
-// neighbouring shocks toward the body, at the Mach angle of the flow there,
-// reaches the lip's stream ahead of the lip. At the focus it is the condition
-// phi_n >= asin(1/M_n).
+// behindFocusWave reports whether a wave that leaves the crossing of two
+// neighbouring shocks toward the body reaches the lip's stream ahead of the lip.
+// At the focus it is the condition phi_n >= asin(1/M_n).
 func (a *analysis) behindFocusWave() bool {
 	for i := 1; i < a.design.Ramps; i++ {
 		crossing, ok := contour.Meet(a.shockLine(i-1), a.shockLine(i))
 		if !ok || crossing.X > a.shape.Lip.X-placeTolerance*a.shape.height {
 			continue
 		}
-		wave := contour.Line{
-			Through: crossing,
-			Angle:   a.shape.Angles[i] - math.Asin(1/a.waves[i].Mach2),
-		}
-		if wave.Height(a.shape.Lip) > placeTolerance*a.shape.height {
+		if a.bodyWave(crossing, i).Height(a.shape.Lip) > placeTolerance*a.shape.height {
 			return true
 		}
 	}
 	return false
+}
+
+// bodyWave is the last leg of the Mach wave that leaves place toward the body in
+// the flow of ramp i (from 0): it turns where it passes the shocks of further
+// ramps, and ends in the flow of the last.
+func (a *analysis) bodyWave(place contour.Point, i int) contour.Line {
+	wave := contour.Line{Through: place, Angle: a.shape.Angles[i] - math.Asin(1/a.waves[i].Mach2)}
+	for k := i + 1; k < a.design.Ramps; k++ {
+		if ahead, ok := wave.Reach(a.shockLine(k)); ok && ahead > 0 {
+			wave.Through, _ = contour.Meet(wave, a.shockLine(k))
+		}
+		wave.Angle = a.shape.Angles[k] - math.Asin(1/a.waves[k].Mach2)
+	}
+	return wave
 }
 
 // meetLip is the state ahead of the lip and what it allows.

@@ -74,6 +74,10 @@ func (d *Definition) variables() []problems.Variable {
 	return list
 }
 
+// alignedWithin is the lip turning, rad, that is a fixed cowl's rounding of zero:
+// 8.1 is not quite 2.7 + 2.7 + 2.7.
+const alignedWithin = 1e-9 * radian
+
 // resolve puts x, one value a searched setting in the order of variables, into
 // the open places of the definition.
 func (d *Definition) resolve(x []float64) Design {
@@ -97,6 +101,9 @@ func (d *Definition) resolve(x []float64) Design {
 	} else {
 		design.LipTurning = take(*d.LipTurning) * radian
 		design.Cowl = total - design.LipTurning
+	}
+	if math.Abs(design.LipTurning) < alignedWithin {
+		design.Cowl, design.LipTurning = total, 0
 	}
 	design.Wedge = take(d.CowlWedge) * radian
 	design.ShockOnLip = take(d.ShockOnLip)

@@ -2,6 +2,7 @@ package inlet
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"sync"
@@ -175,32 +176,32 @@ func (p *Problem) LinearForm(i int) (a []float64, b float64, ok bool) {
 	return a, b, true
 }
 
-// Invalid reports a definition that no flow can be computed for.
+// Invalid is one reason why no flow can be computed for a definition.
 type Invalid struct {
 	What string
 }
 
 func (e *Invalid) Error() string { return "inlet definition: " + e.What }
 
+// validate reports everything wrong at once, each an *Invalid.
 func (d *Definition) validate() error {
-	n := len(d.RampAngle)
-	switch {
-	case n < 1 || n > ramp.MaxRamps:
-		return &Invalid{fmt.Sprintf("%d ramps, allowed 1 to %d", n, ramp.MaxRamps)}
-	case len(d.Points) == 0:
-		return &Invalid{"no flight point"}
-	case (d.CowlAngle == nil) == (d.LipTurning == nil):
-		return &Invalid{"exactly one of cowl angle and lip turning is needed"}
-	case !(d.CaptureHeight > 0) || !(d.Width > 0):
-		return &Invalid{"capture height and width must be positive"}
-	}
-	if err := d.Gas.Validate(); err != nil {
-		return &Invalid{err.Error()}
-	}
-	for _, point := range d.Points {
-		if !(point.Mach > 1) || !(point.Pressure > 0) || !(point.Temperature > 0) {
-			return &Invalid{fmt.Sprintf("flight point %s needs Mach above 1 and positive pressure and temperature", point.Name)}
+	var wrong []error
+	require := func(ok bool, format string, arguments ...any) {
+		if !ok {
+			wrong = append(wrong, &Invalid{fmt.Sprintf(format, arguments...)})
 		}
 	}
-	return nil
+	n := len(d.RampAngle)
+	require(n >= 1 && n <= ramp.MaxRamps, "%d ramps, allowed 1 to %d", n, ramp.MaxRamps)
+	require(len(d.Points) > 0, "no flight point")
+	require((d.CowlAngle == nil) != (d.LipTurning == nil), "exactly one of cowl angle and lip turning is needed")
+	require(d.CaptureHeight > 0 && d.Width > 0, "capture height %g m and width %g m must be positive", d.CaptureHeight, d.Width)
+	if err := d.Gas.Validate(); err != nil {
+		require(false, "%v", err)
+	}
+	for _, point := range d.Points {
+		require(point.Mach > 1 && point.Pressure > 0 && point.Temperature > 0,
+			"flight point %s needs Mach above 1 and positive pressure and temperature", point.Name)
+	}
+	return errors.Join(wrong...)
 }
