@@ -1,6 +1,7 @@
 package main
 
 import (
+	"fmt"
 	"io"
 	"strings"
 
@@ -41,7 +42,11 @@ Exit codes:
 		SilenceErrors:              true,
 		SuggestionsMinimumDistance: 2,
 		CompletionOptions:          cobra.CompletionOptions{HiddenDefaultCmd: true},
+		Args:                       cobra.ArbitraryArgs,
 		RunE: func(cmd *cobra.Command, args []string) error {
+			if len(args) > 0 {
+				return unknownCommand(cmd, args[0])
+			}
 			return cmd.Help()
 		},
 	}
@@ -58,14 +63,23 @@ Exit codes:
 	root.SetHelpCommand(&cobra.Command{
 		Use: "help [command]", Short: "Explain a command",
 		RunE: func(cmd *cobra.Command, args []string) error {
-			about, _, err := root.Find(args)
-			if err != nil {
-				return &usageError{err.Error(), "see rampwright --help"}
+			about, rest, _ := root.Find(args)
+			if len(rest) > 0 {
+				return unknownCommand(root, rest[0])
 			}
 			return about.Help()
 		},
 	})
 	return root
+}
+
+// unknownCommand refuses a command there is not, with the nearest there is.
+func unknownCommand(root *cobra.Command, name string) error {
+	hint := "rampwright --help lists the commands"
+	if near := root.SuggestionsFor(name); len(near) > 0 {
+		hint = "did you mean " + strings.Join(near, " or ") + "? " + hint
+	}
+	return &usageError{fmt.Sprintf("there is no command %q", name), hint}
 }
 
 // exactArgs refuses a wrong number of arguments as bad usage.
