@@ -44,7 +44,6 @@ type designer struct {
 	weight     float64   // of the violation in the merit
 	radius     float64   // of the trust region
 	misled     bool      // the last step gained much less than expected
-	prices     []float64 // by row, at the last local solution
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
 
 	audited   *audit
@@ -78,16 +77,17 @@ func (d *designer) run(ctx context.Context) error {
 			return err
 		}
 		if len(proposals) == 0 {
-			break
+			if d.why == "" {
+				d.why = "no point near the optimum is left that would teach the surrogates more"
+			}
+			return nil
 		}
 		if err := d.evaluate(ctx, proposals); err != nil {
 			return err
 		}
 		d.learn(proposals)
 	}
-	if d.why == "" {
-		d.why = "all infill evaluations are spent"
-	}
+	d.why = "all infill evaluations are spent"
 	return nil
 }
 
@@ -96,7 +96,7 @@ func (d *designer) sample(ctx context.Context) error {
 	points := d.plan.design(d.settings.Samples, d.settings.Seed)
 	// In slices, so that an interruption loses little and progress shows.
 	for len(points) > 0 {
-		part := points[:min(len(points), 4*d.settings.Jobs)]
+		part := points[:min(len(points), sampleSlice)]
 		points = points[len(part):]
 		samples, err := d.plan.evaluate(ctx, d.settings.Jobs, part)
 		if err != nil {
@@ -110,6 +110,9 @@ func (d *designer) sample(ctx context.Context) error {
 	d.scale()
 	return nil
 }
+
+// sampleSlice is how many samples are evaluated between two signs of progress.
+const sampleSlice = 16
 
 // scale sets the unit of the aim: its spread over the samples.
 func (d *designer) scale() {
@@ -156,13 +159,13 @@ func (d *designer) center() *sample {
 func (d *designer) merit(s *sample) float64 {
 	aim := d.plan.objective.sign() * s.aim / d.aimScale
 	if math.IsNaN(aim) {
-		aim = constraintsWorse
+		aim = withoutAim
 	}
 	return aim + d.weight*s.violation
 }
 
-// constraintsWorse is the scaled aim of a sample without one.
-const constraintsWorse = 1e3
+// withoutAim is the scaled aim of a sample that has none.
+const withoutAim = 1e3
 
 // best is the best feasible sample, nil before the first.
 func (d *designer) best() *sample {
@@ -218,7 +221,7 @@ func (d *designer) leastViolation() float64 {
 // result closes the design: candidates verified, the status decided.
 func (d *designer) result(ctx context.Context) (*Result, error) {
 	if len(d.samples) == 0 {
-		return nil, errors.Join(errNothingEvaluated, ctx.Err())
+		return nil, ErrNothingEvaluated
 	}
 	r := &Result{Rows: d.plan.rows, History: d.history, Why: d.why}
 	finalists := d.finalists()
@@ -230,10 +233,12 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 		r.Candidates = append(r.Candidates, candidate)
 	}
 	r.Best = r.Candidates[0]
-	if len(d.training) > d.plan.dimension()+2 {
-		if err := d.fitWide(context.WithoutCancel(ctx)); err != nil {
+	if ctx.Err() == nil { // else the fits of the last round stand
+		if err := d.fitWide(ctx); err != nil {
 			return nil, err
 		}
+	}
+	if d.wide != nil {
 		r.Fits = d.wide.fits
 	}
 	for i, s := range d.samples {
@@ -248,13 +253,15 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 	return r, nil
 }
 
-var errNothingEvaluated = errors.New("no design was evaluated")
+// ErrNothingEvaluated is the answer of a search whose context ended before the
+// first exact evaluation.
+var ErrNothingEvaluated = errors.New("the search ended before the first design was evaluated")
 
 func (d *designer) status(ctx context.Context, best *Candidate) Status {
 	switch {
-	case errors.Is(context.Cause(ctx), context.DeadlineExceeded) && best.Assessment.Feasible:
+	case errors.Is(context.Cause(ctx), context.DeadlineExceeded):
 		return Stopped
-	case ctx.Err() != nil && !errors.Is(context.Cause(ctx), context.DeadlineExceeded):
+	case ctx.Err() != nil:
 		return Interrupted
 	case !best.Assessment.Feasible:
 		return Infeasible

@@ -96,17 +96,16 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 		return nil, err
 	}
 	d.counts.Surrogate += land.calls
-	d.setPrices(found.prices)
+	d.raiseWeight(found.prices)
 	p := d.proposal(found.u, d.near)
 	p.exploit = true
 	p.expected = d.expectedMerit(found)
 	return p, nil
 }
 
-// setPrices keeps the prices and makes the merit's weight exact: above every
-// scaled multiplier (Nocedal & Wright thm. 17.3).
-func (d *designer) setPrices(prices []float64) {
-	d.prices = prices
+// raiseWeight keeps the merit exact: its weight stays above every scaled
+// multiplier (Nocedal & Wright thm. 17.3).
+func (d *designer) raiseWeight(prices []float64) {
 	for r, price := range prices {
 		d.weight = math.Max(d.weight, 2*price*d.plan.rows[r].Scale/d.aimScale)
 	}

@@ -20,7 +20,8 @@ const (
 	// Infeasible: no exact evaluation holds every limit; Best has the least sum
 	// of scaled violations.
 	Infeasible
-	// Stopped: time ran out; Best is the best feasible evaluation so far.
+	// Stopped: time ran out; Best is the best evaluation so far: feasible, or the
+	// one of least violation.
 	Stopped
 	// Interrupted: the user stopped it; Best as for Stopped.
 	Interrupted

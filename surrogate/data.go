@@ -3,6 +3,7 @@ package surrogate
 import (
 	"fmt"
 	"math"
+	"strings"
 )
 
 // DataError reports samples no fit can use. Row is the sample at fault and
@@ -23,6 +24,16 @@ func (e *DataError) Error() string {
 	default:
 		return fmt.Sprintf("sample %d, input %d: %s", e.Row, e.Column, e.What)
 	}
+}
+
+// SettingsError lists everything wrong with a configuration.
+type SettingsError struct {
+	Of       string // kind
+	Problems []string
+}
+
+func (e *SettingsError) Error() string {
+	return e.Of + " settings: " + strings.Join(e.Problems, "; ")
 }
 
 // farthestInput bounds the inputs a fit accepts. They belong in the unit cube;

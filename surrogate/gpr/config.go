@@ -73,34 +73,16 @@ func (c Config) Kind() string {
 }
 
 const (
-	shortestLength = 0.03 // of the unit cube
-	longestLength  = 30.0
+	shortestLength = 0.03  // of the unit cube
+	longestLength  = 30.0  // of the unit cube
 	leastNugget    = 1e-12 // of the process variance, when estimated
-	mostNugget     = 0.1
+	mostNugget     = 0.1   // of the process variance, when estimated
 	nuggetFloor    = 1e-12 // added always, for the factorisation
-
-	mostJitter = 1e-6
-	subsetSize = 150
+	mostJitter     = 2e-6  // the floor is raised tenfold up to here
+	subsetSize     = 150
 )
 
-// SettingsError lists everything wrong with a configuration.
-type SettingsError struct {
-	Problems []string
-}
-
-func (e *SettingsError) Error() string {
-	text := "Gaussian process settings"
-	for i, p := range e.Problems {
-		separator := ": "
-		if i > 0 {
-			separator = "; "
-		}
-		text += separator + p
-	}
-	return text
-}
-
-// Validate returns nil or a *SettingsError for d inputs.
+// Validate returns nil or a *surrogate.SettingsError for d inputs.
 func (c Config) Validate(d int) error {
 	var problems []string
 	add := func(format string, values ...any) { problems = append(problems, fmt.Sprintf(format, values...)) }
@@ -128,7 +110,7 @@ func (c Config) Validate(d int) error {
 	if problems == nil {
 		return nil
 	}
-	return &SettingsError{problems}
+	return &surrogate.SettingsError{Of: c.Kind(), Problems: problems}
 }
 
 func (h Hyper) problems(d int) []string {

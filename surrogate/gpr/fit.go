@@ -14,7 +14,7 @@ import (
 // Constant outputs give a constant with deviation 0. Repeated samples are
 // admitted. It returns *surrogate.DataError for fewer than two samples, values
 // that are not finite, or a linear trend on collinear inputs, and
-// *SettingsError for a bad configuration.
+// *surrogate.SettingsError for a bad configuration.
 func (c Config) Fit(ctx context.Context, x [][]float64, y []float64) (surrogate.Fitted, error) {
 	p, err := c.FitProcess(ctx, x, y)
 	if err != nil {

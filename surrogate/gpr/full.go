@@ -15,7 +15,7 @@ import (
 // natural logarithms of variance, lengths and noise, in this order (equation
 // 5.9). Nothing is scaled, profiled or floored. It returns
 // *surrogate.DataError for unusable samples or a covariance without a Cholesky
-// factor, and *SettingsError for hyperparameters out of range.
+// factor, and *surrogate.SettingsError for hyperparameters out of range.
 func LogLikelihood(kernel Kernel, x [][]float64, y []float64, variance float64, lengths []float64, noise float64) (value float64, gradient []float64, err error) {
 	if err := surrogate.Check(x, y, 1); err != nil {
 		return 0, nil, err
@@ -25,7 +25,7 @@ func LogLikelihood(kernel Kernel, x [][]float64, y []float64, variance float64, 
 		problems = append(problems, "variance must be positive and noise not negative")
 	}
 	if problems != nil {
-		return 0, nil, &SettingsError{problems}
+		return 0, nil, &surrogate.SettingsError{Of: "Gaussian process", Problems: problems}
 	}
 	nugget := noise / variance
 	s := newSolver(newSample(x, y, kernel, None))

@@ -29,6 +29,9 @@ const (
 // stops when no free component of the gradient exceeds tolerance, when a step
 // decreases f by less than flat, or after the given number of iterations. An
 // inverse Hessian learned elsewhere, which may be nil, saves the first steps.
+//
+// Unlike a general optimizer it stops at the rounding of the likelihood (flat)
+// and takes and returns the curvature: most refits then cost two evaluations.
 func minimise(f objective, start, low, high, learned []float64, tolerance, flat float64, iterations int) minimum {
 	d := len(start)
 	x, g := append([]float64(nil), start...), make([]float64, d)
@@ -157,11 +160,14 @@ func (h *inverseHessian) reset() {
 	}
 }
 
-// longestStep bounds a step in any logarithm: a factor of e^2 in a length.
-const longestStep = 2
+// Bounds on a step in any variable, the logarithm of a length or nugget: before
+// anything was learned, and after.
+const (
+	firstStep   = 0.5
+	longestStep = 2.0
+)
 
-// step stores -H g of the free variables in dst, scaled to at most longestStep;
-// the first one is a gradient step of length at most 1.
+// step stores -H g of the free variables in dst, scaled down to the bound.
 func (h *inverseHessian) step(dst, x, g, low, high []float64) {
 	longest := 0.0
 	for j := range dst {
@@ -176,9 +182,9 @@ func (h *inverseHessian) step(dst, x, g, low, high []float64) {
 		}
 		longest = math.Max(longest, math.Abs(dst[j]))
 	}
-	limit := float64(longestStep)
+	limit := longestStep
 	if h.fresh {
-		limit = 0.5
+		limit = firstStep
 	}
 	if longest > limit {
 		for j := range dst {

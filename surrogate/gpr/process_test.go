@@ -271,7 +271,7 @@ func TestErrorsNameTheRow(t *testing.T) {
 	check("infinite input", 4, 1, x, y, Config{})
 
 	_, err := Config{Fixed: true, Restarts: -1, Nugget: 2}.Fit(background, line, y)
-	var settings *SettingsError
+	var settings *surrogate.SettingsError
 	if !errors.As(err, &settings) || len(settings.Problems) != 3 {
 		t.Errorf("settings: %v", err)
 	}

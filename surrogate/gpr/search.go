@@ -100,7 +100,7 @@ func (s *search) bounds() (low, high []float64) {
 func (s *search) starts() [][]float64 {
 	var starts [][]float64
 	c, d := s.config, s.sample.d
-	level := func(length func(j int) float64, nugget float64) {
+	add := func(length func(j int) float64, nugget float64) {
 		var start []float64
 		for j := range d {
 			start = append(start, math.Log(length(j)))
@@ -112,32 +112,34 @@ func (s *search) starts() [][]float64 {
 	}
 	restarts := c.Restarts
 	if c.Start != nil {
-		level(func(j int) float64 { return c.Start.Lengths[j] }, math.Max(c.Start.Nugget, 1e-8))
+		add(func(j int) float64 { return c.Start.Lengths[j] }, math.Max(c.Start.Nugget, 1e-8))
 	} else {
-		level(func(int) float64 { return 0.5 }, 1e-3)
-		level(func(int) float64 { return 1.5 }, 1e-6)
+		add(func(int) float64 { return 0.5 }, 1e-3)
+		add(func(int) float64 { return 1.5 }, 1e-6)
 		if restarts == 0 {
 			restarts = 3
 		}
 	}
 	hypercube := doe.RandomLatinHypercube(restarts, d+1, doe.Stream(c.Seed, "Gaussian process starts"))
 	for _, u := range hypercube {
-		level(func(j int) float64 { return 0.15 * math.Pow(40, u[j]) }, math.Pow(10, -10+9*u[d]))
+		add(func(j int) float64 { return 0.15 * math.Pow(40, u[j]) }, math.Pow(10, -10+9*u[d]))
 	}
 	return starts
 }
 
 // multistart descends from every start, side by side, and returns the best;
-// ties go to the earlier start.
-//
-// The curvature learned on fewer samples is passed on scaled by their ratio.
+// ties go to the earlier start. The curvature learned on a subset is passed on
+// scaled by the numbers of samples. A single start needs no choice.
 func (s *search) multistart(ctx context.Context, starts [][]float64, learned []float64) (minimum, error) {
+	if len(starts) == 1 {
+		return minimum{x: starts[0], curvature: learned}, nil
+	}
 	stage := s.sample
 	above := s.config.SubsetAbove
 	if above == 0 {
 		above = 180
 	}
-	if above > 0 && stage.n > above && len(starts) > 1 {
+	if above > 0 && stage.n > above {
 		stage = stage.subset(doe.SpreadRows(subsetSize, nil, stage.x))
 	}
 	results := make([]minimum, len(starts))
@@ -211,9 +213,9 @@ func (s *search) nuggets(x, lengths []float64) float64 {
 //
 //	sum_j (log l_j - log(sqrt(d)/2))^2/2,
 //
-// and adds its derivatives by log l_j to the gradient. Weak beside any informative likelihood, it
-// keeps flat ones from running to a bound (scaling with the dimension after
-// Hvarfner, Hellsten & Nardi 2024, from memory).
+// and adds its derivatives by log l_j to the gradient. Weak beside any
+// informative likelihood, it keeps flat ones from running to a bound (scaling
+// with the dimension after Hvarfner, Hellsten & Nardi 2024, from memory).
 func addPrior(gradient, logLengths []float64) float64 {
 	center := math.Log(0.5 * math.Sqrt(float64(len(logLengths))))
 	sum := 0.0

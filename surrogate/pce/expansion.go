@@ -65,8 +65,14 @@ func (e *Expansion) LeaveOneOut() []float64 { return e.loo }
 // LeaveOneOutDeviation returns their standard deviations.
 func (e *Expansion) LeaveOneOutDeviation() []float64 { return e.looDeviation }
 
-// Complexity orders least squares before penalised and Gaussian-process fits,
-// fewer terms before more.
+// Offsets of the complexity between kinds; Gaussian processes lie beyond.
+const (
+	sparseRank = 500_000
+	ridgeRank  = 1_000_000
+)
+
+// Complexity orders least squares before sparse and penalised fits, fewer terms
+// before more.
 func (e *Expansion) Complexity() int { return e.rank + e.active }
 
 // Describe returns degree and number of terms, and what else the fit chose.
@@ -137,23 +143,6 @@ func asFitted(e *Expansion, err error) (surrogate.Fitted, error) {
 	return e, nil
 }
 
-// SettingsError lists everything wrong with a configuration.
-type SettingsError struct {
-	Problems []string
-}
-
-func (e *SettingsError) Error() string {
-	text := "polynomial chaos settings"
-	for i, p := range e.Problems {
-		separator := ": "
-		if i > 0 {
-			separator = "; "
-		}
-		text += separator + p
-	}
-	return text
-}
-
 // resolveInputs returns one distribution an input (all uniform when none is
 // given) or the reasons why that cannot be.
 func resolveInputs(inputs []Input, d int) ([]Input, []string) {
@@ -195,7 +184,7 @@ func prepare(t Truncation, inputs []Input, extra []string, x [][]float64, y []fl
 	resolved, problems := resolveInputs(inputs, len(x[0]))
 	problems = append(append(t.problems(), problems...), extra...)
 	if len(problems) > 0 {
-		err = &SettingsError{problems}
+		err = &surrogate.SettingsError{Of: "polynomial chaos", Problems: problems}
 		return
 	}
 	scaling, scaled, _ = surrogate.Standardise(y)

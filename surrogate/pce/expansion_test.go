@@ -338,7 +338,7 @@ func TestErrors(t *testing.T) {
 	if _, err := (OLS{Truncation: Truncation{Degree: 4}, Exactly: true}).Fit(background, x, y); !errors.As(err, &data) {
 		t.Errorf("fewer samples than terms: %v", err)
 	}
-	var settings *SettingsError
+	var settings *surrogate.SettingsError
 	_, err := Ridge{Truncation: Truncation{Degree: -1, Norm: 2}, Growth: -3, Inputs: []Input{{Normal: true}}}.Fit(background, x, y)
 	if !errors.As(err, &settings) || len(settings.Problems) != 5 {
 		t.Errorf("settings: %v", err)
@@ -351,5 +351,23 @@ func TestMeanDoesNotAllocate(t *testing.T) {
 	u, slope := []float64{0.2, 0.3, 0.4}, make([]float64, 3)
 	if n := testing.AllocsPerRun(1000, func() { e.Mean(u); e.Gradient(slope, u); e.Predict(u) }); n > 0.1 {
 		t.Errorf("%g allocations", n) // the pool may be emptied by a collection
+	}
+}
+
+// A warm refit keeps the structure on the same data, and a constant does not
+// bind the next fit.
+func TestWarm(t *testing.T) {
+	x, y := samples(40, 3, 9, smooth)
+	level := make([]float64, len(y))
+	for _, m := range everyKind {
+		e := fit(t, m, x, y)
+		again := fit(t, e.Warm(), x, y)
+		if again.Describe() != e.Describe() || math.Abs(again.Mean(x[3])-e.Mean(x[3])) > 1e-6 {
+			t.Errorf("%s: %s became %s", m.Kind(), e.Describe(), again.Describe())
+		}
+		constant := fit(t, m, x, level)
+		if freed := fit(t, constant.Warm(), x, y); freed.Describe() != e.Describe() {
+			t.Errorf("%s: after a constant %s, want %s", m.Kind(), freed.Describe(), e.Describe())
+		}
 	}
 }

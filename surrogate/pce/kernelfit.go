@@ -91,7 +91,10 @@ type kernelFit struct {
 	design   blas64.General
 	weights  []float64 // growth^(-2|a|), 0 for the constant
 	basisSum float64   // 1'A^-1 1
-	inverse1 []float64 // 1/(D + lambda)
+	constant float64   // b0
+	inverse  []float64 // 1/(D + lambda)
+	ofY      []float64 // inverse * U'(y - b0)
+	ofOnes   []float64 // inverse * U'1
 	tail     float64   // mean prior variance of the total degrees beyond the level
 }
 
@@ -119,7 +122,8 @@ func (g *grams) fit(level int, growth, penalty float64, y []float64) (*kernelFit
 	}
 	blas64.Gemv(blas.Trans, 1, f.vectors, vector(y), 0, vector(f.y))
 	blas64.Gemv(blas.Trans, 1, f.vectors, vector(ones), 0, vector(f.ones))
-	f.looResidual, f.looDeviation, f.inverse1 = make([]float64, g.n), make([]float64, g.n), make([]float64, g.n)
+	f.looResidual, f.looDeviation = make([]float64, g.n), make([]float64, g.n)
+	f.inverse, f.ofY, f.ofOnes = make([]float64, g.n), make([]float64, g.n), make([]float64, g.n)
 	f.lambda = penalty
 	if penalty == 0 {
 		f.lambda = f.bestPenalty()
@@ -132,7 +136,7 @@ const (
 	leastPenalty = 1e-14 // relative to the largest eigenvalue
 	mostPenalty  = 1e2
 	penaltySteps = 17
-	goldenSteps  = 12
+	goldenSteps  = 8
 )
 
 // bestPenalty searches the logarithm of the penalty on a grid, then by golden
@@ -179,20 +183,23 @@ func (f *kernelFit) leaveOneOut(lambda float64) float64 {
 	f.basisSum = 0
 	onesY := 0.0
 	for k, v := range f.values {
-		f.inverse1[k] = 1 / (v + lambda)
-		f.basisSum += f.ones[k] * f.ones[k] * f.inverse1[k]
-		onesY += f.ones[k] * f.y[k] * f.inverse1[k]
+		f.inverse[k] = 1 / (v + lambda)
+		f.basisSum += f.ones[k] * f.ones[k] * f.inverse[k]
+		onesY += f.ones[k] * f.y[k] * f.inverse[k]
 	}
-	level := onesY / f.basisSum
+	f.constant = onesY / f.basisSum
+	for k, w := range f.inverse {
+		f.ofY[k], f.ofOnes[k] = w*(f.y[k]-f.constant*f.ones[k]), w*f.ones[k]
+	}
 	sum := 0.0
 	for i := range n {
 		row := f.vectors.Data[i*n : (i+1)*n]
+		inverse, ofY, ofOnes := f.inverse[:len(row)], f.ofY[:len(row)], f.ofOnes[:len(row)]
 		q, diagonal, unit := 0.0, 0.0, 0.0
 		for k, u := range row {
-			w := u * f.inverse1[k]
-			q += w * (f.y[k] - level*f.ones[k])
-			diagonal += w * u
-			unit += w * f.ones[k]
+			q += u * ofY[k]
+			diagonal += u * u * inverse[k]
+			unit += u * ofOnes[k]
 		}
 		diagonal = math.Max(diagonal-unit*unit/f.basisSum, leverageFloor*diagonal)
 		f.looResidual[i] = q / diagonal
@@ -216,26 +223,18 @@ func (f *kernelFit) finish(b *basis, x [][]float64, y []float64) *kernelFit {
 	f.leaveOneOut(f.lambda)
 	f.design = b.design(x)
 	alpha := make([]float64, n)
-	level := 0.0
-	for k := range f.values {
-		level += f.ones[k] * f.y[k] * f.inverse1[k] / f.basisSum
-	}
-	weighted := make([]float64, n)
-	for k := range f.values {
-		weighted[k] = (f.y[k] - level*f.ones[k]) * f.inverse1[k]
-	}
-	blas64.Gemv(blas.NoTrans, 1, f.vectors, vector(weighted), 0, vector(alpha))
+	blas64.Gemv(blas.NoTrans, 1, f.vectors, vector(f.ofY), 0, vector(alpha))
 	f.coefficients, f.weights = make([]float64, p), make([]float64, p)
 	blas64.Gemv(blas.Trans, 1, f.design, vector(alpha), 0, vector(f.coefficients))
 	for t, a := range b.terms {
 		f.weights[t] = math.Pow(f.growth, -2*float64(a.total()))
 		f.coefficients[t] *= f.weights[t]
 	}
-	f.coefficients[0], f.weights[0] = level, 0
+	f.coefficients[0], f.weights[0] = f.constant, 0
 	f.tail = tail(len(b.inputs), f.level, f.growth)
 	likely := 0.0
-	for k, w := range weighted {
-		likely += w * (f.y[k] - level*f.ones[k]) / float64(n-1)
+	for k, w := range f.ofY {
+		likely += w * (f.y[k] - f.constant*f.ones[k]) / float64(n-1)
 	}
 	for i, r := range f.looResidual {
 		f.variance += (r / f.looDeviation[i]) * (r / f.looDeviation[i]) / float64(n)
@@ -292,8 +291,8 @@ func (f *kernelFit) deviation(s *scratch) float64 {
 	blas64.Gemv(blas.Trans, 1, f.vectors, vector(k), 0, vector(t))
 	unit := 1.0
 	for i, v := range t {
-		prior -= v * v * f.inverse1[i]
-		unit -= v * f.ones[i] * f.inverse1[i]
+		prior -= v * v * f.inverse[i]
+		unit -= v * f.ones[i] * f.inverse[i]
 	}
 	return math.Sqrt(f.variance * math.Max(prior+unit*unit/f.basisSum, 0))
 }

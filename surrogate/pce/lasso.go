@@ -48,7 +48,7 @@ func (c Lasso) Fit(ctx context.Context, x [][]float64, y []float64) (surrogate.F
 // FitExpansion is Fit with the concrete type.
 func (c Lasso) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*Expansion, error) {
 	if c.Folds < 0 {
-		return nil, &SettingsError{[]string{fmt.Sprintf("%d folds", c.Folds)}}
+		return nil, &surrogate.SettingsError{Of: c.Kind(), Problems: []string{fmt.Sprintf("%d folds", c.Folds)}}
 	}
 	folds, terms := c.Folds, c.Terms
 	if folds == 0 {
@@ -64,8 +64,10 @@ func (c Lasso) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*E
 	if err != nil {
 		return nil, err
 	}
-	c.Degree, c.Exactly = level, level > 0
-	e.warm, e.summary = c, fmt.Sprintf("%s, lasso", termsText(e.largestDegree(), e.active))
+	if level > 0 { // a constant says nothing about the next fit
+		c.Degree, c.Exactly = level, true
+	}
+	e.warm, e.summary = c, termsText(e.largestDegree(), e.active)+", lasso"
 	return e, nil
 }
 

@@ -2,7 +2,6 @@ package pce
 
 import (
 	"context"
-	"fmt"
 	"math"
 
 	"gonum.org/v1/gonum/blas/blas64"
@@ -41,27 +40,11 @@ func (c LeastAngle) FitExpansion(ctx context.Context, x [][]float64, y []float64
 	if err != nil {
 		return nil, err
 	}
-	c.Degree, c.Exactly = level, level > 0
-	e.warm, e.summary = c, fmt.Sprintf("%s, least angle", termsText(e.largestDegree(), e.active))
-	return e, nil
-}
-
-// covariance holds the products of a design matrix with its columns and the
-// outputs, both centred: G = Xc'Xc/n, c = Xc'y/n, without the constant.
-type covariance struct {
-	p      int
-	gram   []float64 // p x p, by rows
-	moment []float64 // p
-	size   float64   // y'y/n, centred
-}
-
-// newCovariance forms the products; column 0 of the design is the constant.
-func newCovariance(design blas64.General, y []float64) *covariance {
-	rows := make([]int, design.Rows)
-	for i := range rows {
-		rows[i] = i
+	if level > 0 { // a constant says nothing about the next fit
+		c.Degree, c.Exactly = level, true
 	}
-	return newSums(design, y, rows).covariance()
+	e.warm, e.summary = c, termsText(e.largestDegree(), e.active)+", least angle"
+	return e, nil
 }
 
 // leastAngle returns the order in which columns enter (numbered as in the
@@ -81,7 +64,6 @@ func (v *covariance) leastAngle(steps int) (order []int, sizes []float64) {
 	state := make([]columnState, p)
 	factor := &growingFactor{}
 	signs, direction := make([]float64, 0, steps), make([]float64, p)
-	first := v.moment
 	for {
 		next, size := -1, 0.0
 		for j, c := range correlation {
@@ -89,7 +71,7 @@ func (v *covariance) leastAngle(steps int) (order []int, sizes []float64) {
 				next, size = j, math.Abs(c)
 			}
 		}
-		if next < 0 || len(order) >= steps || size <= correlationFloor*largestSize(first) {
+		if next < 0 || len(order) >= steps || size <= correlationFloor*largestSize(v.moment) {
 			return order, sizes
 		}
 		if !factor.add(v.gramColumn(next, order), v.gram[next*p+next]) {
@@ -128,9 +110,6 @@ const (
 	dependent // on the active columns
 )
 
-// dependenceFloor is the least squared pivot relative to the column.
-const dependenceFloor = 1e-10
-
 // correlationFloor ends the path where the correlations are rounding.
 const correlationFloor = 1e-12
 
@@ -141,14 +120,6 @@ func positiveRatio(a, b, otherwise float64) float64 {
 	return a / b
 }
 
-func largestSize(v []float64) float64 {
-	largest := 0.0
-	for _, c := range v {
-		largest = math.Max(largest, math.Abs(c))
-	}
-	return largest
-}
-
 // gramColumn returns the entries of column j of G at the active columns.
 func (v *covariance) gramColumn(j int, order []int) []float64 {
 	out := make([]float64, len(order))
@@ -156,47 +127,4 @@ func (v *covariance) gramColumn(j int, order []int) []float64 {
 		out[k] = v.gram[j*v.p+column-1]
 	}
 	return out
-}
-
-// growingFactor is a Cholesky factor that grows by one row at a time.
-type growingFactor struct {
-	rows [][]float64
-}
-
-// add appends a column with the given products with the earlier ones and
-// itself; false, and no change, when it depends on them.
-func (f *growingFactor) add(products []float64, own float64) bool {
-	row := append(append(make([]float64, 0, len(products)+1), products...), 0)
-	left := own
-	for i, r := range f.rows {
-		for k := range i {
-			row[i] -= r[k] * row[k]
-		}
-		row[i] /= r[i]
-		left -= row[i] * row[i]
-	}
-	if !(left > dependenceFloor*own) {
-		return false
-	}
-	row[len(products)] = math.Sqrt(left)
-	f.rows = append(f.rows, row)
-	return true
-}
-
-// solve returns the solution of (L L') w = b.
-func (f *growingFactor) solve(b []float64) []float64 {
-	w := append([]float64(nil), b...)
-	for i, r := range f.rows {
-		for k := range i {
-			w[i] -= r[k] * w[k]
-		}
-		w[i] /= r[i]
-	}
-	for i := len(f.rows) - 1; i >= 0; i-- {
-		w[i] /= f.rows[i][i]
-		for k := range i {
-			w[k] -= f.rows[i][k] * w[i]
-		}
-	}
-	return w
 }

@@ -17,7 +17,8 @@ import (
 // the degree state that smooth functions have fast decaying coefficients; the
 // fit then equals a Gaussian process with the kernel
 // sum_a growth^(-2|a|) psi_a psi_a', so fewer samples than terms are no
-// obstacle. Level, growth and lambda are those of least leave-one-out error.
+// obstacle. Level, growth and lambda are those of least leave-one-out error. A
+// trial costs one eigendecomposition of n x n: meant for up to some 500 samples.
 type Ridge struct {
 	Truncation
 	Inputs []Input
@@ -71,7 +72,7 @@ func (c Ridge) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*E
 	if err != nil {
 		return nil, err
 	}
-	e := &Expansion{basis: full, scaling: scaling, rank: 1_000_000}
+	e := &Expansion{basis: full, scaling: scaling, rank: ridgeRank}
 	if end := ends[best.level]; end < len(terms) {
 		e.basis = newBasis(inputs, terms[:end])
 	}
@@ -150,7 +151,7 @@ func (c Ridge) searchGrowth(ctx context.Context, grams *grams, top int, y []floa
 			return 0, err
 		}
 	}
-	for _, factor := range []float64{1.25, 0.8, 1.12, 0.89} {
+	for _, factor := range []float64{1.25, 0.8} {
 		if err := try(min(max(best*factor, leastGrowth), mostGrowth)); err != nil {
 			return 0, err
 		}

@@ -102,14 +102,13 @@ func (f *sparseFit) expansion(full *basis, scaling surrogate.Scaling, scaled, y 
 	if factor := f.factors.corrections()[size-1]; size > 1 && !math.IsInf(factor, 1) {
 		r.inflate(math.Sqrt(factor), math.Sqrt(factor*float64(len(y)-size)/float64(len(y))))
 	}
-	e := &Expansion{basis: newBasis(full.inputs, terms), scaling: scaling, spread: r, active: size}
+	e := &Expansion{basis: newBasis(full.inputs, terms), scaling: scaling, spread: r, active: size, rank: sparseRank}
 	e.scaled = make([]float64, len(terms))
 	for k, t := range f.columns {
 		r.columns = append(r.columns, place[t])
 		e.scaled[place[t]] = r.coefficients[k]
 	}
 	e.setLeaveOneOut(y, r.looResidual, r.looDeviation)
-	e.rank = 500_000
 	return e
 }
 

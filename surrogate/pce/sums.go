@@ -1,6 +1,8 @@
 package pce
 
 import (
+	"math"
+
 	"gonum.org/v1/gonum/blas"
 	"gonum.org/v1/gonum/blas/blas64"
 )
@@ -63,7 +65,6 @@ func (s *sums) without(part *sums) *sums {
 func (s *sums) covariance() *covariance {
 	n := float64(s.n)
 	v := &covariance{p: s.p, gram: make([]float64, s.p*s.p), moment: make([]float64, s.p)}
-	v.size = s.yy/n - (s.y/n)*(s.y/n)
 	for i := range s.p {
 		mean := s.total[i] / n
 		v.moment[i] = s.ofY[i]/n - mean*s.y/n
@@ -72,4 +73,29 @@ func (s *sums) covariance() *covariance {
 		}
 	}
 	return v
+}
+
+// covariance holds the products of a design matrix with its columns and the
+// outputs, both centred: G = Xc'Xc/n, c = Xc'y/n, without the constant.
+type covariance struct {
+	p      int
+	gram   []float64 // p x p, by rows
+	moment []float64 // p
+}
+
+// newCovariance forms the products; column 0 of the design is the constant.
+func newCovariance(design blas64.General, y []float64) *covariance {
+	rows := make([]int, design.Rows)
+	for i := range rows {
+		rows[i] = i
+	}
+	return newSums(design, y, rows).covariance()
+}
+
+func largestSize(v []float64) float64 {
+	largest := 0.0
+	for _, c := range v {
+		largest = math.Max(largest, math.Abs(c))
+	}
+	return largest
 }
