@@ -99,12 +99,12 @@ func (d *designer) sample(ctx context.Context) error {
 		part := points[:min(len(points), sampleSlice)]
 		points = points[len(part):]
 		samples, err := d.plan.evaluate(ctx, d.settings.Jobs, part)
-		if err != nil {
-			return err
-		}
 		d.samples = append(d.samples, samples...)
 		d.training = append(d.training, samples...)
 		d.counts.Samples += len(samples)
+		if err != nil {
+			return err
+		}
 		d.tell("samples")
 	}
 	d.scale()
@@ -185,14 +185,14 @@ func (d *designer) evaluate(ctx context.Context, proposals []*proposal) error {
 		points[i] = p.u
 	}
 	samples, err := d.plan.evaluate(ctx, d.settings.Jobs, points)
+	d.samples = append(d.samples, samples...)
+	d.counts.Infill += len(samples)
 	if err != nil {
 		return err
 	}
 	for i, s := range samples {
 		proposals[i].sample = s
 	}
-	d.samples = append(d.samples, samples...)
-	d.counts.Infill += len(samples)
 	return nil
 }
 
@@ -221,7 +221,7 @@ func (d *designer) leastViolation() float64 {
 // result closes the design: candidates verified, the status decided.
 func (d *designer) result(ctx context.Context) (*Result, error) {
 	if len(d.samples) == 0 {
-		return nil, ErrNothingEvaluated
+		return nil, errors.Join(ErrNothingEvaluated, ctx.Err())
 	}
 	r := &Result{Rows: d.plan.rows, History: d.history, Why: d.why}
 	finalists := d.finalists()

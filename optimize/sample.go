@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"slices"
 	"sync"
 
 	"rampwright/constraints"
@@ -51,7 +52,8 @@ func (p *plan) judge(u []float64, evaluation *problems.Evaluation) *sample {
 }
 
 // evaluate computes the points exactly, jobs of them at a time, and returns them
-// in order. A model that could not be run ends it with the first error in order.
+// in order. A model that could not be run gives the first error in order, with
+// the samples that were done beside it.
 func (p *plan) evaluate(ctx context.Context, jobs int, points [][]float64) ([]*sample, error) {
 	samples := make([]*sample, len(points))
 	failures := make([]error, len(points))
@@ -63,7 +65,7 @@ func (p *plan) evaluate(ctx context.Context, jobs int, points [][]float64) ([]*s
 	})
 	for _, err := range failures {
 		if err != nil {
-			return nil, err
+			return slices.DeleteFunc(samples, func(s *sample) bool { return s == nil }), err
 		}
 	}
 	return samples, nil
