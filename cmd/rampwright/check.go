@@ -7,7 +7,6 @@ import (
 
 	"rampwright/cmd/rampwright/internal/brief"
 	"rampwright/cmd/rampwright/internal/report"
-	"rampwright/problems/inlet"
 )
 
 func (a *app) checkCommand() *cobra.Command {
@@ -44,7 +43,7 @@ func (a *app) check(study *study) error {
 func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 	b := s.brief
 	out := report.CheckedBrief{
-		Head: s.head(b.Effort.Seed), Aim: aimText(b), Variables: s.problem.Variables(), Limits: s.limits,
+		Head: s.head(b.Effort.Seed), Aim: aimText(b), Variables: s.model.Variables(), Limits: s.limits,
 		Effort: fmt.Sprintf("%d samples, %d infill, seed %d, agreement %g", b.Effort.Samples, b.Effort.Infill, b.Effort.Seed, b.Effort.Agreement),
 	}
 	for _, c := range b.Flight {
@@ -58,7 +57,7 @@ func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 	for _, v := range b.Values() {
 		out.Values = append(out.Values, report.CheckedValue{Path: v.Path, Value: v.Text, Unit: v.Unit, Source: v.Source})
 	}
-	for _, n := range b.Notes(inlet.DefaultLimits(b.Definition)) {
+	for _, n := range b.Notes(s.defaults()) {
 		out.Notes = append(out.Notes, n.Place()+": "+n.Message)
 	}
 	for _, r := range refused {

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"encoding/json"
+	"errors"
 	"fmt"
 	"path/filepath"
 	"runtime"
@@ -100,7 +101,7 @@ func (a *app) design(study *study, dir string) (err error) {
 
 	ctx, interruption := watch(limit)
 	defer interruption.stop()
-	cached, counter := runstore.Cached(study.problem, folder.Ledger(), model)
+	cached, counter := runstore.Cached(study.model, folder.Ledger(), model)
 	task := optimize.Task{Problem: cached, Limits: study.limits, Aim: study.brief.Aim}
 	settings := a.settings(study)
 	progress := a.progress()
@@ -109,12 +110,14 @@ func (a *app) design(study *study, dir string) (err error) {
 	if err != nil {
 		return a.cutShort(err, interruption)
 	}
-	finished := report.Study{Problem: study.problem, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
+	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
 	if err := a.afterwards(ctx, study, settings, &finished); err != nil && ctx.Err() == nil {
 		return err // a search that was cut short is left out, and the document says so
 	}
-	if finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), result.Best.X); err != nil {
-		return err
+	if study.problem != nil {
+		if finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), result.Best.X); err != nil {
+			return err
+		}
 	}
 	document := report.NewDesign(study.head(settings.Seed), finished)
 	run := runRecord(began, a.jobs, counter)
@@ -128,23 +131,26 @@ func (a *app) design(study *study, dir string) (err error) {
 		return err
 	}
 	a.say("result folder: %s\n", folder.Dir())
-	return ending(result.Status, interruption)
+	return ending(result, interruption)
 }
 
-// cutShort explains an interruption that came before there was anything to keep.
+// cutShort gives an end that came before there was anything to keep its code.
 func (a *app) cutShort(err error, interruption *interruption) error {
+	if !errors.Is(err, optimize.ErrNothingEvaluated) {
+		return err
+	}
+	a.complain(optimize.ErrNothingEvaluated.Error(), "")
 	if code := interruption.code.Load(); code != 0 {
-		a.say("interrupted before the first design was evaluated; the ledger keeps what was\n")
 		return &endedWith{int(code)}
 	}
-	return err
+	return &endedWith{exitNotMet}
 }
 
 // afterwards runs what never feeds the search, on the exact model: the exact
 // search as yardstick; the nearest design in tenths of a degree and the play of
 // the variables where the limits hold; the reason why where nothing holds them.
 func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Settings, finished *report.Study) (err error) {
-	task := optimize.Task{Problem: study.problem, Limits: study.limits, Aim: study.brief.Aim}
+	task := optimize.Task{Problem: study.model, Limits: study.limits, Aim: study.brief.Aim}
 	if finished.Result.Status == optimize.Infeasible {
 		a.say("nothing holds every limit yet: searching the exact model for the reason\n")
 		if err := explain(ctx, task, settings, finished); err != nil {
@@ -158,8 +164,10 @@ func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Se
 	if !best.Assessment.Feasible {
 		return nil
 	}
-	if finished.Rounded, err = optimize.Round(ctx, task, best.X, roundedStep); err != nil {
-		return err
+	if study.problem != nil { // the variables of an analytic problem are no angles
+		if finished.Rounded, err = optimize.Round(ctx, task, best.X, roundedStep); err != nil {
+			return err
+		}
 	}
 	finished.Plays, err = optimize.Plays(ctx, task, best.X, report.PlayLoss)
 	return err
@@ -187,14 +195,14 @@ func explain(ctx context.Context, task optimize.Task, settings optimize.Settings
 }
 
 // ending turns a status into the exit code.
-func ending(status optimize.Status, interruption *interruption) error {
+func ending(result *optimize.Result, interruption *interruption) error {
 	if code := interruption.code.Load(); code != 0 {
 		return &endedWith{int(code)}
 	}
-	switch status {
-	case optimize.Infeasible, optimize.NotVerified:
+	switch {
+	case !result.Best.Assessment.Feasible, result.Status == optimize.NotVerified:
 		return &endedWith{exitNotMet}
-	case optimize.Stopped:
+	case result.Status == optimize.Stopped:
 		return &endedWith{exitStopped}
 	}
 	return nil
@@ -230,23 +238,18 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 	if err != nil {
 		return err
 	}
-	states, err := stations(document.Points)
-	if err != nil {
-		return err
-	}
 	files := []file{
 		{"result.json", document.JSON()},
 		{"run.json", append(runJSON, '\n')},
 		{"brief.yaml", study.brief.ResolvedYAML()},
-		{"samples.csv", report.SamplesCSV(study.problem, finished.Result.Samples)},
-		{"stations.csv", states},
+		{"samples.csv", report.SamplesCSV(study.model, finished.Result.Samples)},
 	}
-	if finished.Flow.ContourErr == nil {
-		drawing, err := drawings(study, finished.Flow)
+	if finished.Flow != nil {
+		ofInlet, err := inletFiles(study, document, finished.Flow)
 		if err != nil {
 			return err
 		}
-		files = append(files, drawing...)
+		files = append(files, ofInlet...)
 	}
 	for _, f := range files {
 		if err := folder.WriteFile(f.name, f.data); err != nil {
@@ -259,6 +262,20 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 type file struct {
 	name string
 	data []byte
+}
+
+// inletFiles are the files only an inlet has.
+func inletFiles(study *study, document *report.DesignDocument, flow *inlet.Flow) ([]file, error) {
+	states, err := stations(document.Points)
+	if err != nil {
+		return nil, err
+	}
+	files := []file{{"stations.csv", states}}
+	if flow.ContourErr != nil {
+		return files, nil
+	}
+	drawing, err := drawings(study, flow)
+	return append(files, drawing...), err
 }
 
 // drawings are the files of a contour that closes.

@@ -41,6 +41,9 @@ detached shock is an answer, not an error: --strict turns it into exit code 4.`,
 }
 
 func (a *app) flow(study *study, of string, strict bool) error {
+	if study.problem == nil {
+		return &usageError{"flow computes an inlet; this brief poses the analytic problem " + study.analyticName(), "rampwright design searches it, rampwright fits shows how well it can be fitted"}
+	}
 	x, err := study.fixed(of)
 	if err != nil {
 		return err

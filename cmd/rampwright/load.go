@@ -21,7 +21,8 @@ const maxBrief = 1 << 20
 // study is a brief made ready: the problem it poses and what it asks of it.
 type study struct {
 	brief   *brief.Brief
-	problem *inlet.Problem
+	model   problems.Problem // what a search sees
+	problem *inlet.Problem   // the model as an inlet; nil where the brief poses an analytic problem
 	limits  []problems.Limit
 }
 
@@ -68,14 +69,25 @@ func read(cmd *cobra.Command, file string) (*study, error) {
 	if err != nil {
 		return nil, err
 	}
+	if b.Analytic != nil {
+		return &study{brief: b, model: b.Analytic, limits: b.Resolve(nil, b.Analytic.OwnLimits())}, nil
+	}
 	problem, err := inlet.New(b.Definition)
 	if err != nil {
 		return nil, err
 	}
 	return &study{
-		brief: b, problem: problem,
+		brief: b, model: problem, problem: problem,
 		limits: b.Resolve(inlet.HardLimits(b.Definition), inlet.DefaultLimits(b.Definition)),
 	}, nil
+}
+
+// defaults are the limits that hold unless the brief replaces them.
+func (s *study) defaults() []problems.Limit {
+	if s.brief.Analytic != nil {
+		return s.brief.Analytic.OwnLimits()
+	}
+	return inlet.DefaultLimits(s.brief.Definition)
 }
 
 // modelHash names the true model: everything an evaluation at x depends on.
@@ -84,10 +96,19 @@ func (s *study) modelHash() string {
 		Version    string
 		Definition inlet.Definition
 		Quantities []problems.Quantity
-	}{version, s.brief.Definition, s.problem.Quantities()})
+		Analytic   string `json:",omitempty"`
+	}{version, s.brief.Definition, s.model.Quantities(), s.analyticName()})
 	if err != nil {
 		panic("a definition holds finite numbers only: " + err.Error())
 	}
 	sum := sha256.Sum256(data)
 	return hex.EncodeToString(sum[:])
+}
+
+// analyticName names the analytic problem, "" for an inlet.
+func (s *study) analyticName() string {
+	if s.brief.Analytic == nil {
+		return ""
+	}
+	return s.brief.Analytic.Name
 }

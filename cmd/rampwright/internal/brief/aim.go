@@ -5,27 +5,15 @@ import (
 	"strings"
 
 	"rampwright/problems"
-	"rampwright/problems/inlet"
 )
-
-// checkReference reports what is wrong with quantity@point, nil if nothing but
-// perhaps the name of the point.
-func checkReference(quantity, point string) *formulaError {
-	entry, ok := inlet.Lookup(quantity)
-	if !ok {
-		p := unknownQuantity(quantity)
-		return &formulaError{message: p.Message, value: p.Value, hint: p.Hint}
-	}
-	if point != "" && entry.Scope == inlet.OfGeometry {
-		return &formulaError{message: quantity + " belongs to the geometry and takes no @point", value: quantity + "@" + point, hint: "write " + quantity}
-	}
-	return nil
-}
 
 // readAim reads what the search drives.
 func (r *reader) readAim(root *node) {
 	part := r.child(root, aimPart)
 	if part == nil {
+		if r.brief.Analytic != nil {
+			r.ownAim()
+		}
 		return
 	}
 	r.brief.place[aimPart] = part
@@ -56,14 +44,14 @@ func (r *reader) readAim(root *node) {
 
 // formulaOf compiles the formula of an aim and checks its references.
 func (r *reader) formulaOf(n *node) *formula {
-	f, err := compileFormula(n.text)
+	f, err := compileFormula(n.text, r.brief.words)
 	var e *formulaError
 	if errors.As(err, &e) {
 		r.add(r.within(n, e.offset), Problem{Message: e.message, Value: e.value, Hint: e.hint})
 		return nil
 	}
 	if len(f.references) == 0 {
-		r.add(n, Problem{Message: "the aim names no quantity", Value: n.text, Hint: "`rampwright quantities` lists them"})
+		r.add(n, Problem{Message: "the aim names no quantity", Value: n.text, Hint: r.brief.words.hint})
 		return nil
 	}
 	names, fine := r.brief.pointNames(), true
@@ -155,7 +143,7 @@ func (r *reader) weighAim(n *node, f *formula) {
 // free reports whether some quantity of the formula takes the point of the aim.
 func (f *formula) free() bool {
 	for _, ref := range f.references {
-		if ref.point == "" && !ofGeometry(ref.quantity) {
+		if ref.point == "" && !ref.geometry {
 			return true
 		}
 	}
@@ -178,7 +166,7 @@ func (f *formula) part(point string, weight float64) problems.Part {
 	for _, ref := range f.references {
 		read := problems.Read{Quantity: ref.quantity, Point: ref.point}
 		switch {
-		case ofGeometry(ref.quantity):
+		case ref.geometry:
 			read.Point = problems.Geometry
 		case ref.point == "":
 			read.Point = point
@@ -189,9 +177,4 @@ func (f *formula) part(point string, weight float64) problems.Part {
 		part.Formula = f.evaluate
 	}
 	return part
-}
-
-func ofGeometry(quantity string) bool {
-	entry, _ := inlet.Lookup(quantity)
-	return entry.Scope == inlet.OfGeometry
 }

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"rampwright/problems"
+	"rampwright/problems/analytic"
 	"rampwright/problems/inlet"
 )
 
@@ -15,7 +16,10 @@ type Brief struct {
 	Title      string
 	Flight     []Condition // the first is the design point
 	Definition inlet.Definition
-	Aim        problems.Aim // no Parts when the brief states none
+	// Analytic is a published test problem posed in place of an inlet: Flight and
+	// Definition are then empty.
+	Analytic *analytic.Problem
+	Aim      problems.Aim // no Parts when the brief states none
 	// Limits are those the brief asks for, one a quantity and point, in the order
 	// of the rows that count. One with neither side lifts the default there.
 	Limits    []problems.Limit
@@ -23,7 +27,8 @@ type Brief struct {
 	Tolerance Tolerance
 	Effort    Effort
 
-	aimHasPoint bool // the aim takes an `at`: some quantity of it is tied to no point
+	words       vocabulary // what aims and limits may name
+	aimHasPoint bool       // the aim takes an `at`: some quantity of it is tied to no point
 	replaced    map[spot]sides
 	values      []Value
 	place       map[string]*node
@@ -98,6 +103,9 @@ func (b *Brief) Source(path string) string {
 
 // Searched counts the values a search varies.
 func (b *Brief) Searched() int {
+	if b.Analytic != nil {
+		return len(b.Analytic.Variables())
+	}
 	d := b.Definition
 	return countSearched(d.RampAngle...) + countSearched(optional(d.CowlAngle)...) + countSearched(optional(d.LipTurning)...) +
 		countSearched(d.CowlWedge, d.ShockOnLip, d.LipSetback)
@@ -125,8 +133,11 @@ func closureSearched(d inlet.Definition) bool {
 	return countSearched(d.RampAngle...)+countSearched(optional(d.CowlAngle)...)+countSearched(optional(d.LipTurning)...) > 0
 }
 
-// pointNames lists the flight points in order.
+// pointNames lists the points of the problem in order.
 func (b *Brief) pointNames() []string {
+	if b.Analytic != nil {
+		return []string{analytic.Point}
+	}
 	names := make([]string, len(b.Flight))
 	for i, c := range b.Flight {
 		names[i] = c.Name

@@ -27,25 +27,41 @@ func quote(text string) string {
 // to the last bit. Flight states are written as pressure and temperature.
 func (b *Brief) ResolvedYAML() []byte {
 	var w bytes.Buffer
-	fmt.Fprintf(&w, "brief: 1\ntitle: %s\nflight:\n", quote(b.Title))
-	for _, c := range b.Flight {
-		fmt.Fprintf(&w, "  - {name: %s, mach: %s, pressure_kPa: %s, temperature_K: %s, incidence_deg: %s, weight: %s}",
-			word(c.Name), exactNumber(c.Mach), exactNumber(c.PressureKPa), exactNumber(c.TemperatureK), exactNumber(c.IncidenceDeg), exactNumber(c.Weight))
-		if !math.IsNaN(c.AltitudeKm) {
-			fmt.Fprintf(&w, " # from %s", c.Stated)
-		}
-		w.WriteByte('\n')
+	fmt.Fprintf(&w, "brief: 1\ntitle: %s\n", quote(b.Title))
+	if b.Analytic != nil {
+		b.writeAnalytic(&w)
+	} else {
+		b.writeFlight(&w)
+		b.writeInlet(&w)
 	}
-	fmt.Fprintf(&w, "gas: {model: %s, ratio_of_specific_heats: %s}\n", perfect, exactNumber(b.Definition.Gas.Gamma))
-	b.writeInlet(&w)
 	b.writeAim(&w)
 	b.writeLimits(&w)
 	fmt.Fprintf(&w, "defaults: %t\n", b.Defaults)
-	t, e := b.Tolerance, b.Effort
-	fmt.Fprintf(&w, "tolerance: {ramp_angle_deg: %s, mach: %s, incidence_deg: %s, confidence: %s}\n",
-		exactNumber(t.RampAngleDeg), exactNumber(t.Mach), exactNumber(t.IncidenceDeg), exactNumber(t.Confidence))
+	if b.Analytic == nil {
+		b.writeTolerance(&w)
+	}
+	e := b.Effort
 	fmt.Fprintf(&w, "effort: {samples: %d, infill: %d, seed: %d, agreement: %s}\n", e.Samples, e.Infill, e.Seed, exactNumber(e.Agreement))
 	return w.Bytes()
+}
+
+func (b *Brief) writeFlight(w *bytes.Buffer) {
+	w.WriteString("flight:\n")
+	for _, c := range b.Flight {
+		fmt.Fprintf(w, "  - {name: %s, mach: %s, pressure_kPa: %s, temperature_K: %s, incidence_deg: %s, weight: %s}",
+			word(c.Name), exactNumber(c.Mach), exactNumber(c.PressureKPa), exactNumber(c.TemperatureK), exactNumber(c.IncidenceDeg), exactNumber(c.Weight))
+		if !math.IsNaN(c.AltitudeKm) {
+			fmt.Fprintf(w, " # from %s", c.Stated)
+		}
+		w.WriteByte('\n')
+	}
+	fmt.Fprintf(w, "gas: {model: %s, ratio_of_specific_heats: %s}\n", perfect, exactNumber(b.Definition.Gas.Gamma))
+}
+
+func (b *Brief) writeTolerance(w *bytes.Buffer) {
+	t := b.Tolerance
+	fmt.Fprintf(w, "tolerance: {ramp_angle_deg: %s, mach: %s, incidence_deg: %s, confidence: %s}\n",
+		exactNumber(t.RampAngleDeg), exactNumber(t.Mach), exactNumber(t.IncidenceDeg), exactNumber(t.Confidence))
 }
 
 func (b *Brief) writeInlet(w *bytes.Buffer) {
@@ -81,7 +97,7 @@ func (b *Brief) writeAim(w *bytes.Buffer) {
 		return
 	}
 	text := b.Aim.Text
-	if _, bare := inlet.Lookup(text); !bare {
+	if _, bare := b.words.find(text); !bare {
 		text = quote(text)
 	}
 	fmt.Fprintf(w, "aim: {%s: %s", b.direction(), text)
@@ -180,6 +196,7 @@ type canonical struct {
 	Defaults  bool             `json:"defaults"`
 	Tolerance Tolerance        `json:"tolerance"`
 	Effort    Effort           `json:"effort"`
+	Analytic  string           `json:"analytic,omitempty"`
 }
 
 type canonicalInlet struct {
@@ -229,6 +246,9 @@ func (b *Brief) canonicalJSON() []byte {
 		},
 		Direction: b.direction(), Aim: b.Aim.Text, Where: b.Aim.Where,
 		Defaults: b.Defaults, Tolerance: b.Tolerance, Effort: b.Effort,
+	}
+	if b.Analytic != nil {
+		c.Analytic = b.Analytic.Name
 	}
 	for _, s := range d.RampAngle {
 		c.Inlet.RampAngle = append(c.Inlet.RampAngle, canonicalSettingOf(s))

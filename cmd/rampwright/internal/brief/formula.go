@@ -22,7 +22,10 @@ const (
 
 // reference is a quantity as a formula names it; point is "" when it takes the
 // point of the aim.
-type reference struct{ quantity, point string }
+type reference struct {
+	quantity, point string
+	geometry        bool // the quantity belongs to the geometry
+}
 
 // formula is a compiled formula over the values of its references.
 type formula struct {
@@ -45,13 +48,13 @@ type formulaError struct {
 
 func (e *formulaError) Error() string { return e.message }
 
-// compileFormula reads a formula of quantities: numbers, + - * / ^,
+// compileFormula reads a formula of the quantities of a vocabulary: numbers, + - * / ^,
 // parentheses, the functions of the table below, names and name@point.
 //
 // The expression library parses it; every construct of that library which is
 // not one of these is refused before or after, and nothing of its evaluation
 // is used.
-func compileFormula(text string) (*formula, error) {
+func compileFormula(text string, words vocabulary) (*formula, error) {
 	if err := screen(text); err != nil {
 		return nil, err
 	}
@@ -66,7 +69,7 @@ func compileFormula(text string) (*formula, error) {
 	if err != nil {
 		return nil, syntaxOf(err)
 	}
-	c := &compiler{formula: &formula{}}
+	c := &compiler{formula: &formula{}, words: words}
 	c.formula.evaluate = c.compile(tree.Node)
 	_, c.formula.bare = tree.Node.(*ast.IdentifierNode)
 	if c.err != nil {
@@ -177,6 +180,7 @@ var operators = map[string]func(a, b float64) float64{
 // compiler turns a syntax tree into terms and keeps the first error.
 type compiler struct {
 	formula *formula
+	words   vocabulary
 	err     error
 }
 
@@ -241,14 +245,15 @@ func (c *compiler) name(n *ast.IdentifierNode) term {
 	if unary[n.Value] != nil || many[n.Value] != nil {
 		return c.fail(n, n.Value+" is a function and needs parentheses", n.Value, "such as "+n.Value+"(..)")
 	}
-	if problem := checkReference(quantity, point); problem != nil {
+	if problem := c.words.check(quantity, point); problem != nil {
 		problem.offset = n.Location().From
 		if c.err == nil {
 			c.err = problem
 		}
 		return nil
 	}
-	ref := reference{quantity, point}
+	found, _ := c.words.find(quantity)
+	ref := reference{quantity, point, found.geometry}
 	for i, have := range c.formula.references {
 		if have == ref {
 			return slot(i)

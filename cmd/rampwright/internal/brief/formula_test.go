@@ -13,7 +13,7 @@ import (
 // value compiles and evaluates a formula over named values.
 func valueOf(t testing.TB, text string, values map[string]float64) float64 {
 	t.Helper()
-	f, err := compileFormula(text)
+	f, err := compileFormula(text, inletVocabulary())
 	if err != nil {
 		t.Fatalf("%q: %v", text, err)
 	}
@@ -65,7 +65,7 @@ func TestFormulaValues(t *testing.T) {
 			t.Errorf("%s = %v, want %v", c.text, got, c.want)
 		}
 	}
-	if f, _ := compileFormula("recovery + recovery@cruise + recovery"); len(f.references) != 2 {
+	if f, _ := compileFormula("recovery + recovery@cruise + recovery", inletVocabulary()); len(f.references) != 2 {
 		t.Errorf("equal references share a slot: %+v", f.references)
 	}
 	for _, text := range []string{"1 / (length_m - 2)", "log(length_m - 2)", "sqrt(throat_mach)"} {
@@ -130,7 +130,7 @@ func TestFormulaProblems(t *testing.T) {
 		{strings.Repeat(" ", longestFormula) + "recovery", 0, "the formula is too long", ""},
 		{strings.Repeat("(", 400) + "recovery" + strings.Repeat(")", 399), -1, "not a formula", ""},
 	} {
-		_, err := compileFormula(c.text)
+		_, err := compileFormula(c.text, inletVocabulary())
 		var e *formulaError
 		if !errors.As(err, &e) {
 			t.Errorf("%q: %v", c.text, err)
@@ -187,7 +187,7 @@ func TestFormulaAgreesWithDirectEvaluation(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		f, err := compileFormula(drawn[0])
+		f, err := compileFormula(drawn[0], inletVocabulary())
 		if err != nil {
 			t.Fatalf("%s: %v", drawn[0], err)
 		}
@@ -202,7 +202,7 @@ func TestFormulaAgreesWithDirectEvaluation(t *testing.T) {
 }
 
 func BenchmarkFormula(b *testing.B) {
-	f, err := compileFormula("recovery - 0.1*max(length_m, 2) + sqrt(throat_mach)")
+	f, err := compileFormula("recovery - 0.1*max(length_m, 2) + sqrt(throat_mach)", inletVocabulary())
 	if err != nil {
 		b.Fatal(err)
 	}
@@ -219,7 +219,7 @@ func FuzzFormula(f *testing.F) {
 		f.Add(seed)
 	}
 	f.Fuzz(func(t *testing.T, text string) {
-		compiled, err := compileFormula(text)
+		compiled, err := compileFormula(text, inletVocabulary())
 		if err != nil {
 			var e *formulaError
 			if !errors.As(err, &e) || e.message == "" || e.offset < 0 {

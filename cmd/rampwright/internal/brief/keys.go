@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+
+	"rampwright/problems/analytic"
 )
 
 // Form says what a key holds.
@@ -35,7 +37,8 @@ type Key struct {
 	Choices   []string
 	Default   string // value when absent; "" when there is none
 	Required  bool
-	Flag      bool // may be set on the command line, with dashes
+	Unless    string // key of the same section in whose presence this one has no place
+	Flag      bool   // may be set on the command line, with dashes
 	Meaning   string
 }
 
@@ -45,15 +48,16 @@ func Keys() []Key { return append([]Key(nil), keys...) }
 // Sections hold the keys of the brief below the top; the names of flight and
 // limits are those of one entry of their list.
 const (
-	top       = ""
-	flight    = "flight"
-	gasModel  = "gas"
-	inletPart = "inlet"
-	aimPart   = "aim"
-	limits    = "limits"
-	tolerance = "tolerance"
-	effort    = "effort"
-	span      = "range" // the {from, to} of a searched value
+	top         = ""
+	flight      = "flight"
+	gasModel    = "gas"
+	inletPart   = "inlet"
+	problemPart = "problem"
+	aimPart     = "aim"
+	limits      = "limits"
+	tolerance   = "tolerance"
+	effort      = "effort"
+	span        = "range" // the {from, to} of a searched value
 )
 
 var unbounded = math.Inf(1)
@@ -61,13 +65,14 @@ var unbounded = math.Inf(1)
 var keys = []Key{
 	{Name: "brief", Form: Whole, Low: 1, High: 1, Required: true, Meaning: "version of the format"},
 	{Name: "title", Form: Text, Required: true, Meaning: "what is designed, one line"},
-	{Name: flight, Form: Parts, Low: 1, High: 50, Required: true, Meaning: "the conditions met; the first is the design point"},
-	{Name: gasModel, Form: Part, Meaning: "the working fluid"},
-	{Name: inletPart, Form: Part, Required: true, Meaning: "the inlet: what is fixed and what is searched"},
+	{Name: flight, Form: Parts, Low: 1, High: 50, Required: true, Unless: problemPart, Meaning: "the conditions met; the first is the design point"},
+	{Name: gasModel, Form: Part, Unless: problemPart, Meaning: "the working fluid"},
+	{Name: inletPart, Form: Part, Required: true, Unless: problemPart, Meaning: "the inlet: what is fixed and what is searched"},
+	{Name: problemPart, Form: Part, Meaning: "a published test problem in place of an inlet: its own variables, aim and limits"},
 	{Name: aimPart, Form: Part, Meaning: "what the search drives; flow needs none"},
 	{Name: limits, Form: Parts, Low: 1, High: 500, Meaning: "what the inlet must keep"},
 	{Name: "defaults", Form: Truth, Default: "true", Flag: true, Meaning: "the default limits; false keeps only the hard ones"},
-	{Name: tolerance, Form: Part, Meaning: "scatter of the built inlet, standard deviations truncated at 4"},
+	{Name: tolerance, Form: Part, Unless: problemPart, Meaning: "scatter of the built inlet, standard deviations truncated at 4"},
 	{Name: effort, Form: Part, Meaning: "how much the search may spend"},
 
 	{Section: flight, Name: "name", Form: Text, Required: true, Meaning: "name of the point: a-z, then a-z, 0-9 and _"},
@@ -95,6 +100,8 @@ var keys = []Key{
 	{Section: inletPart, Name: "lip_setback", Form: Search, Low: 0, High: 0.5, Default: "0", Flag: true, Meaning: "lip behind the focus of the ramp shocks, fraction of capture height"},
 	{Section: inletPart, Name: "terminal_shock", Form: Truth, Default: "false", Flag: true, Meaning: "a normal shock stands in the throat"},
 	{Section: inletPart, Name: "duct_factor", Form: Number, Low: 0, OpenLow: true, High: 1, Default: "1", Flag: true, Meaning: "total-pressure factor behind the last shock"},
+
+	{Section: problemPart, Name: "analytic", Form: Choice, Choices: analytic.Names(), Required: true, Meaning: "name of the problem"},
 
 	{Section: aimPart, Name: "highest", Form: Formula, Meaning: "what is driven up; or lowest"},
 	{Section: aimPart, Name: "lowest", Form: Formula, Meaning: "what is driven down; or highest"},

@@ -4,7 +4,6 @@ import (
 	"math"
 
 	"rampwright/problems"
-	"rampwright/problems/inlet"
 )
 
 // none is the word for a side a limit does not have.
@@ -28,7 +27,7 @@ func (r *reader) readLimits(root *node) {
 // readLimit reads one row.
 func (r *reader) readLimit(row *node) {
 	before := len(r.problems)
-	entry, ok := r.quantityOf(row)
+	quantity, ok := r.quantityOf(row)
 	low, statedLow := r.side(row, "at_least", -unbounded)
 	high, statedHigh := r.side(row, "at_most", unbounded)
 	if !statedLow && !statedHigh && !row.has("at_least") && !row.has("at_most") {
@@ -37,16 +36,16 @@ func (r *reader) readLimit(row *node) {
 	if low >= high && finite(low) && finite(high) {
 		r.add(row.get("at_least"), Problem{Message: "no value can keep both sides: at_least must be below at_most", Value: exactNumber(low) + " and " + exactNumber(high)})
 	}
-	points := r.pointsOf(row, ok && entry.Scope == inlet.OfGeometry)
+	points := r.pointsOf(row, ok && quantity.geometry)
 	if !ok || len(r.problems) > before {
 		return
 	}
-	if entry.Name == "terminal_mach" && !r.brief.Definition.TerminalShock && (finite(low) || finite(high)) {
+	if quantity.name == "terminal_mach" && !r.brief.Definition.TerminalShock && (finite(low) || finite(high)) {
 		r.add(row.get("quantity"), terminalProblem())
 		return
 	}
 	for _, point := range points {
-		r.setLimit(problems.Limit{Quantity: entry.Name, Point: point, Low: low, High: high, Kind: problems.Asked, Source: row.origin()}, sides{statedLow, statedHigh}, row)
+		r.setLimit(problems.Limit{Quantity: quantity.name, Point: point, Low: low, High: high, Kind: problems.Asked, Source: row.origin()}, sides{statedLow, statedHigh}, row)
 	}
 }
 
@@ -69,28 +68,16 @@ func (r *reader) setLimit(limit problems.Limit, stated sides, row *node) {
 }
 
 // quantityOf reads the name of a quantity.
-func (r *reader) quantityOf(row *node) (inlet.Entry, bool) {
+func (r *reader) quantityOf(row *node) (noun, bool) {
 	n := r.value(row, known(limits, "quantity"))
 	if n == nil {
-		return inlet.Entry{}, false
+		return noun{}, false
 	}
-	entry, ok := inlet.Lookup(n.text)
+	quantity, ok := r.brief.words.find(n.text)
 	if !ok {
-		r.add(n, unknownQuantity(n.text))
+		r.add(n, r.brief.words.unknown(n.text))
 	}
-	return entry, ok
-}
-
-func unknownQuantity(typed string) Problem {
-	var names []named
-	for _, entry := range inlet.Catalogue() {
-		names = append(names, named{entry.Name, entry.Unit})
-	}
-	hint := nameHint(typed, names)
-	if hint == "" {
-		hint = "`rampwright quantities` lists them"
-	}
-	return Problem{Message: "unknown quantity " + shorten(typed, 60), Value: typed, Hint: hint}
+	return quantity, ok
 }
 
 // side reads one side of a limit; absent and none are the infinity given.
@@ -117,7 +104,7 @@ func (r *reader) pointsOf(row *node, geometry bool) []string {
 	case n == nil && geometry:
 		return []string{problems.Geometry}
 	case n == nil:
-		return r.brief.pointNames()[:min(1, len(r.brief.Flight))]
+		return r.brief.pointNames()[:min(1, len(r.brief.pointNames()))]
 	case geometry:
 		r.add(n, Problem{Message: "this quantity belongs to the geometry: it has one value, at no point", Value: n.shown(), Hint: "remove at"})
 		return nil

@@ -47,13 +47,20 @@ func (r *reader) readBrief(root *node) {
 	r.section(root, top)
 	r.whole(root, known(top, "brief"))
 	r.brief.Title = r.line(root, known(top, "title"))
-	r.readGas(root)
-	r.readFlight(root) // a dynamic pressure needs the gas
-	r.readInlet(root)
+	if !r.readProblem(root) {
+		return
+	}
+	if r.brief.Analytic == nil {
+		r.readGas(root)
+		r.readFlight(root) // a dynamic pressure needs the gas
+		r.readInlet(root)
+	}
 	r.readAim(root)
 	r.readLimits(root)
 	r.brief.Defaults = r.truth(root, known(top, "defaults"))
-	r.readTolerance(root)
+	if r.brief.Analytic == nil {
+		r.readTolerance(root)
+	}
 	r.readEffort(root)
 }
 
@@ -117,7 +124,11 @@ func (r *reader) section(n *node, section string) {
 		r.add(p.key, problem)
 	}
 	for _, name := range names {
-		if k, _ := find(section, name); k.Required && !n.has(name) {
+		k, _ := find(section, name)
+		switch elsewhere := k.Unless != "" && n.has(k.Unless); {
+		case elsewhere && n.has(name):
+			r.refuseBeside(n, k)
+		case k.Required && !elsewhere && !n.has(name):
 			r.add(n, Problem{Message: name + " is missing" + inSection(section), Allowed: k.Allowed(), Hint: k.Meaning})
 		}
 	}

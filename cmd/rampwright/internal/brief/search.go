@@ -15,6 +15,9 @@ const leastLipTurning = 0.1
 // CheckSearch returns why a search over the brief would be refused; none when
 // it may run. A flow of one fixed geometry does not mind any of it.
 func CheckSearch(b *Brief) Problems {
+	if b.Analytic != nil {
+		return nil // it always has variables and an aim, and any limit may be met
+	}
 	var refused Problems
 	if b.Searched() == 0 {
 		refused = append(refused, b.at(inletPart, Problem{Message: "nothing to search: every value of the inlet is fixed", Hint: "use `rampwright flow`, or write a value as {from: .., to: ..}"}))

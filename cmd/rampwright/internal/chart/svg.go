@@ -176,10 +176,15 @@ func (d drawing) head() {
 	}
 }
 
-// write sets one line of text; its measured width is binding, so that a reader
-// without the face draws it no wider.
+// write sets one line of text.
 func (d drawing) write(at point, text string, face typeface, ink, anchor string) {
-	d.Text(at.x, at.y, text, attribute("fill", ink), fmt.Sprintf(`font-size="%g"`, face.size),
+	writeText(d.SVG, at, text, face, ink, anchor)
+}
+
+// writeText sets one line of text; its measured width is binding, so that a
+// reader without the face draws it no wider.
+func writeText(s *svg.SVG, at point, text string, face typeface, ink, anchor string) {
+	s.Text(at.x, at.y, text, attribute("fill", ink), fmt.Sprintf(`font-size="%g"`, face.size),
 		attribute("text-anchor", anchor), fmt.Sprintf(`textLength="%.2f"`, face.width(text)), `lengthAdjust="spacingAndGlyphs"`)
 }
 

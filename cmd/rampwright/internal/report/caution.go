@@ -1,6 +1,7 @@
 package report
 
 import (
+	"encoding/json"
 	"fmt"
 	"math"
 	"strings"
@@ -13,10 +14,13 @@ import (
 // Caution is one thing this very result raises that a reader must know before
 // using it.
 type Caution struct {
-	Rule  string `json:"rule"`  // stable name of what raised it
-	Point string `json:"point"` // the flight point, geometry, or empty
-	Text  string `json:"text"`
+	Rule  string // stable name of what raised it
+	Point string // the flight point, geometry, or empty
+	Text  string
 }
+
+// MarshalJSON writes the sentence alone.
+func (c Caution) MarshalJSON() ([]byte, error) { return json.Marshal(c.Text) }
 
 // Thresholds of common practice, each a caution and never a limit.
 const (

@@ -21,15 +21,16 @@ const (
 // cautions lists what a design raises: the Mach number ahead of a terminal shock
 // first, how the search ended next, then flow, margins, limits and surrogates.
 func (s *Study) cautions() []Caution {
-	flow := exactCautions(s.Problem, s.Flow)
-	var list []Caution
+	var list, flow []Caution
+	if s.Problem != nil {
+		flow = append(exactCautions(s.Problem, s.Flow), s.noMargin()...)
+		flow = append(flow, s.liftedDefaults()...)
+	}
 	if len(flow) > 0 && flow[0].Rule == "terminal_mach" {
 		list, flow = flow[:1:1], flow[1:]
 	}
 	list = append(list, s.endingCautions()...)
 	list = append(list, flow...)
-	list = append(list, s.noMargin()...)
-	list = append(list, s.liftedDefaults()...)
 	list = append(list, s.boundCautions()...)
 	list = append(list, s.surrogateCautions()...)
 	if list == nil {
@@ -52,6 +53,8 @@ func (s *Study) endingCautions() []Caution {
 		add("unfinished", "The search was ended early (%s): a better design may exist.", s.Result.Status)
 	}
 	switch {
+	case math.IsNaN(best.RouteGap):
+		add("one_route", "The problem has no second exact route: nothing but its own formula confirms these numbers.")
 	case math.IsInf(best.RouteGap, 1):
 		add("routes_differ", "Only one of the two exact routes has a value for every quantity: do not use these numbers.")
 	case best.RouteGap > optimize.RouteAgreement:
@@ -176,7 +179,7 @@ func (s *Study) places(g *grouped) string {
 // boundCautions are those of variables at the end of their range.
 func (s *Study) boundCautions() []Caution {
 	var list []Caution
-	for i, v := range s.Problem.Variables() {
+	for i, v := range s.model().Variables() {
 		side, bound := boundSide(v, s.Result.Best.X[i])
 		if side == "" {
 			continue
@@ -193,7 +196,7 @@ func (s *Study) boundCautions() []Caution {
 // surrogateCautions are those of the surrogates of aim and limits.
 func (s *Study) surrogateCautions() []Caution {
 	var none, weak []string
-	quantities := s.Problem.Quantities()
+	quantities := s.model().Quantities()
 	for i := range s.Result.Fits {
 		f := &s.Result.Fits[i]
 		name := responseName(quantities[f.Quantity])

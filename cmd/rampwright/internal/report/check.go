@@ -78,7 +78,7 @@ type checkedLimit struct {
 func NewCheck(b CheckedBrief) *CheckDocument {
 	d := &CheckDocument{
 		Format: format, Program: b.Head.Program, Title: b.Head.Title, BriefHash: b.Head.BriefHash,
-		Aim: b.Aim, Effort: b.Effort, Points: b.Points, Values: b.Values,
+		Aim: b.Aim, Effort: b.Effort, Points: append([]CheckedPoint{}, b.Points...), Values: b.Values,
 		Searched: []checkedRange{}, Limits: []checkedLimit{},
 		Notes: append([]string{}, b.Notes...), Refused: append([]string{}, b.Refused...), limits: b.Limits,
 	}
@@ -112,20 +112,11 @@ func (d *CheckDocument) Text(width int) string {
 		p.WriteByte('\n')
 		p.wrap("Refused: ", refusal, indent)
 	}
-	p.heading("Flight")
-	t := &table{columns: []column{
-		{head: "point"}, {head: "Mach"}, {head: "incidence\ndeg"}, {head: "weight"}, {head: "p\nkPa"}, {head: "T\nK"},
-		{head: "altitude\nkm"}, {head: "q\nkPa"}, {head: "stated as", left: true, drop: 1},
-	}}
-	for _, c := range d.Points {
-		t.add(c.Name, plain(c.Mach), plain(c.IncidenceDeg), plain(c.Weight), significant(c.PressureKPa), significant(c.TemperatureK),
-			significant(float64(c.AltitudeKm)), significant(c.DynamicPressure), c.Stated)
-	}
-	p.table(t)
+	d.flightTable(p)
 	p.heading("Search")
 	p.wrap("", fmt.Sprintf("Aim: %s. Effort: %s.", d.Aim, d.Effort), "")
 	p.WriteByte('\n')
-	t = &table{columns: []column{{head: "searched"}, {head: "from"}, {head: "to"}}}
+	t := &table{columns: []column{{head: "searched"}, {head: "from"}, {head: "to"}}}
 	for _, v := range d.Searched {
 		t.add(v.Name, plain(v.Low), plain(v.High))
 	}
@@ -152,6 +143,23 @@ func (d *CheckDocument) Text(width int) string {
 		}
 	}
 	return p.String()
+}
+
+// flightTable writes the flight states of an inlet.
+func (d *CheckDocument) flightTable(p *page) {
+	if len(d.Points) == 0 {
+		return // an analytic problem has none
+	}
+	p.heading("Flight")
+	t := &table{columns: []column{
+		{head: "point"}, {head: "Mach"}, {head: "incidence\ndeg"}, {head: "weight"}, {head: "p\nkPa"}, {head: "T\nK"},
+		{head: "altitude\nkm"}, {head: "q\nkPa"}, {head: "stated as", left: true, drop: 1},
+	}}
+	for _, c := range d.Points {
+		t.add(c.Name, plain(c.Mach), plain(c.IncidenceDeg), plain(c.Weight), significant(c.PressureKPa), significant(c.TemperatureK),
+			significant(float64(c.AltitudeKm)), significant(c.DynamicPressure), c.Stated)
+	}
+	p.table(t)
 }
 
 // limitTable writes the limits in force, those that differ in their point only

@@ -11,7 +11,8 @@ import (
 
 // Study is a finished design with everything a document tells of it.
 type Study struct {
-	Problem   *inlet.Problem
+	Problem   *inlet.Problem   // nil where the problem is no inlet
+	Model     problems.Problem // the problem that is no inlet; else nil
 	Aim       problems.Aim
 	Agreement float64 // largest scaled error of the surrogates asked for; 0 means the default of optimize
 	Result    *optimize.Result
@@ -19,7 +20,7 @@ type Study struct {
 	Explained *optimize.Explanation // why nothing holds every limit; nil where something does
 	Rounded   *optimize.Rounded     // nearest design in tenths of a degree; nil when not looked for
 	Plays     []optimize.Play       // of the variables at a loss of PlayLoss; nil when not measured
-	Flow      *inlet.Flow           // exact flow of Result.Best
+	Flow      *inlet.Flow           // exact flow of Result.Best; nil where the problem is no inlet
 }
 
 // DesignDocument is a design with its evidence.
@@ -42,7 +43,7 @@ type DesignDocument struct {
 	Play        []Play      `json:"play"`
 	Notes       []string    `json:"notes"`
 	History     []Step      `json:"history"`
-	Inlet       Shape       `json:"inlet"`
+	Inlet       *Shape      `json:"inlet"`  // null where the problem is no inlet
 	Points      []Point     `json:"points"` // stations; quantities are in Best
 	Cautions    []Caution   `json:"cautions"`
 	Assumptions []string    `json:"assumptions"`
@@ -151,7 +152,6 @@ func NewDesign(head Head, study Study) *DesignDocument {
 	if study.Agreement == 0 {
 		study.Agreement = optimize.Settings{}.WithDefaults(0).Agreement
 	}
-	flow := NewFlow(head, study.Problem, study.Flow)
 	result := study.Result
 	d := &DesignDocument{
 		Format: format, Program: head.Program, Title: head.Title, Seed: head.Seed, BriefHash: head.BriefHash,
@@ -159,13 +159,9 @@ func NewDesign(head Head, study Study) *DesignDocument {
 		Candidates: []Candidate{}, Fits: []Fit{}, History: []Step{}, Conflicts: study.conflicts(), Relaxation: study.relaxation(),
 		Rounded: study.rounded(), Play: study.plays(), Notes: []string{},
 		Evaluations: Evaluations(result.Counts),
-		Inlet:       flow.Inlet, Points: flow.Points, Assumptions: flow.Assumptions,
-		study: study, readings: readings(study.Problem.Quantities(), result.Best.Exact),
+		study:       study, readings: readings(study.model().Quantities(), result.Best.Exact),
 	}
-	for i := range d.Points {
-		p := &d.Points[i]
-		p.Quantities, p.Members, p.Missing = nil, nil, nil
-	}
+	d.inletParts(head)
 	for i := range result.Candidates {
 		d.Candidates = append(d.Candidates, study.candidate(&result.Candidates[i]))
 	}
@@ -193,7 +189,7 @@ func (s *Study) variables(x []float64) Object[Number] {
 	if x == nil {
 		return object
 	}
-	for i, v := range s.Problem.Variables() {
+	for i, v := range s.model().Variables() {
 		object = append(object, Field[Number]{v.Name, Number(x[i])})
 	}
 	return object
@@ -271,15 +267,6 @@ func (s *Study) best(list []reading) Best {
 	return b
 }
 
-// points names the flight points in order, then the geometry.
-func (s *Study) points() []string {
-	var names []string
-	for _, p := range s.Flow.Points {
-		names = append(names, p.Point.Name)
-	}
-	return append(names, problems.Geometry)
-}
-
 // predicted lists what the surrogates said of the best design: of a group, the
 // least of the members that have one. It is empty for a design that no surrogate
 // was asked about.
@@ -287,7 +274,7 @@ func (s *Study) predicted(exact []reading) []reading {
 	if s.Result.Best.Predicted == nil {
 		return nil
 	}
-	fitted := make([]bool, len(s.Problem.Quantities()))
+	fitted := make([]bool, len(s.model().Quantities()))
 	for i := range s.Result.Fits {
 		fitted[s.Result.Fits[i].Quantity] = true
 	}
@@ -325,7 +312,7 @@ func newLimit(c *constraints.Check) Limit {
 }
 
 func (s *Study) fit(f *optimize.Fit) Fit {
-	q := s.Problem.Quantities()[f.Quantity]
+	q := s.model().Quantities()[f.Quantity]
 	fit := Fit{
 		Quantity: q.Name, Member: q.Member, At: q.Point, Samples: f.Samples,
 		Q2: Number(math.NaN()), RMSE: Number(math.NaN()),

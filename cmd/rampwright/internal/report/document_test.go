@@ -82,7 +82,7 @@ func TestFlowKeys(t *testing.T) {
 		strings.Fields("format program title brief_hash inlet"), under("inlet", shapeKeys),
 		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status quantities members missing stations"),
 		under("points.stations", stationKeys),
-		strings.Fields("cautions cautions.rule cautions.point cautions.text assumptions"))
+		strings.Fields("cautions assumptions"))
 	got := keyPaths(t, NewFlow(head, problem, flow).JSON())
 	if !slices.Equal(got, want) {
 		t.Errorf("keys\n%s\nwant\n%s", strings.Join(got, " "), strings.Join(want, " "))
@@ -98,11 +98,11 @@ func TestDesignKeys(t *testing.T) {
 		[]string{"fits"}, under("fits", "quantity member at kind transform description samples q2 rmse"),
 		[]string{"exact_search"}, under("exact_search", "status aim variables evaluations ratio"),
 		[]string{"evaluations"}, under("evaluations", "samples infill verify surrogate"),
-		strings.Fields("conflicts relaxation history"), under("history", "evaluations aim violation error radius"),
+		strings.Fields("conflicts relaxation rounded play notes history"), under("history", "evaluations aim violation error radius"),
 		[]string{"inlet"}, under("inlet", shapeKeys),
 		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status stations"),
 		under("points.stations", stationKeys),
-		strings.Fields("cautions cautions.rule cautions.point cautions.text assumptions"))
+		strings.Fields("cautions assumptions"))
 	got := keyPaths(t, NewDesign(head, study(t)).JSON())
 	// Keys that appear only where a value is missing.
 	got = slices.DeleteFunc(got, func(path string) bool {

@@ -41,7 +41,7 @@ func (s *Study) rounded() *Rounded {
 func (s *Study) plays() []Play {
 	list := []Play{}
 	for i, p := range s.Plays {
-		list = append(list, Play{s.Problem.Variables()[i].Name, Number(p.Low), Number(p.High)})
+		list = append(list, Play{s.model().Variables()[i].Name, Number(p.Low), Number(p.High)})
 	}
 	return list
 }
@@ -63,7 +63,7 @@ const widePlay = 0.05
 func (s *Study) notUnique() string {
 	var open []string
 	for i, p := range s.Plays {
-		v := s.Problem.Variables()[i]
+		v := s.model().Variables()[i]
 		if p.High-p.Low > widePlay*(v.High-v.Low) {
 			open = append(open, fmt.Sprintf("%s %s to %s", v.Name, significant(p.Low), significant(p.High)))
 		}
@@ -87,6 +87,9 @@ func (s *Study) windowed() bool {
 			active[c.Quantity.Point+"/"+c.Quantity.Name] = true
 		}
 	}
+	if s.Flow == nil {
+		return false
+	}
 	for _, p := range s.Flow.Points {
 		at := p.Point.Name + "/"
 		if (active[at+"throat_pressure_kPa"] || active[at+"pressure_ratio"]) && (active[at+"throat_temperature_K"] || active[at+"temperature_ratio"]) {
@@ -102,6 +105,9 @@ const slowdown = 0.01
 // slower says what a slightly lower Mach number at the design point does to the
 // frozen inlet, static state held.
 func (s *Study) slower() []string {
+	if s.Problem == nil {
+		return nil
+	}
 	definition := s.Problem.Definition()
 	point := definition.Points[0]
 	before := point.Mach
@@ -135,7 +141,7 @@ var slowerNames = map[string]string{
 
 // exactly returns the exact value of a quantity that stands alone.
 func (s *Study) exactly(name, point string) float64 {
-	for i, q := range s.Problem.Quantities() {
+	for i, q := range s.model().Quantities() {
 		if q.Name == name && q.Point == point && q.Member == "" {
 			return s.Result.Best.Exact.Values[i]
 		}
@@ -162,7 +168,7 @@ func (d *DesignDocument) roundedText(r *Rounded) string {
 		return "In tenths of a degree: no design near this one keeps every limit exactly."
 	}
 	var angles []string
-	for _, v := range d.study.Problem.Variables() {
+	for _, v := range d.study.model().Variables() {
 		value, _ := r.Variables.Get(v.Name)
 		angles = append(angles, plain(float64(value)))
 	}

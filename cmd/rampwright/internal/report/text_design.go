@@ -25,9 +25,13 @@ func (d *DesignDocument) Text(width int) string {
 	d.explained(p)
 	d.margins(p)
 	d.surrogates(p)
-	p.contour(&d.Inlet)
-	p.stations(d.Points)
-	p.quantities(d.readings, d.Points)
+	if d.Inlet != nil {
+		p.contour(d.Inlet)
+		p.stations(d.Points)
+		p.quantities(d.readings, d.Points)
+	} else {
+		d.plainQuantities(p)
+	}
 	p.assumptions(d.Assumptions)
 	return p.String()
 }
@@ -75,7 +79,7 @@ func (d *DesignDocument) answer() string {
 // variables writes the searched values, their ranges, and the bounds they ended on.
 func (d *DesignDocument) variables(p *page) {
 	t := &table{columns: []column{{head: "searched"}, {head: "value"}, {head: "range"}, {left: true}}}
-	for i, v := range d.study.Problem.Variables() {
+	for i, v := range d.study.model().Variables() {
 		x := d.study.Result.Best.X[i]
 		note := ""
 		if side, _ := boundSide(v, x); side != "" {
@@ -122,7 +126,11 @@ func (d *DesignDocument) margins(p *page) {
 			t.annotate(d.how(&c))
 		}
 	}
-	p.table(t)
+	if len(t.rows) == 0 {
+		p.wrap(indent, "none beyond the search box", indent)
+	} else {
+		p.table(t)
+	}
 	if held > 0 {
 		p.WriteByte('\n')
 		p.wrap(indent, fmt.Sprintf("%d limits of the model itself hold as well.", held), indent)

@@ -45,7 +45,7 @@ func (d *DesignDocument) fitTable(fits []*optimize.Fit, head string, kind func(s
 	}}
 	point := ""
 	for _, f := range fits {
-		q := d.study.Problem.Quantities()[f.Quantity]
+		q := d.study.model().Quantities()[f.Quantity]
 		if q.Point != point {
 			point = q.Point
 			t.section(point)
@@ -68,7 +68,7 @@ func (d *DesignDocument) deciding() (shown []*optimize.Fit, rest int) {
 		scale[c.Index] = c.Scale
 		chosen[c.Index] = chosen[c.Index] || c.Active || !c.Met
 	}
-	for i, q := range d.study.Problem.Quantities() {
+	for i, q := range d.study.model().Quantities() {
 		chosen[i] = chosen[i] || d.readByAim(q)
 	}
 	type predicted struct {
