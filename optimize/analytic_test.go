@@ -99,12 +99,17 @@ func disk(square float64) Task {
 	}
 }
 
-var (
-	diskX   = []float64{1 / math.Sqrt(5), 2 / math.Sqrt(5)}
-	diskAim = math.Exp(0.3 * math.Sqrt(5))
-	// diskPrice is d/ds exp(0.3 sqrt(5 s)) at s = 1.
-	diskPrice = diskAim * 0.3 * math.Sqrt(5) / 2
-)
+// diskX, diskAim and diskPrice are the solution, its height, and the slope of the
+// height by the square.
+func diskX(square float64) []float64 {
+	return []float64{math.Sqrt(square / 5), 2 * math.Sqrt(square/5)}
+}
+
+func diskAim(square float64) float64 { return math.Exp(0.3 * math.Sqrt(5*square)) }
+
+func diskPrice(square float64) float64 {
+	return diskAim(square) * 0.3 * math.Sqrt(5/square) / 2
+}
 
 // beale is problem 35 of Hock & Schittkowski 1981: f = 1/9 at (4/3, 7/9, 4/9),
 // where x + y + 2z <= 3 has the multiplier 2/9. Its row is explicit and linear.

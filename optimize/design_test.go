@@ -23,7 +23,7 @@ func TestDesignKnownSolutions(t *testing.T) {
 		x    []float64
 		aim  float64
 	}{
-		"disk":                     {disk(1), diskX, diskAim},
+		"disk":                     {disk(1), diskX(1), diskAim(1)},
 		"Hock & Schittkowski 35":   {beale(3), bealeX, bealeAim},
 		"edge of what is known":    {cliff(), []float64{1, 0.2}, math.Sqrt(2.1)},
 		"Charalambous & Bandler 3": {charalambous3(), []float64{1, 1}, 2},
@@ -51,8 +51,8 @@ func TestDesignWithoutSecondRoute(t *testing.T) {
 	if result.Status != NotVerified || !math.IsNaN(result.Best.RouteGap) || result.Best.Second != nil || result.Counts.Verify != 0 {
 		t.Errorf("%v with a route gap of %g after %d verifications", result.Status, result.Best.RouteGap, result.Counts.Verify)
 	}
-	if math.Abs(result.Best.AimExact-diskAim) > 1e-6 {
-		t.Errorf("aim %g, want %g", result.Best.AimExact, diskAim)
+	if math.Abs(result.Best.AimExact-diskAim(1)) > 1e-6 {
+		t.Errorf("aim %g, want %g", result.Best.AimExact, diskAim(1))
 	}
 }
 

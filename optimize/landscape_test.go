@@ -77,7 +77,7 @@ func TestSurrogateJacobian(t *testing.T) {
 			}
 		}
 	}
-	check(t, d.plan.normal(diskX))
+	check(t, d.plan.normal(diskX(1)))
 	rapid.Check(t, func(t *rapid.T) {
 		check(t, []float64{rapid.Float64Range(0, 1).Draw(t, "u"), rapid.Float64Range(0, 1).Draw(t, "v")})
 	})
@@ -102,7 +102,7 @@ func TestExactJacobian(t *testing.T) {
 			}
 		}
 	}
-	check(t, p.normal(diskX))
+	check(t, p.normal(diskX(1)))
 	for _, face := range [][]float64{{0, 0.4}, {1, 1}, {0.3, 0}} {
 		check(t, face)
 	}

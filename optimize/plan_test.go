@@ -85,6 +85,10 @@ func TestPlanLinearRowsAreTheLimits(t *testing.T) {
 // The faces of the cube are the exact bounds, whatever rounding would make of
 // them, and points between keep their place.
 func TestPlanUnits(t *testing.T) {
+	rounded := &plan{variables: []problems.Variable{variable("x", -1, 0.1)}} // -1 + (0.1 + 1) is above 0.1
+	if got := rounded.denormal([]float64{1})[0]; got != 0.1 {
+		t.Errorf("the high face is x = %v", got)
+	}
 	rapid.Check(t, func(t *rapid.T) {
 		low := rapid.Float64Range(-1e3, 1e3).Draw(t, "low")
 		high := low + rapid.Float64Range(1e-3, 1e3).Draw(t, "width")

@@ -16,7 +16,7 @@ func TestPricesAreTheGainOfLoosening(t *testing.T) {
 		bound float64
 		want  float64
 	}{
-		"curved":   {disk, 1, diskPrice},
+		"curved":   {disk, 4, diskPrice(4)},
 		"straight": {beale, 3, bealePrice},
 	} {
 		result := mustDesign(t, c.task(c.bound), Settings{})
@@ -104,6 +104,15 @@ func TestBalance(t *testing.T) {
 			}
 		}
 	})
+}
+
+// The column that lowers the residual most at first may have to go: its own
+// multiplier would be -1/4 beside the other two.
+func TestBalanceGivesUpColumns(t *testing.T) {
+	x := balance([]float64{-1, -1, -0.05}, [][]float64{{1, 1, -0.2}, {1, 0, 0}, {0, 1, 0}})
+	if farthest(x, []float64{0, 1, 1}) > 1e-12 {
+		t.Errorf("multipliers %v, want 0 1 1", x)
+	}
 }
 
 // Columns that repeat each other share one multiplier between them.

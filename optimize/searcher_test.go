@@ -32,7 +32,8 @@ func TestPolishKnownSolutions(t *testing.T) {
 		aim    float64
 		prices []float64
 	}{
-		{"disk", disk(1), diskX, diskAim, []float64{diskPrice}},
+		{"disk", disk(1), diskX(1), diskAim(1), []float64{diskPrice(1)}},
+		{"larger disk", disk(4), diskX(4), diskAim(4), []float64{diskPrice(4)}},
 		{"Hock & Schittkowski 35", beale(3), bealeX, bealeAim, []float64{bealePrice}},
 		{"Charalambous & Bandler 2", charalambous2(), []float64{1.139037652, 0.899559938}, 1.952224494, nil},
 		{"Charalambous & Bandler 3", charalambous3(), []float64{1, 1}, 2, nil},
@@ -160,7 +161,7 @@ func TestSearchExact(t *testing.T) {
 		task Task
 		aim  float64
 	}{
-		"disk":                     {disk(1), diskAim},
+		"disk":                     {disk(1), diskAim(1)},
 		"Hock & Schittkowski 35":   {beale(3), bealeAim},
 		"Charalambous & Bandler 3": {charalambous3(), 2},
 		"edge of what is known":    {cliff(), math.Sqrt(2.1)},

@@ -87,7 +87,10 @@ func (a *app) design(study *study, dir string) (err error) {
 		return &usageError{fmt.Sprintf("--jobs %d: at least one", a.jobs), ""}
 	}
 	began := time.Now()
-	model := study.modelHash()
+	model, err := study.modelHash()
+	if err != nil {
+		return err
+	}
 	folder, err := runstore.Open(dir, study.brief.Title, study.brief.Hash(), runstore.Options{Force: a.force, Models: []string{model}})
 	if err != nil {
 		return err

@@ -1,10 +1,12 @@
 package main
 
 import (
+	"context"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
 	"fmt"
+	"math"
 	"os"
 	"strings"
 
@@ -90,19 +92,39 @@ func (s *study) defaults() []problems.Limit {
 	return inlet.DefaultLimits(s.brief.Definition)
 }
 
-// modelHash names the true model: everything an evaluation at x depends on.
-func (s *study) modelHash() string {
+// modelHash names the true model: everything an evaluation at x depends on, and
+// what the model answers at three probes, so that a ledger written by other code
+// under the same version is not taken for this model's.
+func (s *study) modelHash() (string, error) {
+	variables := s.model.Variables()
+	answers := make([][]uint64, 0, 3)
+	for _, share := range []float64{0.25, 0.5, 0.75} {
+		x := make([]float64, len(variables))
+		for j, v := range variables {
+			x[j] = v.Low + share*(v.High-v.Low)
+		}
+		evaluation := problems.NewEvaluation(len(s.model.Quantities()))
+		if err := s.model.Evaluate(context.Background(), x, evaluation); err != nil {
+			return "", err
+		}
+		bits := make([]uint64, len(evaluation.Values))
+		for i, v := range evaluation.Values {
+			bits[i] = math.Float64bits(v)
+		}
+		answers = append(answers, bits)
+	}
 	data, err := json.Marshal(struct {
 		Version    string
 		Definition inlet.Definition
 		Quantities []problems.Quantity
+		Answers    [][]uint64
 		Analytic   string `json:",omitempty"`
-	}{version, s.brief.Definition, s.model.Quantities(), s.analyticName()})
+	}{version, s.brief.Definition, s.model.Quantities(), answers, s.analyticName()})
 	if err != nil {
 		panic("a definition holds finite numbers only: " + err.Error())
 	}
 	sum := sha256.Sum256(data)
-	return hex.EncodeToString(sum[:])
+	return hex.EncodeToString(sum[:]), nil
 }
 
 // analyticName names the analytic problem, "" for an inlet.

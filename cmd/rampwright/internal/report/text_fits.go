@@ -17,7 +17,8 @@ const worstRows = 3
 // surrogates compares prediction and exact value where it decides the design:
 // for the aim, the binding limits, and the worst predicted quantities.
 func (d *DesignDocument) surrogates(p *page) {
-	if d.study.Result.Best.Predicted == nil {
+	predicted := slices.ContainsFunc(d.study.Result.Best.Predicted, finite)
+	if !predicted { // nothing foresaw a design of least violation
 		return
 	}
 	p.heading("Surrogate against exact")

@@ -34,7 +34,7 @@ func (d *FlowDocument) answer() string {
 	if broken != nil {
 		return "The stream is not attached from free stream to throat at " + strings.Join(broken, "; ") + "."
 	}
-	where := "at " + first
+	where := fmt.Sprintf("at %s:", first)
 	if len(d.Points) > 1 {
 		where = fmt.Sprintf("at all %d points; at %s", len(d.Points), first)
 	}
