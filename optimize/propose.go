@@ -44,6 +44,11 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		}
 		return d.challenge(ctx, center)
 	}
+	if d.repeats(step.u) {
+		// The model failed there, or nothing came of it: learn around the center.
+		d.radius = math.Max(leastRadius, 0.5*d.radius)
+		return d.affordable(d.scouts(center, 2, math.Max(leastScout, math.Min(d.radius, scoutRadius)))), nil
+	}
 	proposals := []*proposal{step}
 	if d.exploring() {
 		wide, err := d.search(ctx)
@@ -213,6 +218,20 @@ func (d *designer) fresh(u []float64) bool {
 	}
 	return true
 }
+
+// repeats reports whether u was evaluated before.
+func (d *designer) repeats(u []float64) bool {
+	for _, s := range d.samples {
+		if distance(s.u, u) < samePoint {
+			return true
+		}
+	}
+	return false
+}
+
+// samePoint is the distance in the unit cube below which an evaluation would
+// repeat another.
+const samePoint = 1e-12
 
 // scouts are up to n points near the center that the surrogates know least: of a
 // cloud within the radius, those with the largest scaled deviation over aim and
