@@ -54,7 +54,7 @@ func Assess(rows []Row, evaluation *problems.Evaluation) Assessment {
 		check := judge(&rows[i], evaluation)
 		if !check.Met {
 			result.Feasible = false
-			violation := MissingViolation * 1.0
+			violation := float64(MissingViolation)
 			if check.Missing == nil {
 				violation = -check.Margin / check.Scale
 			}

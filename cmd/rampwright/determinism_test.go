@@ -44,7 +44,7 @@ func TestResultDoesNotDependOnWorkers(t *testing.T) {
 	want := designStarter(t, "veyric-6").files["result.json"]
 	before := runtime.GOMAXPROCS(0)
 	defer runtime.GOMAXPROCS(before)
-	for _, c := range []struct{ jobs, processors int }{{1, 1}, {1, 2}, {2, 5}, {7, 1}, {7, 5}} {
+	for _, c := range []struct{ jobs, processors int }{{1, 1}, {2, 5}, {7, 2}} {
 		runtime.GOMAXPROCS(c.processors)
 		what := "--jobs " + strconv.Itoa(c.jobs) + ", " + strconv.Itoa(c.processors) + " processors"
 		sameResult(t, what, want, starterBrief("veyric-6"), t.TempDir()+"/result", c.jobs)

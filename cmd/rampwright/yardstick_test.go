@@ -1,11 +1,13 @@
 package main
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"math"
 	"math/rand/v2"
 	"runtime"
+	"slices"
 	"sync"
 	"testing"
 
@@ -65,7 +67,6 @@ type yardstickResult struct {
 			Margin               *float64
 		}
 	}
-	ExactSearch struct{ Aim float64 } `json:"exact_search"`
 }
 
 func (r *yardstickResult) check(t *testing.T) {
@@ -100,14 +101,15 @@ type penalty struct {
 	problem *indexed
 	limits  []indexedLimit
 	parts   []indexedPart
-	weights float64
+	weights float64 // sum over the parts
 	linear  []linearLimit
 }
 
+// indexed is a problem with what a search asks again and again.
 type indexed struct {
 	problems.Problem
 	variables []problems.Variable
-	size      int
+	size      int // quantities
 }
 
 type indexedLimit struct {
@@ -121,6 +123,7 @@ type indexedPart struct {
 	index  int
 }
 
+// linearLimit is low <= a x + b <= high.
 type linearLimit struct {
 	a            []float64
 	b, low, high float64
@@ -285,18 +288,13 @@ type descent struct {
 
 type descents []descent
 
+// ordered returns the ends, the best first.
 func (list descents) ordered() [][]float64 {
-	points := make([][]float64, 0, len(list))
-	taken := make([]bool, len(list))
-	for range list {
-		best := -1
-		for i := range list {
-			if !taken[i] && (best < 0 || list[i].value < list[best].value) {
-				best = i
-			}
-		}
-		taken[best] = true
-		points = append(points, list[best].u)
+	list = slices.Clone(list)
+	slices.SortStableFunc(list, func(a, b descent) int { return cmp.Compare(a.value, b.value) })
+	points := make([][]float64, len(list))
+	for i, end := range list {
+		points[i] = end.u
 	}
 	return points
 }
