@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"slices"
 	"sort"
 
 	"rampwright/optimize/local"
@@ -91,9 +92,9 @@ func (d *designer) run(ctx context.Context) error {
 	return nil
 }
 
-// sample evaluates the space-filling design.
+// sample evaluates the starts and the space-filling design.
 func (d *designer) sample(ctx context.Context) error {
-	points := d.plan.design(d.settings.Samples, d.settings.Seed)
+	points := slices.Concat(d.plan.starts, d.plan.design(d.settings.Samples, d.settings.Seed))
 	// In slices, so that an interruption loses little and progress shows.
 	for len(points) > 0 {
 		part := points[:min(len(points), sampleSlice)]
@@ -201,7 +202,7 @@ func (d *designer) tell(phase string) {
 		return
 	}
 	event := Event{
-		Phase: phase, Evaluations: len(d.samples), Planned: d.settings.Samples + d.settings.Infill,
+		Phase: phase, Evaluations: len(d.samples), Planned: len(d.plan.starts) + d.settings.Samples + d.settings.Infill,
 		Aim: math.NaN(), Violation: d.leastViolation(),
 	}
 	if best := d.best(); best != nil {

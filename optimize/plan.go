@@ -24,6 +24,7 @@ type plan struct {
 	curved     []int      // rows that are nonlinear constraints of a search
 	straight   []int      // rows kept as linear rows
 	linear     local.Rows // their sides in the unit cube, row-major
+	starts     [][]float64
 }
 
 func newPlan(task Task) (*plan, error) {
@@ -44,7 +45,11 @@ func newPlan(task Task) (*plan, error) {
 		return nil, err
 	}
 	p.sortRows()
-	return p, p.sortQuantities()
+	if err := p.sortQuantities(); err != nil {
+		return nil, err
+	}
+	p.starts, err = p.takeStarts(task.Starts)
+	return p, err
 }
 
 // sortRows separates limits on explicit linear quantities, which a search keeps

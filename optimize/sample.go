@@ -129,6 +129,29 @@ func (p *plan) design(n int, seed int64) [][]float64 {
 	return doe.LatinHypercube(n, p.dimension(), doe.Stream(seed, "samples"))
 }
 
+// takeStarts brings the starts of a task into the unit cube.
+func (p *plan) takeStarts(given [][]float64) ([][]float64, error) {
+	var starts [][]float64
+	for i, x := range given {
+		bad := &BadStart{Index: i, Values: len(x), Wanted: p.dimension()}
+		if len(x) != p.dimension() {
+			return nil, bad
+		}
+		u := p.normal(x)
+		for j, v := range u {
+			if math.IsNaN(v) {
+				return nil, bad
+			}
+			u[j] = math.Min(1, math.Max(0, v))
+		}
+		repeats := func(earlier []float64) bool { return distance(earlier, u) < apart }
+		if !slices.ContainsFunc(starts, repeats) {
+			starts = append(starts, u)
+		}
+	}
+	return starts, nil
+}
+
 // explicitSlack is how far outside a limit on an explicit quantity samples may
 // lie, in scaled margin: an optimum often sits on such a limit, and a surrogate
 // needs samples on both sides of it.

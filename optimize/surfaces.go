@@ -2,9 +2,11 @@ package optimize
 
 import (
 	"context"
+	"slices"
 	"sort"
 
 	"rampwright/surrogate"
+	"rampwright/surrogate/doe"
 )
 
 // surfaces are the surrogates of all fitted quantities on one set of samples.
@@ -14,12 +16,34 @@ type surfaces struct {
 	chosen  []*sample // the members when the kinds were chosen
 }
 
-// fitWide fits over all training samples; the kinds are chosen once and again
-// when the samples have grown by a quarter.
+// fitWide fits over the training samples of the whole box; the kinds are chosen
+// once and again when the samples have grown by a quarter.
 func (d *designer) fitWide(ctx context.Context) error {
-	fitted, err := d.fitSurfaces(ctx, wideKinds(d.settings.Seed), d.wide, d.training, 0.8)
+	fitted, err := d.fitSurfaces(ctx, wideKinds(d.settings.Seed), d.wide, d.spread(), 0.8)
 	d.wide = fitted
 	return err
+}
+
+// mostWide bounds the samples of the wide surfaces, whose cost grows with the
+// cube of their number: they guide the search, and the near ones decide.
+const mostWide = 300
+
+// spread returns the training samples, or a space-filling choice of mostWide.
+func (d *designer) spread() []*sample {
+	if len(d.training) <= mostWide {
+		return slices.Clone(d.training)
+	}
+	points := make([][]float64, len(d.training))
+	for i, s := range d.training {
+		points[i] = s.u
+	}
+	rows := doe.SpreadRows(mostWide, nil, points)
+	slices.Sort(rows)
+	members := make([]*sample, len(rows))
+	for k, i := range rows {
+		members[k] = d.training[i]
+	}
+	return members
 }
 
 // fitNear fits over the training samples nearest to a center, without one of

@@ -12,6 +12,25 @@ type Task struct {
 	Problem problems.Problem
 	Limits  []problems.Limit
 	Aim     problems.Aim
+	// Starts are designs, in the variables' units, that Design evaluates ahead of
+	// its samples and learns from like them: the answer to a neighbouring task. A
+	// value outside its range is taken at the nearer end; a design that repeats an
+	// earlier one is left out. They count as samples, over Settings.Samples.
+	Starts [][]float64
+}
+
+// BadStart is a start that is no design of the problem.
+type BadStart struct {
+	Index  int // in Task.Starts
+	Values int // it has
+	Wanted int
+}
+
+func (e *BadStart) Error() string {
+	if e.Values != e.Wanted {
+		return fmt.Sprintf("start %d has %d values for %d variables", e.Index, e.Values, e.Wanted)
+	}
+	return fmt.Sprintf("start %d has a value that is no number", e.Index)
 }
 
 // Settings steer a design. The zero value asks for the defaults.

@@ -118,8 +118,8 @@ var keys = []Key{
 	{Section: tolerance, Name: "confidence", Form: Number, Low: 0.5, High: 0.9999, Default: "0.95", Flag: true, Meaning: "share of built inlets that shall keep every limit"},
 
 	{Section: effort, Name: "samples", Form: Whole, Low: 2, High: 100000, Default: "15 per searched value", Flag: true, Meaning: "exact evaluations of the first design of experiments"},
-	{Section: effort, Name: "infill", Form: Whole, Low: 0, High: 100000, Default: "10 per searched value", Flag: true, Meaning: "exact evaluations chosen by the search"},
-	{Section: effort, Name: "seed", Form: Whole, Low: 0, High: 1<<53 - 1, Default: "1", Flag: true, Meaning: "seed of every random stream"},
+	{Section: effort, Name: "infill", Form: Whole, Low: 1, High: 100000, Default: "10 per searched value", Flag: true, Meaning: "exact evaluations chosen by the search"},
+	{Section: effort, Name: "seed", Form: Whole, Low: 1, High: 1<<53 - 1, Default: "1", Flag: true, Meaning: "seed of every random stream"},
 	{Section: effort, Name: "agreement", Form: Number, Low: 1e-9, High: 0.1, Default: "1e-3", Flag: true, Meaning: "largest error of the surrogates at the optimum, relative"},
 
 	{Section: span, Name: "from", Form: Number, Required: true, Low: -unbounded, High: unbounded, Meaning: "low end of a searched value"},

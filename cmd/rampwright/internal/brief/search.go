@@ -34,6 +34,7 @@ func CheckSearch(b *Brief) Problems {
 	}
 	refused = append(refused, b.checkLipTurning()...)
 	refused = append(refused, b.checkReach()...)
+	refused = append(refused, b.checkSamples()...)
 	return refused.sorted()
 }
 
@@ -195,4 +196,20 @@ func (b *Brief) limit(quantity, point string) (problems.Limit, bool) {
 		}
 	}
 	return problems.Limit{}, false
+}
+
+// sampleSurplus is how many samples more than variables a first fit needs.
+const sampleSurplus = 2
+
+// checkSamples refuses a first design too small to fit.
+func (b *Brief) checkSamples() Problems {
+	n := b.Searched()
+	if n == 0 || b.Effort.Samples >= n+sampleSurplus {
+		return nil
+	}
+	return Problems{b.at("effort.samples", Problem{
+		Message: fmt.Sprintf("%d samples are too few to fit %d searched values", b.Effort.Samples, n),
+		Value:   fmt.Sprint(b.Effort.Samples),
+		Allowed: fmt.Sprintf("%d or more", n+sampleSurplus),
+	})}
 }

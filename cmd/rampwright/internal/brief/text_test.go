@@ -12,7 +12,7 @@ func TestReportOfAProblem(t *testing.T) {
 	_, err := Read("b.yaml", []byte(edited(t, "width_m: 0.20", "width_m: 200")), Overrides{"seed": "x"})
 	want := `--seed: seed is not a whole number
         value:   x
-        allowed: whole number, 0 to 9007199254740991
+        allowed: whole number, 1 to 9007199254740991
 
 b.yaml:9:12: width_m is out of range
     9 |   width_m: 200
@@ -33,9 +33,9 @@ func TestReportOfLongAndTabbedLines(t *testing.T) {
 	}{
 		{"a:\tb", 4, "a:\tb\n      |   \t^"},
 		{"äöü: b", 6, "äöü: b\n      |      ^"},
-		{strings.Repeat("x", 300), 1, strings.Repeat("x", 100) + " ..\n      | ^"},
-		{strings.Repeat("x", 300), 200, ".. " + strings.Repeat("x", 100) + " ..\n      | " + strings.Repeat(" ", 53) + "^"},
-		{strings.Repeat("x", 300), 300, ".. " + strings.Repeat("x", 100) + " ..\n      | " + strings.Repeat(" ", 102) + "^"},
+		{strings.Repeat("x", 300), 1, strings.Repeat("x", 66) + " ..\n      | ^"},
+		{strings.Repeat("x", 300), 200, ".. " + strings.Repeat("x", 66) + " ..\n      | " + strings.Repeat(" ", 36) + "^"},
+		{strings.Repeat("x", 300), 300, ".. " + strings.Repeat("x", 66) + " ..\n      | " + strings.Repeat(" ", 68) + "^"},
 		{"short", 9, "short\n      |         ^"},
 	} {
 		text := Problems{{File: "f", Line: 1, Column: c.column, Message: "m", SourceLine: c.line}}.Format()

@@ -86,7 +86,7 @@ func (d *DesignDocument) explained(p *page) {
 	}
 	p.heading("Why no design holds every limit")
 	for i, c := range d.Conflicts {
-		lead := "Together these cannot be met, though each of them left out the rest can:"
+		lead := "Together these cannot be met, with any one of them left out the rest can:"
 		if i > 0 {
 			lead = "Nor can these:"
 		}
@@ -103,19 +103,16 @@ func (d *DesignDocument) explained(p *page) {
 	}
 	p.WriteByte('\n')
 	p.wrap("", "Smallest loosening of one of them with every other limit held:", "")
-	t := &table{columns: []column{{head: "limit"}, {head: "asked"}, {head: "enough"}, {left: true}}}
+	t := &table{columns: []column{{head: "limit"}, {head: "asked"}, {head: "enough"}}}
 	for _, r := range d.Relaxation {
-		note, enough := "", significant(float64(r.Enough))
-		if !finite(float64(r.Enough)) {
-			note = "not enough alone"
-		}
 		at := ""
 		if r.At != "geometry" {
 			at = " at " + r.At
 		}
-		t.add(r.Quantity+at+" "+r.words(), plain(float64(r.Bound)), enough, note)
+		t.add(r.Quantity+at+" "+r.words(), plain(float64(r.Bound)), significant(float64(r.Enough)))
 	}
 	p.table(t)
+	p.wrap(indent, none+": loosening it alone is not enough", indent)
 	p.WriteByte('\n')
 	p.wrap("", fmt.Sprintf("Search behind this: evolution and local solution from %d starts for every question, on the exact model, over the box above. The design shown misses the limits least (sum of scaled violations %s).",
 		e.Starts, significant(float64(d.Best.Violation))), "")

@@ -31,7 +31,7 @@ func TestExplainedRoundedAndPlay(t *testing.T) {
 	d := NewDesign(head, s)
 	text := d.Text(100)
 	for _, want := range []string{
-		"throat_pressure_kPa at cruise at least 60", "length_m at most 0.62", "not enough alone", "25 starts",
+		"throat_pressure_kPa at cruise at least 60", "length_m at most 0.62", "loosening it alone is not enough", "25 starts",
 		"8.1, 7.2, 8.5, 8", "The optimum is not unique",
 	} {
 		if !strings.Contains(text, want) {
