@@ -71,7 +71,7 @@ func (p Problem) format(b *strings.Builder) {
 }
 
 // widest is the longest piece of a source line shown, in characters.
-const widest = 66
+const widest = 72
 
 // window cuts a long source line around the column and returns the column in
 // what is left.

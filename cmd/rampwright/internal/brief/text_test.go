@@ -33,9 +33,9 @@ func TestReportOfLongAndTabbedLines(t *testing.T) {
 	}{
 		{"a:\tb", 4, "a:\tb\n      |   \t^"},
 		{"äöü: b", 6, "äöü: b\n      |      ^"},
-		{strings.Repeat("x", 300), 1, strings.Repeat("x", 66) + " ..\n      | ^"},
-		{strings.Repeat("x", 300), 200, ".. " + strings.Repeat("x", 66) + " ..\n      | " + strings.Repeat(" ", 36) + "^"},
-		{strings.Repeat("x", 300), 300, ".. " + strings.Repeat("x", 66) + " ..\n      | " + strings.Repeat(" ", 68) + "^"},
+		{strings.Repeat("x", 300), 1, strings.Repeat("x", 72) + " ..\n      | ^"},
+		{strings.Repeat("x", 300), 200, ".. " + strings.Repeat("x", 72) + " ..\n      | " + strings.Repeat(" ", 39) + "^"},
+		{strings.Repeat("x", 300), 300, ".. " + strings.Repeat("x", 72) + " ..\n      | " + strings.Repeat(" ", 74) + "^"},
 		{"short", 9, "short\n      |         ^"},
 	} {
 		text := Problems{{File: "f", Line: 1, Column: c.column, Message: "m", SourceLine: c.line}}.Format()
