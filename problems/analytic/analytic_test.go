@@ -208,6 +208,30 @@ func TestMissingValuesHaveAReason(t *testing.T) {
 	}
 }
 
+func TestEvaluationDoesNotAllocate(t *testing.T) {
+	for _, f := range analytic.Functions() {
+		p := pose(t, f.Name)
+		e := problems.NewEvaluation(len(p.Quantities()))
+		ctx := context.Background()
+		if n := testing.AllocsPerRun(20, func() { _ = p.Evaluate(ctx, f.Best, e) }); n > 0 {
+			t.Errorf("%s: %g allocations", f.Name, n)
+		}
+	}
+}
+
+func BenchmarkWeldedBeam(b *testing.B) {
+	p, err := analytic.New("welded_beam")
+	if err != nil {
+		b.Fatal(err)
+	}
+	e := problems.NewEvaluation(len(p.Quantities()))
+	for b.Loop() {
+		if err := p.Evaluate(context.Background(), p.Best, e); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
 func TestErrors(t *testing.T) {
 	var unknown *analytic.Unknown
 	if _, err := analytic.New("rosenbrok"); !errors.As(err, &unknown) || unknown.Name != "rosenbrok" || !strings.Contains(err.Error(), "ishigami") {
