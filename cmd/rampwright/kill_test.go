@@ -39,7 +39,13 @@ type child struct {
 // spawn starts the program in a folder. It is killed when the test ends.
 func spawn(t *testing.T, dir string, args ...string) *child {
 	t.Helper()
-	c := &child{Cmd: exec.Command(os.Args[0], args...)}
+	return spawnBy(t, dir, os.Args[:1], args...)
+}
+
+// spawnBy starts the program through another command.
+func spawnBy(t *testing.T, dir string, command []string, args ...string) *child {
+	t.Helper()
+	c := &child{Cmd: exec.Command(command[0], append(slices.Clone(command[1:]), args...)...)}
 	c.Dir, c.Env = dir, append(os.Environ(), asProgram+"=1")
 	c.Stdout, c.Stderr = &c.out, &c.messages
 	if err := c.Start(); err != nil {

@@ -55,16 +55,23 @@ func (p *progress) observe(e optimize.Event) {
 		return
 	}
 	if p.bar == nil {
-		p.bar = progressbar.NewOptions(e.Planned,
-			progressbar.OptionSetWriter(p.app.messages),
-			progressbar.OptionSetWidth(24),
-			progressbar.OptionShowCount(),
-			progressbar.OptionClearOnFinish(),
-			progressbar.OptionSetTheme(progressbar.Theme{Saucer: "/", SaucerHead: "/", SaucerPadding: ".", BarStart: "", BarEnd: ""}),
-		)
+		p.bar = p.app.bar(e.Planned)
 	}
-	p.bar.Describe(e.Phase + best(e))
+	p.bar.Describe(e.Phase + bestShort(e))
 	_ = p.bar.Set(e.Evaluations) // a bar that cannot be drawn stops nothing
+}
+
+// bar is an empty bar in our plain style.
+func (a *app) bar(total int) *progressbar.ProgressBar {
+	return progressbar.NewOptions(total,
+		progressbar.OptionSetWriter(a.messages),
+		progressbar.OptionSetWidth(24),
+		progressbar.OptionShowCount(),
+		progressbar.OptionSetElapsedTime(false),
+		progressbar.OptionSetPredictTime(false),
+		progressbar.OptionClearOnFinish(),
+		progressbar.OptionSetTheme(progressbar.Theme{Saucer: "/", SaucerHead: "/", SaucerPadding: ".", BarStart: "", BarEnd: ""}),
+	)
 }
 
 // plain says when a phase ends.
@@ -77,6 +84,14 @@ func (p *progress) plain(e optimize.Event) {
 
 func (p *progress) sayLast() {
 	p.app.say("%s: %s%s\n", p.phase, count(p.last.Evaluations, "exact evaluation"), best(p.last))
+}
+
+// bestShort is the best so far in the room beside a bar.
+func bestShort(e optimize.Event) string {
+	if math.IsNaN(e.Aim) {
+		return ", none feasible yet"
+	}
+	return best(e)
 }
 
 // best describes the best so far.

@@ -57,7 +57,8 @@ Exit codes:
 		return &usageError{err.Error(), "see " + cmd.CommandPath() + " --help"}
 	})
 	root.AddCommand(
-		a.designCommand(), a.flowCommand(), a.checkCommand(), a.newCommand(),
+		a.designCommand(), a.flowCommand(), a.checkCommand(), a.fitsCommand(), a.newCommand(),
+		a.ladderCommand(), a.tradeCommand(),
 		a.quantitiesCommand(), a.versionCommand(),
 	)
 	root.SetHelpCommand(&cobra.Command{

@@ -23,10 +23,18 @@ type Answer struct {
 // Solve answers one question.
 type Solve func(ctx context.Context, q Question) (Answer, error)
 
-// Slack is the share of an objective's span over the curve by which the end of
-// the curve may miss the best value of that objective, while the other one is
-// lowered there. It keeps the region of that last question from being a point.
-const Slack = 1e-4
+// Slack is the share of an objective's span over the curve by which an end of the
+// curve may miss the best value of that objective, where that lowers the other one
+// by more than LooseEnd of its span: the best value alone does not decide the
+// design there. Slack keeps the region of that question from being a point.
+const (
+	Slack    = 1e-4
+	LooseEnd = 1e-2
+)
+
+// Same is the relative difference within which an objective counts as the same at
+// both ends of the curve: there is then no trade.
+const Same = 1e-6
 
 // ErrTooFewPoints is the answer to a curve of less than its two ends.
 var ErrTooFewPoints = errors.New("a trade curve has at least 2 points")
@@ -36,13 +44,13 @@ var ErrTooFewPoints = errors.New("a trade curve has at least 2 points")
 //
 //	lower f0  subject to  f1 <= eps_k,  eps_k evenly spaced
 //
-// between the ends of the curve. An end is the least of one objective alone,
-// then the least of the other with the first held within Slack of it
-// (lexicographic ends, Mavrotas 2009, from memory), so that neither is left to
-// chance where an objective does not decide the design. A curve of n points asks
+// between the ends of the curve. An end is the least of one objective alone, or
+// the least of the other with the first held within Slack of it where that makes a
+// difference (lexicographic ends, Mavrotas 2009, from memory). A curve of n points asks
 // n + 2 questions: the best of each objective afresh, since the best of the other
 // may be a resting place of a local search, every other from its neighbour and
-// from the end that keeps every bound.
+// from the end that keeps every bound. An end that was not found is sought once
+// more from the other.
 //
 // The list holds the questions' numbers along the curve, from the least of
 // objective 0 to the least of objective 1, those without an answer left out;
@@ -55,11 +63,20 @@ func EpsilonConstraint(ctx context.Context, n int, solve Solve) (along []int, er
 	t := &tracer{ctx: ctx, solve: solve}
 	first := t.ask(Question{Lower: 0, AtMost: math.Inf(1)})
 	last := t.ask(Question{Lower: 1, AtMost: math.Inf(1)})
+	if t.found(last) && !t.found(first) {
+		first = t.ask(Question{Lower: 0, AtMost: math.Inf(1), Near: []int{last}})
+	}
+	if t.found(first) && !t.found(last) {
+		last = t.ask(Question{Lower: 1, AtMost: math.Inf(1), Near: []int{first}})
+	}
 	span := t.span(first, last)
-	first = t.refine(first, Question{Lower: 1, AtMost: t.point(first)[0] + Slack*span[0]})
-	last = t.refine(last, Question{Lower: 0, AtMost: t.point(last)[1] + Slack*span[1]})
-	if !t.found(first) || !t.found(last) || t.point(first).dominates(t.point(last)) || t.point(first) == t.point(last) {
+	first = t.refine(first, 1, span)
+	last = t.refine(last, 0, span)
+	switch {
+	case !t.found(first) || !t.found(last) || t.same(first, last, 1):
 		return t.known(first), t.err
+	case t.same(first, last, 0):
+		return t.known(last), t.err
 	}
 	along = []int{first}
 	from, to := t.point(first)[1], t.point(last)[1]
@@ -121,14 +138,20 @@ func (t *tracer) span(a, b int) Point {
 	return Point{math.Abs(p[0] - q[0]), math.Abs(p[1] - q[1])}
 }
 
-// refine asks for the least of the other objective at an end of the curve; where
-// nothing is found the end stands as it is.
-func (t *tracer) refine(end int, q Question) int {
-	if !t.found(end) || math.IsNaN(q.AtMost) {
+// same reports whether two answers agree in an objective.
+func (t *tracer) same(a, b, objective int) bool {
+	v, w := t.point(a)[objective], t.point(b)[objective]
+	return math.Abs(v-w) <= Same*math.Max(math.Abs(v), math.Abs(w))
+}
+
+// refine asks for the least of an objective at an end of the curve, which is the
+// least of the other. The end stands where that makes little difference.
+func (t *tracer) refine(end, lower int, span Point) int {
+	if !t.found(end) || math.IsNaN(span[lower]) {
 		return end
 	}
-	q.Near = []int{end}
-	if refined := t.ask(q); t.found(refined) {
+	refined := t.ask(Question{Lower: lower, AtMost: t.point(end)[1-lower] + Slack*span[1-lower], Near: []int{end}})
+	if t.found(refined) && t.point(end)[lower]-t.point(refined)[lower] > LooseEnd*span[lower] {
 		return refined
 	}
 	return end

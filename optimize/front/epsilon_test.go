@@ -147,8 +147,8 @@ func TestEpsilonConstraintAsksEvenly(t *testing.T) {
 	if len(along) != 5 || len(l.asked) != 7 {
 		t.Fatalf("curve of %v after %d questions", along, len(l.asked))
 	}
-	// The ends give up Slack of one objective for the other: 1e-4 of a span of 1.
-	for k, want := range []float64{1 - Slack, 0.75 - Slack/2, 0.5, 0.25 + Slack/2, Slack} {
+	// The ends of a line are decided: refining them makes no difference.
+	for k, want := range []float64{1, 0.75, 0.5, 0.25, 0} {
 		answer, _ := l.solve(t.Context(), l.asked[along[k]])
 		if math.Abs(answer.Point[1]-want) > 1e-12 {
 			t.Errorf("point %d: %v, want f1 = %g", k, answer.Point, want)
@@ -156,13 +156,46 @@ func TestEpsilonConstraintAsksEvenly(t *testing.T) {
 	}
 }
 
-// Where one design is best in both objectives, it is the whole curve.
+// Where one design is best in both objectives, it is the whole curve; an objective
+// that differs by rounding alone does not make it a trade.
 func TestEpsilonConstraintWithoutATrade(t *testing.T) {
-	along, err := EpsilonConstraint(t.Context(), 5, func(context.Context, Question) (Answer, error) {
-		return Answer{Point{1, 2}, true}, nil
-	})
-	if err != nil || len(along) != 1 {
-		t.Errorf("curve %v, %v", along, err)
+	for name, c := range map[string]struct {
+		best [2]Point // of objective 0, of objective 1
+		want int
+	}{
+		"one design":            {[2]Point{{1, 2}, {1, 2}}, 0},
+		"objective 1 the same":  {[2]Point{{1, 2}, {3, 2 - 1e-9}}, 0},
+		"objective 0 the same":  {[2]Point{{1 - 1e-9, 4}, {1, 2}}, 1},
+		"both nearly the same":  {[2]Point{{1, 2}, {1 + 1e-9, 2 - 1e-9}}, 0},
+		"objective 1 near zero": {[2]Point{{1, 0}, {3, 0}}, 0},
+	} {
+		var asked []Question
+		along, err := EpsilonConstraint(t.Context(), 5, func(_ context.Context, q Question) (Answer, error) {
+			if asked = append(asked, q); len(asked) > 2 {
+				return Answer{}, nil
+			}
+			return Answer{c.best[q.Lower], true}, nil
+		})
+		if err != nil || len(along) != 1 || along[0] != c.want || len(asked) > 4 {
+			t.Errorf("%s: curve %v after %d questions, %v", name, along, len(asked), err)
+		}
+	}
+}
+
+// An end that is missed at first is sought from the other.
+func TestEpsilonConstraintSeeksAnEndAgain(t *testing.T) {
+	for missed := range 2 {
+		l := &line{}
+		along, err := EpsilonConstraint(t.Context(), 3, func(ctx context.Context, q Question) (Answer, error) {
+			answer, err := l.solve(ctx, q)
+			if q.Lower == missed && q.Near == nil {
+				answer.Found = false
+			}
+			return answer, err
+		})
+		if err != nil || len(along) != 3 || len(l.asked[2].Near) != 1 || l.asked[2].Near[0] != 1-missed {
+			t.Errorf("objective %d missed: curve %v, %v", missed, along, err)
+		}
 	}
 }
 

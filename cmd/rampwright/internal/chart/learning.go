@@ -28,8 +28,8 @@ type LearningPanel struct {
 // LearningCurve is one line with its band.
 type LearningCurve struct {
 	Name string
-	// Lead marks the curve that matters most: it is drawn thickest, and its band
-	// is shaded.
+	// Lead marks the curve that matters most: it lies broad under the others, and
+	// its band is shaded.
 	Lead   bool
 	Points []LearningPoint // at least one, X rising
 }

@@ -94,7 +94,7 @@ func drawn(v float64) float64 { return math.Max(v, leastError) }
 // the height of a line: names in each other's way form a block around the mean
 // of their ends (pool adjacent violators), which stays beside the axes.
 func (l *panelLayout) nameCurves(face typeface) {
-	height := face.height() + 2
+	height := face.height() + 3
 	for i, c := range l.panel.Curves {
 		last := c.Points[len(c.Points)-1]
 		l.names = append(l.names, curveName{curve: i, end: point{l.x.at(last.X), l.y.at(drawn(last.Middle))}})
@@ -124,7 +124,7 @@ func (l *panelLayout) nameCurves(face typeface) {
 	for _, b := range blocks {
 		for i := range b.size {
 			n := &l.names[next]
-			n.box = box{l.axes.right() + leaderRoom, top(b) + float64(i)*height, face.width(l.panel.Curves[n.curve].Name), height}
+			n.box = box{l.axes.right() + leaderRoom, top(b) + float64(i)*height, face.width(l.panel.Curves[n.curve].Name), face.height() + 2}
 			next++
 		}
 	}

@@ -10,7 +10,7 @@ import (
 )
 
 // curveStrokes tell curves apart by ink and by dashes; the lead curve has a
-// stroke of its own.
+// stroke of its own, broad and pale.
 var curveStrokes = [...]stroke{
 	{"#005f9e", 1.6, ""},
 	{"#c24e00", 1.6, "8 3"},
@@ -21,7 +21,7 @@ var curveStrokes = [...]stroke{
 }
 
 var (
-	leadStroke   = stroke{darkInk, 3, ""}
+	leadStroke   = stroke{darkInk, 6, ""}
 	targetStroke = stroke{cautionInk, 0.9, "2 3"}
 )
 
@@ -92,8 +92,12 @@ func (d learningSheet) panel(l panelLayout) {
 			d.whiskers(l, i)
 		}
 	}
-	for i := range l.panel.Curves {
-		d.curve(l, i)
+	for _, lead := range []bool{true, false} { // the lead lies broad under the others
+		for i, c := range l.panel.Curves {
+			if c.Lead == lead {
+				d.curve(l, i)
+			}
+		}
 	}
 	for _, n := range l.names {
 		d.name(l, n)
@@ -192,9 +196,13 @@ func (d learningSheet) curve(l panelLayout, curve int) {
 	}
 	s := l.stroke(curve)
 	x, y := columns(line)
-	d.Polyline(x, y, append(s.attributes(), attribute("data-name", c.Name), `fill="none"`, `stroke-linejoin="round"`)...)
+	opacity := 1.0
+	if c.Lead {
+		opacity = 0.35
+	}
+	d.Polyline(x, y, append(s.attributes(), attribute("data-name", c.Name), fmt.Sprintf(`stroke-opacity="%g"`, opacity), `fill="none"`, `stroke-linejoin="round"`)...)
 	for _, at := range line {
-		d.Circle(at.x, at.y, s.width+0.8, attribute("fill", s.ink))
+		d.Circle(at.x, at.y, 1.2+s.width/2, attribute("fill", s.ink), fmt.Sprintf(`fill-opacity="%g"`, opacity))
 	}
 }
 

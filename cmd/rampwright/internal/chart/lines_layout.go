@@ -1,0 +1,205 @@
+package chart
+
+import (
+	"math"
+	"sort"
+)
+
+// linearAxis maps a number to the sheet.
+type linearAxis struct {
+	low, high float64
+	from, to  float64 // places on the sheet
+	ticks     ruler
+}
+
+func (a linearAxis) at(v float64) float64 {
+	return a.from + (v-a.low)/(a.high-a.low)*(a.to-a.from)
+}
+
+// linesLayout is a line chart with every place decided.
+type linesLayout struct {
+	chart LineChart
+	axes  box
+	x, y  linearAxis
+	names []lineName
+	notes []placedNote
+}
+
+// lineName is a name at the right of the axes with the end of its line; a level
+// has the number of the line len(Lines) + level.
+type lineName struct {
+	line int
+	text string
+	end  point
+	box  box
+}
+
+// placedNote is the note of a point in its place.
+type placedNote struct {
+	line int
+	text string
+	box  box
+}
+
+const (
+	linesHeight = 420.0 // of the axes
+	headroom    = 0.06  // of the range of y, free above and below
+	ringWidth   = 6.0   // of the ring around a marked point
+)
+
+// arrangeLines decides the places of a chart whose axes begin at the top given.
+func arrangeLines(c LineChart, top float64, faces typefaces) linesLayout {
+	widest := 0.0
+	for _, name := range c.allNames() {
+		widest = max(widest, faces.label.width(name))
+	}
+	axes := box{margin + axisRoom, top, sheetWidth - 2*margin - axisRoom - leaderRoom - widest, linesHeight}
+	l := linesLayout{chart: c, axes: axes}
+	l.x, l.y = c.axesIn(axes)
+	l.nameLines(faces.label)
+	l.placeNotes(faces.small)
+	return l
+}
+
+func (c LineChart) allNames() []string {
+	var names []string
+	for _, line := range c.Lines {
+		names = append(names, line.Name)
+	}
+	for _, level := range c.Levels {
+		names = append(names, level.Name)
+	}
+	return names
+}
+
+// axesIn spans the axes over the data.
+func (c LineChart) axesIn(axes box) (x, y linearAxis) {
+	left, right := c.Low, c.High
+	low, high := math.Inf(1), math.Inf(-1)
+	for _, line := range c.Lines {
+		for _, p := range line.Points {
+			left, right = min(left, p.X), max(right, p.X)
+			low, high = min(low, p.Y), max(high, p.Y)
+		}
+	}
+	for _, level := range c.Levels {
+		low, high = min(low, level.Y), max(high, level.Y)
+	}
+	if low > high { // nothing drawn
+		low, high = 0, 1
+	}
+	left, right = separated(left, right)
+	low, high = separated(low, high)
+	low, high = low-headroom*(high-low), high+headroom*(high-low)
+	x = linearAxis{low: left, high: right, from: axes.x + edgeRoom, to: axes.right() - edgeRoom}
+	y = linearAxis{low: low, high: high, from: axes.bottom(), to: axes.y}
+	step := 70 * (right - left) / (x.to - x.from)
+	if c.WholeX {
+		step = max(1, step)
+	}
+	x.ticks = newRuler(left, right, step)
+	y.ticks = newRuler(low, high, 34*(high-low)/axes.h)
+	return x, y
+}
+
+// separated widens a range without length.
+func separated(low, high float64) (float64, float64) {
+	if least := 1e-9 * max(1, math.Abs(low), math.Abs(high)); high-low < least {
+		half := max(0.5*math.Abs(low), 0.5)
+		return low - half, high + half
+	}
+	return low, high
+}
+
+// nameLines puts the names beside the ends of their lines, one below the other
+// without overlap: pushed down in the order of the ends, then up from the foot of
+// the axes.
+func (l *linesLayout) nameLines(face typeface) {
+	c := &l.chart
+	for i, line := range c.Lines {
+		last := line.Points[len(line.Points)-1]
+		l.names = append(l.names, lineName{line: i, text: line.Name, end: point{l.x.at(last.X), l.y.at(last.Y)}})
+	}
+	for i, level := range c.Levels {
+		l.names = append(l.names, lineName{line: len(c.Lines) + i, text: level.Name, end: point{l.axes.right(), l.y.at(level.Y)}})
+	}
+	sort.SliceStable(l.names, func(a, b int) bool { return l.names[a].end.y < l.names[b].end.y })
+	const gap = 2
+	height := face.height()
+	next := l.axes.y
+	for i := range l.names {
+		n := &l.names[i]
+		n.box = box{l.axes.right() + leaderRoom, max(next, n.end.y-height/2), face.width(n.text), height}
+		next = n.box.bottom() + gap
+	}
+	next = l.axes.bottom()
+	for i := len(l.names) - 1; i >= 0; i-- {
+		n := &l.names[i]
+		n.box.y = min(n.box.y, next-height)
+		next = n.box.y - gap
+	}
+}
+
+// placeNotes puts each note above, below or beside its point: at the first place
+// that covers no line and no other note, else no other note.
+func (l *linesLayout) placeNotes(face typeface) {
+	strokes := l.segments()
+	for i, line := range l.chart.Lines {
+		for _, p := range line.Points {
+			if p.Note != "" {
+				l.placeNote(i, p, face, strokes)
+			}
+		}
+	}
+}
+
+func (l *linesLayout) placeNote(line int, p LinePoint, face typeface, strokes []segment) {
+	at := point{l.x.at(p.X), l.y.at(p.Y)}
+	w, h := face.width(p.Note)+4, face.height()
+	off := 8.0
+	if p.Mark {
+		off += ringWidth
+	}
+	spots := []box{
+		{at.x - w/2, at.y - off - h, w, h}, {at.x - w/2, at.y + off, w, h},
+		{at.x - off - w, at.y - off - h/2, w, h}, {at.x + off, at.y - off - h/2, w, h},
+		{at.x - off - w, at.y + off - h/2, w, h}, {at.x + off, at.y + off - h/2, w, h},
+	}
+	best, least := spots[0], math.Inf(1)
+	for _, spot := range spots {
+		cost := 0.0
+		for _, n := range l.notes {
+			if n.box.overlaps(spot) {
+				cost += 100
+			}
+		}
+		for _, s := range strokes {
+			if spot.meets(s) {
+				cost++
+			}
+		}
+		if spot.x < l.axes.x || spot.right() > l.axes.right() || spot.y < l.axes.y || spot.bottom() > l.axes.bottom() {
+			cost += 10
+		}
+		if cost < least {
+			best, least = spot, cost
+		}
+	}
+	l.notes = append(l.notes, placedNote{line, p.Note, best})
+}
+
+// segments lists every stroke of the lines and levels.
+func (l *linesLayout) segments() []segment {
+	var list []segment
+	for _, line := range l.chart.Lines {
+		for i, p := range line.Points[1:] {
+			before := line.Points[i]
+			list = append(list, segment{point{l.x.at(before.X), l.y.at(before.Y)}, point{l.x.at(p.X), l.y.at(p.Y)}})
+		}
+	}
+	for _, level := range l.chart.Levels {
+		y := l.y.at(level.Y)
+		list = append(list, segment{point{l.axes.x, y}, point{l.axes.right(), y}})
+	}
+	return list
+}
