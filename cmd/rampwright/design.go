@@ -254,6 +254,9 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 		}
 		files = append(files, ofInlet...)
 	}
+	if files, err = withPage(files, study, finished); err != nil {
+		return err
+	}
 	for _, f := range files {
 		if err := folder.WriteFile(f.name, f.data); err != nil {
 			return err

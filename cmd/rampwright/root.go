@@ -59,7 +59,7 @@ Exit codes:
 	root.AddCommand(
 		a.designCommand(), a.flowCommand(), a.checkCommand(), a.fitsCommand(), a.newCommand(),
 		a.ladderCommand(), a.tradeCommand(),
-		a.quantitiesCommand(), a.versionCommand(),
+		a.reportCommand(), a.compareCommand(), a.quantitiesCommand(), a.schemaCommand(), a.versionCommand(),
 	)
 	root.SetHelpCommand(&cobra.Command{
 		Use: "help [command]", Short: "Explain a command",

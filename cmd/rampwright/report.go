@@ -1,0 +1,104 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"io/fs"
+	"os"
+	"path/filepath"
+
+	"github.com/spf13/cobra"
+
+	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/cmd/rampwright/internal/runstore"
+)
+
+// pageName is the review page in a result folder.
+const pageName = "report.html"
+
+func (a *app) reportCommand() *cobra.Command {
+	var file string
+	cmd := &cobra.Command{
+		Use: "report DIR", Short: "Write the review page of a result folder", Args: exactArgs(1),
+		Long: `Write the review page of a design as one HTML file that stands alone: no
+script, nothing fetched. It is made of the files in the result folder, the same
+page as "design" puts there; by default it takes that page's place.`,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			if file == "" {
+				file = filepath.Join(args[0], pageName)
+			}
+			return a.report(args[0], file)
+		},
+	}
+	cmd.Flags().StringVarP(&file, "output", "o", "", "file of the page (default DIR/"+pageName+")")
+	cmd.Flags().BoolVar(&a.quiet, "quiet", false, "no message")
+	return cmd
+}
+
+// report writes the page of a folder.
+func (a *app) report(dir, file string) error {
+	folder, err := resultFolder(dir)
+	if err != nil {
+		return err
+	}
+	page, err := report.Page(*folder)
+	if err != nil {
+		return err
+	}
+	if err := os.WriteFile(file, page, 0o666); err != nil {
+		return err
+	}
+	a.say("review page: %s\n", file)
+	return nil
+}
+
+// resultFolder reads what a page needs of the result folder of a design.
+func resultFolder(dir string) (*report.Folder, error) {
+	if _, err := runstore.ReadMark(dir); err != nil {
+		return nil, err
+	}
+	folder := new(report.Folder)
+	for _, f := range []struct {
+		name     string
+		into     *[]byte
+		optional bool
+	}{
+		{"result.json", &folder.Result, false}, {"run.json", &folder.Run, false},
+		{"review.json", &folder.Review, true}, {"inlet.svg", &folder.SideView, true},
+	} {
+		data, err := os.ReadFile(filepath.Join(dir, f.name))
+		switch {
+		case err == nil:
+			*f.into = data
+		case f.optional && errors.Is(err, fs.ErrNotExist):
+		default:
+			return nil, &usageError{"no finished design there: " + err.Error(), "rampwright design writes one"}
+		}
+	}
+	return folder, nil
+}
+
+// withPage adds the review of a finished design and its page to the files of the
+// result.
+func withPage(files []file, study *study, finished *report.Study) ([]file, error) {
+	review, err := report.NewReview(context.Background(), study.head(study.brief.Effort.Seed), *finished)
+	if err != nil {
+		return nil, err
+	}
+	folder := report.Folder{Review: review.JSON()}
+	for _, f := range files {
+		switch f.name {
+		case "result.json":
+			folder.Result = f.data
+		case "run.json":
+			folder.Run = f.data
+		case "inlet.svg":
+			folder.SideView = f.data
+		}
+	}
+	page, err := report.Page(folder)
+	if err != nil {
+		return nil, err
+	}
+	return append(files, file{"review.json", folder.Review}, file{pageName, page}), nil
+}
