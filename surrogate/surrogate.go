@@ -8,7 +8,10 @@
 // undoes it on the way out.
 package surrogate
 
-import "context"
+import (
+	"context"
+	"sync"
+)
 
 // Model is a configuration. It never changes; Fit returns a new value.
 type Model interface {
@@ -41,4 +44,34 @@ type Fitted interface {
 	// Warm returns the configuration that refits this very structure cheaply,
 	// starting from what this fit found, after a few samples were added.
 	Warm() Model
+}
+
+// Batch is implemented by fits that predict many points faster than one by one.
+type Batch interface {
+	// PredictMany stores the means and standard deviations at the points in mean
+	// and deviation, which have their length, on up to jobs goroutines (0 means
+	// 1). The result does not depend on their number.
+	PredictMany(points [][]float64, mean, deviation []float64, jobs int)
+}
+
+// PredictMany predicts many points by any fit: by its own PredictMany where it
+// has one, else one by one, shared among the jobs (see Batch).
+func PredictMany(f Fitted, points [][]float64, mean, deviation []float64, jobs int) {
+	if batch, ok := f.(Batch); ok {
+		batch.PredictMany(points, mean, deviation, jobs)
+		return
+	}
+	if len(mean) != len(points) || len(deviation) != len(points) {
+		panic("surrogate: results of the wrong length")
+	}
+	jobs = max(jobs, 1)
+	var group sync.WaitGroup
+	for job := range jobs {
+		group.Go(func() {
+			for i := job; i < len(points); i += jobs {
+				mean[i], deviation[i] = f.Predict(points[i])
+			}
+		})
+	}
+	group.Wait()
 }

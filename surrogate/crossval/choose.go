@@ -1,5 +1,6 @@
 // Package crossval chooses among surrogate kinds and output transforms by
-// leave-one-out error and keeps every kind's figures.
+// leave-one-out error, blends the good ones where none explains the data, and
+// keeps every kind's figures.
 package crossval
 
 import (
@@ -21,6 +22,9 @@ type Settings struct {
 	// Tie is the relative excess of error up to which a simpler fit is
 	// preferred; 0 means 0.01.
 	Tie float64
+	// Alone keeps the best fit by itself where none explains the data, instead of
+	// a weighted mean of the good ones.
+	Alone bool
 	// Jobs is the number of fits run side by side; 0 means 1. The result does
 	// not depend on it.
 	Jobs int
@@ -36,15 +40,17 @@ type Figure struct {
 	Coverage    float64 // of 95 % intervals
 	Candidate   int     // place in Settings.Candidates
 	Chosen      bool
-	Err         error // why there is no fit; the figures are then NaN
+	Weight      float64 // in the weighted mean; 1 for a fit chosen alone
+	Err         error   // why there is no fit; the figures are then NaN
 }
 
-// Choice is the fit with the least leave-one-out error, and the figures of all.
+// Choice is the fit with the least leave-one-out error, or a weighted mean of
+// good ones led by it, and the figures of all.
 type Choice struct {
 	surrogate.Fitted
-	Kind      string
+	Kind      string // of the leading fit
 	Transform Transform
-	Widening  float64 // factor on the deviations of the fit, see widening
+	Widening  float64 // factor on the deviations, see widening and blendWidening
 	Quality   surrogate.Quality
 	Figures   []Figure
 }
@@ -64,7 +70,9 @@ const (
 // Choose fits every candidate on every valid transform and returns the one with
 // the least root mean square leave-one-out error, in the output's unit; among
 // those within Tie of it, the simplest: least complexity, then the earliest
-// transform. Transforms whose domain the outputs leave are left out. A candidate
+// transform. Where even that leaves more than 3 % of the spread of the data
+// unexplained, it leads a weighted mean of all fits of similar error (see
+// Settings.Alone). Transforms whose domain the outputs leave are left out. A candidate
 // that cannot be fitted keeps its error in the table; when none can, the first
 // error is returned.
 func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
@@ -86,8 +94,29 @@ func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choic
 		return Choice{}, figures[0].Err
 	}
 	figures[best].Chosen = true
-	c := Choice{Kind: figures[best].Kind, Transform: figures[best].Transform, Widening: widening(figures, best), Figures: figures}
-	return c.with(fits[best], y), nil
+	s.weigh(figures, fits, best, y)
+	c := Choice{Kind: figures[best].Kind, Transform: figures[best].Transform, Figures: figures}
+	if figures[best].Weight == 1 {
+		c.Widening = widening(figures, best)
+	} else {
+		c.Widening = blendWidening(len(x), len(x[0]))
+	}
+	return c.with(c.combine(fits), y), nil
+}
+
+// combine returns the only fit with a weight, or the weighted mean of several.
+func (c Choice) combine(fits []surrogate.Fitted) surrogate.Fitted {
+	var members []surrogate.Fitted
+	var weights []float64
+	for i, f := range c.Figures {
+		if f.Weight > 0 {
+			members, weights = append(members, fits[i]), append(weights, f.Weight)
+		}
+	}
+	if len(members) == 1 {
+		return members[0]
+	}
+	return newBlend(members, weights)
 }
 
 // with returns the choice with a fit of the chosen kind to the outputs y.
@@ -95,6 +124,11 @@ func (c Choice) with(fitted surrogate.Fitted, y []float64) Choice {
 	c.Fitted = widen(fitted, c.Widening)
 	c.Quality = surrogate.Assess(c.Fitted, y)
 	return c
+}
+
+// PredictMany implements surrogate.Batch.
+func (c Choice) PredictMany(points [][]float64, mean, deviation []float64, jobs int) {
+	surrogate.PredictMany(c.Fitted, points, mean, deviation, jobs)
 }
 
 // fitAll fills one line and one fit for each candidate and valid transform.
@@ -181,19 +215,25 @@ func simpler(f Figure, fit surrogate.Fitted, g Figure, other surrogate.Fitted) b
 	return fit.Complexity() < other.Complexity()
 }
 
-// Refit fits the chosen kind on the chosen transform again, starting from what
-// it found: cheap, for a few samples more. The figures of the other kinds are
-// those of the choice. It returns *TransformError when a new output leaves the
-// domain of the transform: choose again then.
+// Refit fits the chosen kind on the chosen transform again, or all members of a
+// weighted mean, starting from what they found: cheap, for a few samples more.
+// Weights and the figures of the other kinds are those of the choice. It returns
+// *TransformError when a new output leaves the domain of the transform: choose
+// again then.
 func (c Choice) Refit(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
 	fitted, err := c.Fitted.Warm().Fit(ctx, x, y)
 	if err != nil {
 		return Choice{}, err
 	}
 	c.Figures = append([]Figure(nil), c.Figures...)
+	members := []surrogate.Fitted{fitted}
+	if b, ok := fitted.(*blend); ok {
+		members = b.members
+	}
 	for i := range c.Figures {
-		if f := &c.Figures[i]; f.Chosen {
-			f.report(fitted, y)
+		if f := &c.Figures[i]; f.Weight > 0 {
+			f.report(members[0], y)
+			members = members[1:]
 		}
 	}
 	return c.with(fitted, y), nil

@@ -35,8 +35,8 @@ func TestChoosesTheKindThatFits(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if len(c.Figures) != 12 {
-		t.Errorf("%d lines in the table, want four kinds on three transforms", len(c.Figures))
+	if len(c.Figures) != 15 {
+		t.Errorf("%d lines in the table, want five kinds on three transforms", len(c.Figures))
 	}
 	chosen := 0
 	for _, f := range c.Figures {
@@ -143,7 +143,7 @@ func TestInvalidTransformsAreLeftOut(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if len(c.Figures) != 4 {
+	if len(c.Figures) != 5 {
 		t.Errorf("%d lines for outputs of both signs", len(c.Figures))
 	}
 	_, err = crossval.Transformed{Model: pce.OLS{}, Transform: crossval.Log}.Fit(background, x, y)
@@ -295,6 +295,29 @@ func TestFoldsAndPredict(t *testing.T) {
 	for i, v := range f.LeaveOneOut() {
 		if math.Abs(left[i]-v) > 1e-10 {
 			t.Errorf("sample %d: brute force %g, closed form %g", i, left[i], v)
+		}
+	}
+}
+
+// Many predictions of a choice, whatever kind and transform it holds, are those
+// made one by one.
+func TestPredictManyOfAChoice(t *testing.T) {
+	x, y := sampled(30, 4, 12, fourRamps)
+	points := doe.RandomLatinHypercube(70, 4, doe.Stream(13, "fresh points"))
+	mean, deviation := make([]float64, len(points)), make([]float64, len(points))
+	for _, model := range crossval.Every(1) {
+		for _, transform := range crossval.Transforms {
+			c, err := crossval.Settings{Candidates: []surrogate.Model{model}, Transforms: []crossval.Transform{transform}}.Choose(background, x, y)
+			if err != nil {
+				t.Fatal(err)
+			}
+			surrogate.PredictMany(c, points, mean, deviation, 3)
+			for i, u := range points {
+				m, s := c.Predict(u)
+				if math.Abs(mean[i]-m) > 1e-12*math.Abs(m) || math.Abs(deviation[i]-s) > 1e-6*s+1e-12 || c.Mean(u) != m {
+					t.Errorf("%s, %v at %v: %g +- %g, one by one %g +- %g", model.Kind(), transform, u, mean[i], deviation[i], m, s)
+				}
+			}
 		}
 	}
 }

@@ -148,6 +148,15 @@ func (f *transformed) Predict(x []float64) (mean, deviation float64) {
 	return y, slope * s
 }
 
+// PredictMany implements surrogate.Batch.
+func (f *transformed) PredictMany(points [][]float64, mean, deviation []float64, jobs int) {
+	surrogate.PredictMany(f.Fitted, points, mean, deviation, jobs)
+	for i, v := range mean {
+		y, slope := f.transform.undo(v)
+		mean[i], deviation[i] = y, slope*deviation[i]
+	}
+}
+
 func (f *transformed) Gradient(dst, x []float64) float64 {
 	y, slope := f.transform.undo(f.Fitted.Gradient(dst, x))
 	for j := range dst {

@@ -6,7 +6,7 @@ import (
 	"rampwright/surrogate"
 )
 
-// mostWidening bounds the factor on the deviations of the chosen fit.
+// mostWidening bounds the factor on the deviations of the choice.
 const mostWidening = 2
 
 // widening returns the factor on the deviations of the chosen fit: the least
@@ -28,6 +28,13 @@ func widening(figures []Figure, chosen int) float64 {
 	return math.Min(other/own, mostWidening)
 }
 
+// blendWidening returns the factor on the deviations of a weighted mean of fits to
+// n samples of d inputs, sqrt(n/(n - d - 1)) within 1..2: a degree of freedom for
+// each input and the level, as in a linear regression (our rule, tested as above).
+func blendWidening(n, d int) float64 {
+	return math.Min(math.Sqrt(float64(n)/float64(max(n-d-1, 1))), mostWidening)
+}
+
 // widened multiplies the deviations of a fit.
 type widened struct {
 	surrogate.Fitted
@@ -46,6 +53,14 @@ func widen(f surrogate.Fitted, factor float64) surrogate.Fitted {
 func (w *widened) Predict(x []float64) (mean, deviation float64) {
 	mean, deviation = w.Fitted.Predict(x)
 	return mean, w.factor * deviation
+}
+
+// PredictMany implements surrogate.Batch.
+func (w *widened) PredictMany(points [][]float64, mean, deviation []float64, jobs int) {
+	surrogate.PredictMany(w.Fitted, points, mean, deviation, jobs)
+	for i := range deviation {
+		deviation[i] *= w.factor
+	}
 }
 
 func (w *widened) LeaveOneOutDeviation() []float64 { return w.deviation }

@@ -3,6 +3,8 @@ package gpr
 import (
 	"fmt"
 	"testing"
+
+	"rampwright/surrogate/doe"
 )
 
 func BenchmarkLikelihood(b *testing.B) {
@@ -59,6 +61,21 @@ func BenchmarkPredict(b *testing.B) {
 		b.Run("deviation/"+name(n), func(b *testing.B) {
 			for b.Loop() {
 				p.Predict(u)
+			}
+		})
+	}
+}
+
+// Ten thousand means and deviations on two goroutines.
+func BenchmarkPredictMany(b *testing.B) {
+	points := doe.RandomLatinHypercube(10_000, 4, doe.Stream(12, "test points"))
+	mean, deviation := make([]float64, len(points)), make([]float64, len(points))
+	for _, n := range []int{100, 500} {
+		x, y := samples(n, 4, 10, smooth)
+		p := fit(b, Config{Restarts: 1}, x, y)
+		b.Run(name(n), func(b *testing.B) {
+			for b.Loop() {
+				p.PredictMany(points, mean, deviation, 2)
 			}
 		})
 	}

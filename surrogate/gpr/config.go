@@ -48,8 +48,8 @@ type Config struct {
 	// Start.Deviation is then used too; otherwise it is estimated.
 	Fixed bool
 	// Restarts is the number of starts from a Latin hypercube in the logarithms
-	// of the lengths. Without Start, two more at lengths 0.5 and 1.5 come first,
-	// and 0 means 3.
+	// of the lengths. Without Start, three more at lengths 0.5, 1.5 and 0.07
+	// sqrt(inputs) come first, and 0 means 2.
 	Restarts int
 	// SubsetAbove is the number of samples above which the starts run on a
 	// space-filling subset of 150, and only the best is polished on all; 0 means

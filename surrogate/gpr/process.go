@@ -75,7 +75,7 @@ func (s *search) process(f found, scaling surrogate.Scaling, y []float64) (*Proc
 	p.factor = w.r
 	p.factor.Data = append([]float64(nil), w.r.Data...)
 	p.pool.New = func() any {
-		return &scratch{k: make([]float64, n), white: make([]float64, n), trend: make([]float64, q)}
+		return &scratch{white: make([]float64, n), trend: make([]float64, q)}
 	}
 	p.hyper = Hyper{Lengths: f.lengths, Nugget: nugget, Deviation: math.Sqrt(w.s2) * scaling.Scale}
 	p.evidence = Evidence{LogLikelihood: likelihood, LogPosterior: -f.f, Gradient: f.slope, Evaluations: f.evaluations, Jitter: s.jitter, AtBound: f.atBound(), Widening: 1}

@@ -8,6 +8,8 @@ import (
 	"testing"
 
 	"pgregory.net/rapid"
+	"rampwright/problems"
+	"rampwright/problems/analytic"
 	"rampwright/surrogate"
 	"rampwright/surrogate/doe"
 )
@@ -338,6 +340,42 @@ func TestIntervalsCover(t *testing.T) {
 // With noise of standard deviation 0.1 on the outputs the estimated nugget
 // finds its variance within a factor 1.5, and the mean lies closer to the truth
 // than the noise.
+// Franke's four bumps have short lengths; long ones are a false optimum of the
+// likelihood, where R has lost its digits (errors 1e-2..5e-2).
+func TestShortLengthsAreFound(t *testing.T) {
+	problem, err := analytic.New("gaussian_bumps")
+	if err != nil {
+		t.Fatal(err)
+	}
+	value := problems.NewEvaluation(len(problem.Quantities()))
+	bumps := func(x []float64) float64 {
+		if err := problem.Evaluate(background, x, value); err != nil {
+			t.Fatal(err)
+		}
+		return value.Values[0]
+	}
+	for _, c := range []struct {
+		samples int
+		limit   float64 // on the root mean square error
+	}{{80, 4e-2}, {160, 6e-3}, {320, 6e-4}} {
+		for seed := range int64(3) {
+			x, y := samples(c.samples, 2, seed, bumps)
+			p := fit(t, Config{Seed: seed}, x, y)
+			known := fit(t, Config{Start: &Hyper{Lengths: []float64{0.15, 0.15}}}, x, y)
+			if lost := known.Evidence().LogPosterior - p.Evidence().LogPosterior; lost > 0.01*float64(c.samples) {
+				t.Errorf("%d samples, seed %d: log posterior %g below that from known lengths", c.samples, seed, lost)
+			}
+			var truth, predicted []float64
+			for _, u := range doe.RandomLatinHypercube(300, 2, doe.Stream(99, "fresh points")) {
+				truth, predicted = append(truth, bumps(u)), append(predicted, p.Mean(u))
+			}
+			if e := surrogate.RMSE(truth, predicted); e > c.limit {
+				t.Errorf("%d samples, seed %d: error %.2g with %s", c.samples, seed, e, p.Describe())
+			}
+		}
+	}
+}
+
 func TestNoiseIsEstimated(t *testing.T) {
 	x, y := samples(120, 2, 12, smooth)
 	noise := doe.Stream(1, "noise")

@@ -96,7 +96,11 @@ func (s *search) bounds() (low, high []float64) {
 	return low, high
 }
 
-// starts lists the starting points.
+// starts lists the starting points. Long lengths alone are not enough: on many
+// samples of a function with features the likelihood falls from its optimum at
+// short lengths into a valley where R has lost its digits, and rises behind it to
+// a poor one; the third start stands on the short side, scaled with the dimension
+// because distances grow with it.
 func (s *search) starts() [][]float64 {
 	var starts [][]float64
 	c, d := s.config, s.sample.d
@@ -116,8 +120,9 @@ func (s *search) starts() [][]float64 {
 	} else {
 		add(func(int) float64 { return 0.5 }, 1e-3)
 		add(func(int) float64 { return 1.5 }, 1e-6)
+		add(func(int) float64 { return 0.07 * math.Sqrt(float64(d)) }, 1e-6)
 		if restarts == 0 {
-			restarts = 3
+			restarts = 2
 		}
 	}
 	hypercube := doe.RandomLatinHypercube(restarts, d+1, doe.Stream(c.Seed, "Gaussian process starts"))

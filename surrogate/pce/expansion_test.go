@@ -8,6 +8,8 @@ import (
 	"testing"
 
 	"pgregory.net/rapid"
+	"rampwright/problems"
+	"rampwright/problems/analytic"
 	"rampwright/surrogate"
 	"rampwright/surrogate/doe"
 )
@@ -264,6 +266,33 @@ func TestLassoOptimality(t *testing.T) {
 			t.Fatal("the middle of the path was not solved")
 		}
 	})
+}
+
+// The Styblinski-Tang function in five inputs is a quartic of sixteen terms whose
+// cubic part explains almost nothing: both sparse kinds find it all the same.
+func TestSparseKindsFindTheQuartic(t *testing.T) {
+	problem, err := analytic.New("styblinski_tang")
+	if err != nil {
+		t.Fatal(err)
+	}
+	value := problems.NewEvaluation(len(problem.Quantities()))
+	quartic := func(u []float64) float64 {
+		x := make([]float64, len(u))
+		surrogate.Box{Low: []float64{-5, -5, -5, -5, -5}, High: []float64{5, 5, 5, 5, 5}}.FromUnit(x, u)
+		if err := problem.Evaluate(context.Background(), x, value); err != nil {
+			t.Fatal(err)
+		}
+		return value.Values[0]
+	}
+	for seed := range int64(4) {
+		x, y := samples(100, 5, seed, quartic)
+		for _, m := range []surrogate.Model{LeastAngle{}, Lasso{Seed: seed}} {
+			e := fit(t, m, x, y)
+			for _, u := range [][]float64{{0.1, 0.9, 0.4, 0.6, 0.5}, {0, 0, 1, 1, 0.3}} {
+				near(t, m.Kind(), e.Mean(u), quartic(u), 1e-9)
+			}
+		}
+	}
 }
 
 func TestDegenerateData(t *testing.T) {

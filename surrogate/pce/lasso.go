@@ -14,9 +14,11 @@ import (
 //
 //	minimise |y - b0 - X b|^2/(2n) + alpha |b|_1
 //
-// with alpha of least cross-validated error selects the terms, and least
-// squares on them gives the coefficients; the level is that of least corrected
-// leave-one-out error.
+// with alpha of least cross-validated error puts terms in the order of their
+// coefficients, least squares on the first k of them gives the coefficients, and
+// k and the level are those of least corrected leave-one-out error. The alpha
+// best for predicting keeps more terms than the truth has, and the correction
+// would refuse them all together.
 type Lasso struct {
 	Truncation
 	Inputs []Input
@@ -57,10 +59,10 @@ func (c Lasso) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*E
 	if terms == 0 {
 		terms = defaultLassoTerms
 	}
-	choose := func(design blas64.General, y []float64) ([]int, bool) {
-		return selectByLasso(design, y, folds, c.Seed), false
+	choose := func(design blas64.General, y []float64) []int {
+		return selectByLasso(design, y, folds, c.Seed)
 	}
-	e, level, err := fitSparse(ctx, c.Truncation, c.Inputs, terms, c.Exactly, choose, x, y)
+	e, level, err := fitSparse(ctx, c.Truncation, c.Inputs, terms, c.Exactly, choose, lassoFlattery, x, y)
 	if err != nil {
 		return nil, err
 	}

@@ -32,11 +32,11 @@ func (c LeastAngle) Fit(ctx context.Context, x [][]float64, y []float64) (surrog
 
 // FitExpansion is Fit with the concrete type.
 func (c LeastAngle) FitExpansion(ctx context.Context, x [][]float64, y []float64) (*Expansion, error) {
-	choose := func(design blas64.General, y []float64) ([]int, bool) {
+	choose := func(design blas64.General, y []float64) []int {
 		order, _ := newCovariance(design, y).leastAngle(int(mostSupport * float64(len(y))))
-		return order, true
+		return order
 	}
-	e, level, err := fitSparse(ctx, c.Truncation, c.Inputs, c.Terms, c.Exactly, choose, x, y)
+	e, level, err := fitSparse(ctx, c.Truncation, c.Inputs, c.Terms, c.Exactly, choose, leastAngleFlattery, x, y)
 	if err != nil {
 		return nil, err
 	}

@@ -10,13 +10,26 @@ import (
 )
 
 // selector proposes terms of a design matrix (column 0 the constant) for
-// standardised outputs, the most important first. With prefixes every leading
-// part of the list is a candidate, otherwise only the whole.
-type selector func(design blas64.General, y []float64) (order []int, prefixes bool)
+// standardised outputs, the most important first. Every leading part of the list
+// is a candidate.
+type selector func(design blas64.General, y []float64) (order []int)
 
 // mostSupport is the largest share of the samples that a sparse expansion may
 // have as terms.
 const mostSupport = 0.8
+
+// alwaysTried is the level up to which levels without gain do not end the way up.
+const alwaysTried = 4
+
+// What the correction leaves. At fresh points of published test functions that
+// 40 samples do not explain, root mean square errors were 1.2 (least angle) and
+// 1.3 (lasso, which has seen the samples once more in its folds) times the
+// corrected leave-one-out errors in the median, those of the other kinds 0.95 to
+// 1.17 times their own. The factors put the kinds on one footing.
+const (
+	leastAngleFlattery = 1.15
+	lassoFlattery      = 1.3
+)
 
 // sparseFit is a candidate: least squares on selected columns of a level.
 type sparseFit struct {
@@ -28,8 +41,9 @@ type sparseFit struct {
 
 // fitSparse fits least squares on selected terms, level by level, and keeps the
 // level and support of least corrected leave-one-out error (Blatman & Sudret
-// 2011); beyond level 3 it stops after two levels without gain.
-func fitSparse(ctx context.Context, t Truncation, inputs []Input, most int, exactly bool, choose selector, x [][]float64, y []float64) (*Expansion, int, error) {
+// 2011); beyond level 4 it stops after two levels without gain. The levels up to
+// there are always tried: x^4 - c x^2 may resemble no lower one.
+func fitSparse(ctx context.Context, t Truncation, inputs []Input, most int, exactly bool, choose selector, flattery float64, x [][]float64, y []float64) (*Expansion, int, error) {
 	var extra []string
 	if most < 0 {
 		extra = []string{fmt.Sprintf("%d terms", most)}
@@ -49,7 +63,7 @@ func fitSparse(ctx context.Context, t Truncation, inputs []Input, most int, exac
 		first = len(ends) - 1
 	}
 	var best *sparseFit
-	for level := first; level < len(ends) && (best == nil || level <= max(best.level+2, 3)); level++ {
+	for level := first; level < len(ends) && (best == nil || level <= max(best.level+2, alwaysTried)); level++ {
 		if err := ctx.Err(); err != nil {
 			return nil, 0, err
 		}
@@ -57,25 +71,20 @@ func fitSparse(ctx context.Context, t Truncation, inputs []Input, most int, exac
 			best = fit
 		}
 	}
-	return best.expansion(full, scaling, scaled, y), best.level, nil
+	return best.expansion(full, scaling, scaled, y, flattery), best.level, nil
 }
 
 // trySupport selects among the first p columns and returns the best support.
 func trySupport(design blas64.General, p, level int, choose selector, y []float64) *sparseFit {
-	columns, prefixes := []int{0}, false
+	columns := []int{0}
 	if p > 1 {
-		var order []int
-		order, prefixes = choose(leadingColumns(design, p), y)
-		columns = append(columns, order...)
+		columns = append(columns, choose(leadingColumns(design, p), y)...)
 	}
 	columns = columns[:min(len(columns), max(1, int(mostSupport*float64(len(y)))))]
 	factors := factorise(pick(design, columns))
 	errors, factor := factors.looErrors(y), factors.corrections()
 	size, least := 1, math.Inf(1)
 	for k, e := range errors {
-		if !prefixes && k > 0 && k < len(errors)-1 {
-			continue // the constant and the whole
-		}
 		if corrected := e * math.Sqrt(factor[k]); corrected < least && least > exactError {
 			size, least = k+1, corrected
 		}
@@ -85,9 +94,9 @@ func trySupport(design blas64.General, p, level int, choose selector, y []float6
 
 // expansion builds the fitted expansion on the selected columns. Its terms were
 // selected on the samples they are fitted to, so plain leave-one-out flatters
-// it: residuals are those of the corrected error (times sqrt(T)), and the
-// variance is T RSS/n.
-func (f *sparseFit) expansion(full *basis, scaling surrogate.Scaling, scaled, y []float64) *Expansion {
+// it: residuals are those of the corrected error (times sqrt(T)) and of the
+// flattery that the correction leaves, and the variance is T RSS/n.
+func (f *sparseFit) expansion(full *basis, scaling surrogate.Scaling, scaled, y []float64, flattery float64) *Expansion {
 	keep := make([]bool, len(full.terms))
 	for _, t := range f.columns {
 		keep[t] = true
@@ -100,7 +109,7 @@ func (f *sparseFit) expansion(full *basis, scaling surrogate.Scaling, scaled, y 
 	size := len(f.columns)
 	r := f.factors.leading(size, scaled)
 	if factor := f.factors.corrections()[size-1]; size > 1 && !math.IsInf(factor, 1) {
-		r.inflate(math.Sqrt(factor), math.Sqrt(factor*float64(len(y)-size)/float64(len(y))))
+		r.inflate(flattery*math.Sqrt(factor), math.Sqrt(factor*float64(len(y)-size)/float64(len(y))))
 	}
 	e := &Expansion{basis: newBasis(full.inputs, terms), scaling: scaling, spread: r, active: size, rank: sparseRank}
 	e.scaled = make([]float64, len(terms))
