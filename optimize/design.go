@@ -22,7 +22,7 @@ func Design(ctx context.Context, task Task, settings Settings, observe Observer)
 	if err := settings.Validate(plan.dimension()); err != nil {
 		return nil, err
 	}
-	d := &designer{plan: plan, settings: settings, observe: observe, aimScale: 1, radius: startRadius}
+	d := &designer{plan: plan, settings: settings, observe: observe, radius: startRadius}
 	if err := d.run(ctx); err != nil && ctx.Err() == nil {
 		return nil, err
 	}
@@ -41,8 +41,7 @@ type designer struct {
 	near     *surfaces // around the center
 	anchor   *anchor   // of the near surfaces, at the center
 
-	aimScale   float64
-	weight     float64   // of the violation in the merit
+	penalty    merit
 	radius     float64   // of the trust region
 	misled     bool      // the last step gained much less than expected
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
@@ -94,6 +93,8 @@ func (d *designer) run(ctx context.Context) error {
 
 // sample evaluates the starts and the space-filling design.
 func (d *designer) sample(ctx context.Context) error {
+	// An interruption leaves samples to judge as well.
+	defer func() { d.penalty = newMerit(d.plan, d.samples) }()
 	points := slices.Concat(d.plan.starts, d.plan.design(d.settings.Samples, d.settings.Seed))
 	// In slices, so that an interruption loses little and progress shows.
 	for len(points) > 0 {
@@ -108,30 +109,11 @@ func (d *designer) sample(ctx context.Context) error {
 		}
 		d.tell("samples")
 	}
-	d.scale()
 	return nil
 }
 
 // sampleSlice is how many samples are evaluated between two signs of progress.
 const sampleSlice = 16
-
-// scale sets the unit of the aim: its spread over the samples.
-func (d *designer) scale() {
-	low, high := math.Inf(1), math.Inf(-1)
-	for _, s := range d.samples {
-		if !math.IsNaN(s.aim) {
-			low, high = math.Min(low, s.aim), math.Max(high, s.aim)
-		}
-	}
-	if high > low {
-		d.aimScale = high - low
-	}
-	d.weight = leastWeight
-}
-
-// leastWeight is the weight of the scaled violation in the merit before prices
-// are known.
-const leastWeight = 10
 
 // fit brings the surrogates up to the samples: those around the center always,
 // those over the whole box while it is searched.
@@ -155,18 +137,8 @@ func (d *designer) center() *sample {
 	return best
 }
 
-// merit orders samples: the aim to minimise in its scale, plus the weighted
-// violation (exact l1 penalty).
-func (d *designer) merit(s *sample) float64 {
-	aim := d.plan.objective.sign() * s.aim / d.aimScale
-	if math.IsNaN(aim) {
-		aim = withoutAim
-	}
-	return aim + d.weight*s.violation
-}
-
-// withoutAim is the scaled aim of a sample that has none.
-const withoutAim = 1e3
+// merit orders samples, the least first.
+func (d *designer) merit(s *sample) float64 { return d.penalty.of(s.aim, s.excess) }
 
 // best is the best feasible sample, nil before the first.
 func (d *designer) best() *sample {

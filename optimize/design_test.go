@@ -241,6 +241,24 @@ func TestCancelledDesignKeepsTheBest(t *testing.T) {
 	})
 }
 
+// A limit at 0, whose scale comes from the samples, has one among few samples too.
+func TestCancelledAmongTheSamplesUnderALimitAtZero(t *testing.T) {
+	for at := int64(2); at <= 20; at += 3 {
+		ctx, cancel := context.WithCancel(context.Background())
+		task := disk(0)
+		task.Problem = &interrupting{verifiedToy: task.Problem.(verifiedToy), at: at, end: cancel}
+		result, err := Design(ctx, task, Settings{Samples: 20}, nil)
+		cancel()
+		switch {
+		case errors.Is(err, ErrNothingEvaluated): // within the first slice
+		case err != nil:
+			t.Error(err)
+		case result.Status != Interrupted:
+			t.Errorf("cancelled at evaluation %d: %v", at, result.Status)
+		}
+	}
+}
+
 // slow is a model whose every evaluation lasts.
 type slow struct {
 	verifiedToy

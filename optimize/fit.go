@@ -22,9 +22,11 @@ type Fit struct {
 	never bool
 }
 
-// wideKinds compete for every quantity over the whole box.
+// wideKinds compete for every quantity over the whole box; the sparse expansion
+// is there for sums of functions of few variables, which it finds exactly. Around
+// an optimum it and the weighted one gave nothing or lost.
 func wideKinds(seed int64) []surrogate.Model {
-	return []surrogate.Model{pce.OLS{}, pce.Ridge{}, gpr.Config{Seed: seed}}
+	return []surrogate.Model{pce.OLS{}, pce.Ridge{}, gpr.Config{Seed: seed}, pce.LeastAngle{}}
 }
 
 // nearKinds compete around an optimum, where a kind must follow the samples it is

@@ -12,7 +12,7 @@ import (
 func sampledDisk(t testing.TB) *designer {
 	t.Helper()
 	plan := mustPlan(t, disk(1))
-	d := &designer{plan: plan, settings: Settings{Samples: 24}.WithDefaults(2), aimScale: 1, radius: startRadius}
+	d := &designer{plan: plan, settings: Settings{Samples: 24}.WithDefaults(2), radius: startRadius}
 	if err := d.sample(context.Background()); err != nil {
 		t.Fatal(err)
 	}

@@ -17,7 +17,8 @@ type searcher struct {
 	land      landscape
 	aimScale  float64
 	blind     bool      // the aim cannot be predicted: look for feasibility alone
-	inside    []float64 // extra back-off of each curved row, scaled
+	scale     []float64 // of each curved row, in the quantity's unit
+	inside    []float64 // extra back-off of each curved row, in units of its Row.Scale
 	vector    []float64 // values by quantity index
 	rows      [][]float64
 	workspace local.Workspace
@@ -29,6 +30,9 @@ func newSearcher(p *plan, land landscape, aimScale float64) *searcher {
 		inside: make([]float64, len(p.curved)),
 		vector: make([]float64, len(p.quantities)),
 		rows:   make([][]float64, len(p.quantities)),
+	}
+	for _, r := range p.curved {
+		s.scale = append(s.scale, p.rows[r].Scale)
 	}
 	for _, list := range [][]int{p.fitted, p.exact} {
 		for _, i := range list {
@@ -44,6 +48,7 @@ type solution struct {
 	values    []float64 // of the landscape, by quantity index
 	aim       float64
 	violation float64   // sum of scaled violations on the landscape
+	excess    []float64 // scaled violation by row
 	prices    []float64 // aim gained for each unit a row is loosened, by row
 	status    local.Status
 	kkt       float64
@@ -73,6 +78,7 @@ func (s *searcher) polish(ctx context.Context, start, low, high []float64, setti
 	copy(out.values, s.vector)
 	out.aim = s.plan.objective.value(out.values)
 	out.violation = s.violation()
+	out.excess = s.excess()
 	return out, nil
 }
 
@@ -148,10 +154,10 @@ func (s *searcher) value(u, c []float64) float64 {
 	k := 0
 	for q, r := range p.curved {
 		row := &p.rows[r]
-		v, inside := s.vector[row.Index], backoff+s.inside[q]
+		v, inside := s.vector[row.Index], (backoff+s.inside[q])*row.Scale
 		free := math.IsInf(v, 1) // the quantity does not apply
 		for _, bound := range row.Bounds() {
-			c[k] = bound.Sign*(v-bound.At)/row.Scale + inside
+			c[k] = (bound.Sign*(v-bound.At) + inside) / s.scale[q]
 			if free {
 				c[k] = -1
 			}
@@ -183,14 +189,14 @@ func (s *searcher) gradient(u, grad, jac []float64) {
 		addScaled(jac[k*width:k*width+n], factor, row)
 		k++
 	}
-	for _, r := range p.curved {
+	for q, r := range p.curved {
 		row := &p.rows[r]
 		for _, bound := range row.Bounds() {
 			if math.IsInf(s.vector[row.Index], 1) {
 				put(0, nil)
 				continue
 			}
-			put(bound.Sign/row.Scale, s.rows[row.Index])
+			put(bound.Sign/s.scale[q], s.rows[row.Index])
 		}
 	}
 	sign := p.objective.sign()
@@ -226,16 +232,31 @@ func (s *searcher) violation() float64 {
 	return sum
 }
 
+// excess is the scaled violation of every row at the latest values, 0 for the
+// linear rows, which a search keeps.
+func (s *searcher) excess() []float64 {
+	out := make([]float64, len(s.plan.rows))
+	for _, r := range s.plan.curved {
+		row := &s.plan.rows[r]
+		switch v := s.vector[row.Index]; {
+		case math.IsNaN(v):
+			out[r] = v
+		case !math.IsInf(v, 1):
+			out[r] = math.Max(0, -row.Margin(v)/row.Scale)
+		}
+	}
+	return out
+}
+
 // prices turns multipliers into the aim gained for each unit by which a row is
 // loosened.
 func (s *searcher) prices(result *local.Result) []float64 {
 	p := s.plan
 	prices := make([]float64, len(p.rows))
 	k := 0
-	for _, r := range p.curved {
-		row := &p.rows[r]
-		for range row.Bounds() {
-			prices[r] += result.Multipliers[k] * s.aimScale / row.Scale
+	for q, r := range p.curved {
+		for range p.rows[r].Bounds() {
+			prices[r] += result.Multipliers[k] * s.aimScale / s.scale[q]
 			k++
 		}
 	}

@@ -4,7 +4,9 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 
+	"rampwright/constraints"
 	"rampwright/surrogate/doe"
 )
 
@@ -71,7 +73,7 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 // rounds.
 func (d *designer) exploring() bool { return len(d.history) < wideRounds }
 
-const wideRounds = 3
+const wideRounds = 2
 
 // refine spends a pair of evaluations near the optimum, ever closer, where the
 // surrogates know least: they still miss it by more than the agreement.
@@ -89,7 +91,7 @@ func (d *designer) affordable(proposals []*proposal) []*proposal {
 // exploit searches the corrected surrogates within the trust region.
 func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, error) {
 	land := d.plan.surrogates(d.near.fits, d.anchor)
-	s := newSearcher(d.plan, land, d.aimScale)
+	s := d.newSearcher(land)
 	s.blind = d.blind(d.near)
 	d.stayInside(s)
 	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
@@ -101,19 +103,20 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 		return nil, err
 	}
 	d.counts.Surrogate += land.calls
-	d.raiseWeight(found.prices)
+	d.penalty.follow(d.plan, center, found)
 	p := d.proposal(found.u, d.near)
 	p.exploit = true
 	p.expected = d.expectedMerit(found)
 	return p, nil
 }
 
-// raiseWeight keeps the merit exact: its weight stays above every scaled
-// multiplier (Nocedal & Wright thm. 17.3).
-func (d *designer) raiseWeight(prices []float64) {
-	for r, price := range prices {
-		d.weight = math.Max(d.weight, 2*price*d.plan.rows[r].Scale/d.aimScale)
+// newSearcher searches a landscape in the scales of the samples.
+func (d *designer) newSearcher(land landscape) *searcher {
+	s := newSearcher(d.plan, land, d.penalty.aimScale)
+	for q, r := range d.plan.curved {
+		s.scale[q] = d.penalty.usual[r]
 	}
+	return s
 }
 
 // stayInside backs the active limits off by a tenth of the last prediction error
@@ -139,7 +142,7 @@ func (d *designer) rowError(quantity int) float64 {
 }
 
 func (d *designer) expectedMerit(found *solution) float64 {
-	return d.plan.objective.sign()*found.aim/d.aimScale + d.weight*found.violation
+	return d.penalty.of(found.aim, found.excess)
 }
 
 // blind reports whether the surfaces cannot predict the aim.
@@ -171,7 +174,7 @@ func (d *designer) proposal(u []float64, on *surfaces) *proposal {
 func (d *designer) search(ctx context.Context) (*proposal, error) {
 	land := d.plan.surrogates(d.wide.fits, nil)
 	center := d.center()
-	s := newSearcher(d.plan, land, d.aimScale)
+	s := d.newSearcher(land)
 	s.blind = d.blind(d.wide)
 	starts, err := s.explore(ctx, [][]float64{center.u}, uint64(d.settings.Seed)+uint64(len(d.samples)), wideGenerations)
 	if err != nil {
@@ -289,12 +292,18 @@ func (d *designer) doubt(u []float64) float64 {
 	return most
 }
 
-// unit is the scale of a quantity: of the tightest row on it, or the aim's.
+// unit is the scale of a quantity: of the first row on it, or the aim's. A limit
+// at 0 has no scale of its own; what is usual stands in.
 func (d *designer) unit(quantity int) float64 {
 	for _, r := range d.plan.curved {
-		if d.plan.rows[r].Index == quantity {
-			return d.plan.rows[r].Scale
+		row := &d.plan.rows[r]
+		if row.Index != quantity {
+			continue
 		}
+		if slices.ContainsFunc(row.Bounds(), func(b constraints.Bound) bool { return b.At != 0 }) {
+			return row.Scale
+		}
+		return d.penalty.usual[r]
 	}
-	return d.aimScale
+	return d.penalty.aimScale
 }

@@ -20,6 +20,7 @@ type sample struct {
 	values     []float64 // settled: see plan.settle
 	aim        float64   // NaN where missing
 	violation  float64   // sum of scaled violations
+	excess     []float64 // scaled violation by row; NaN where the quantity is missing
 	feasible   bool
 }
 
@@ -43,6 +44,12 @@ func (p *plan) judge(u []float64, evaluation *problems.Evaluation) *sample {
 	s := &sample{
 		u: u, x: p.denormal(u), evaluation: evaluation, values: settled.Values,
 		aim: p.objective.value(settled.Values), violation: assessment.Violation, feasible: assessment.Feasible,
+	}
+	s.excess = make([]float64, len(p.rows))
+	for r, check := range assessment.Checks {
+		if !check.Met {
+			s.excess[r] = -check.Margin / check.Scale
+		}
 	}
 	if math.IsNaN(s.aim) || math.IsInf(s.aim, 0) {
 		s.aim, s.feasible = math.NaN(), false

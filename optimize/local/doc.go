@@ -10,7 +10,9 @@
 // elastic phase that minimises the l1 violation while the linearised
 // constraints contradict each other. All cited from memory.
 //
-// The box and the linear rows hold at every point where the functions are
+// MinimizeAugmented is a second, independent route by the augmented Lagrangian.
+//
+// In Minimize the box and the linear rows hold at every point where the functions are
 // evaluated, to rounding; only the nonlinear constraints may be violated on the
 // way.
 package local
