@@ -51,7 +51,6 @@ type solution struct {
 	excess    []float64 // scaled violation by row
 	prices    []float64 // aim gained for each unit a row is loosened, by row
 	status    local.Status
-	kkt       float64
 }
 
 // worst reports whether the aim needs the extra variable.
@@ -71,7 +70,6 @@ func (s *searcher) polish(ctx context.Context, start, low, high []float64, setti
 		u:      append([]float64(nil), result.X[:n]...),
 		values: make([]float64, len(s.vector)),
 		status: result.Status,
-		kkt:    result.KKT,
 		prices: s.prices(result),
 	}
 	s.values(out.u)

@@ -75,8 +75,7 @@ func WriteMarginBar(w io.Writer, b MarginBar) error {
 	}
 	d.Path(fmt.Sprintf("M%g 1V%g", zero, barHeight-1), attribute("stroke", darkInk), `stroke-width="1.6"`)
 	d.End()
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 // WriteMarginScale draws the axis the bars share.
@@ -104,6 +103,5 @@ func WriteMarginScale(w io.Writer) error {
 		d.labelled(text, box{min(x-width/2, barWidth-width), 14, width, d.faces.small.height()}, d.faces.small, softInk)
 	}
 	d.End()
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }

@@ -47,8 +47,7 @@ func WriteFieldPair(w io.Writer, f FieldPair) error {
 	}
 	d.colourKey(f.Label, colours, box{margin + axisRoom, key, sheetWidth - 2*margin - axisRoom, keyHeight})
 	d.End()
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 // hatching defines the pattern of what is forbidden, light and dark lines so that

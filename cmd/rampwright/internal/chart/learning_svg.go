@@ -39,9 +39,7 @@ func WriteLearningCurves(w io.Writer, picture LearningCurves) error {
 	d := learningSheet{SVG: svg.New(&sheet), faces: newTypefaces()}
 	d.Decimals = sheetDecimals
 	d.draw(picture)
-	// Without the XML prolog the file stands inside a page as well.
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 type learningSheet struct {

@@ -26,9 +26,7 @@ func WriteLineChart(w io.Writer, chart LineChart) error {
 	d := linesSheet{SVG: svg.New(&sheet), faces: newTypefaces()}
 	d.Decimals = sheetDecimals
 	d.draw(chart)
-	// Without the XML prolog the file stands inside a page as well.
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 type linesSheet struct {

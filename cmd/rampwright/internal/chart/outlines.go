@@ -99,8 +99,7 @@ func WriteOutlineChart(w io.Writer, c OutlineChart) error {
 		d.labelled(s.Name, box{left + 38, line, d.faces.small.width(s.Name), d.faces.small.height()}, d.faces.small, darkInk)
 	}
 	d.End()
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 // keyColumns fits the key: as many columns as the longest name leaves room for.

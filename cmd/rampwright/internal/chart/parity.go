@@ -96,8 +96,7 @@ func WriteParityChart(w io.Writer, c ParityChart) error {
 		}
 	}
 	d.End()
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 func (p ParityPoint) inside() bool { return math.Abs(p.Predicted-p.Exact) <= p.Reach }

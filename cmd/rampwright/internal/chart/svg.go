@@ -44,9 +44,7 @@ func WriteSideView(w io.Writer, view SideView) error {
 	d.head()
 	d.key()
 	d.End()
-	// Without the XML prolog the file stands inside a page as well.
-	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
-	return err
+	return writeSheet(w, &sheet)
 }
 
 type drawing struct {
@@ -210,4 +208,11 @@ func attribute(name, value string) string {
 		panic(err)
 	}
 	return name + `="` + escaped.String() + `"`
+}
+
+// writeSheet writes a finished drawing without its XML prolog, so that the file
+// stands inside a page as well.
+func writeSheet(w io.Writer, sheet *bytes.Buffer) error {
+	_, err := w.Write(sheet.Bytes()[bytes.Index(sheet.Bytes(), []byte("<svg")):])
+	return err
 }

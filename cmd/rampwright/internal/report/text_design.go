@@ -37,25 +37,11 @@ func (d *DesignDocument) Text(width int) string {
 }
 
 // aimName is the aim as a phrase.
-func (d *DesignDocument) aimName() string {
-	a := &d.Best.Aim
-	switch a.Where {
-	case "", problems.Geometry:
-		return a.Text
-	case "mean":
-		return "weighted mean of " + a.Text + " over the flight points"
-	case "worst":
-		return "worst " + a.Text + " of the flight points"
-	}
-	return a.Text + " at " + a.Where
-}
+func (d *DesignDocument) aimName() string { return aimPhrase(d.Best.Aim.Text, d.Best.Aim.Where) }
 
 // answer is the result in one sentence.
 func (d *DesignDocument) answer() string {
-	extreme := "lowest"
-	if d.Best.Aim.Highest {
-		extreme = "highest"
-	}
+	extreme := extreme(d.Best.Aim.Highest)
 	value := significant(float64(d.Best.Aim.Exact))
 	switch d.study.Result.Status {
 	case optimize.Verified:
