@@ -55,7 +55,7 @@ var rooms = map[string]room{
 	"surrogate":          library(),
 	"surrogate/doe":      library(),
 	"surrogate/pce":      library("surrogate", "surrogate/doe", "optimize/local"),
-	"surrogate/gpr":      library("surrogate", "surrogate/doe", "optimize/local"),
+	"surrogate/gpr":      using(library("surrogate", "surrogate/doe", "optimize/local"), "golang.org/x/sys"), // asks which vectors the processor has
 	"surrogate/crossval": library("surrogate", "surrogate/..."),
 
 	"constraints": library("problems"),
@@ -85,13 +85,16 @@ func library(may ...string) room {
 }
 
 func search(third ...string) room {
-	r := library("problems", "constraints", "surrogate", "surrogate/...", "optimize/local")
-	r.third = append(r.third, third...)
-	return r
+	return using(library("problems", "constraints", "surrogate", "surrogate/...", "optimize/local"), third...)
 }
 
 func with(r room, more ...string) room {
 	r.may = append(r.may, more...)
+	return r
+}
+
+func using(r room, third ...string) room {
+	r.third = append(r.third, third...)
 	return r
 }
 

@@ -1,18 +1,13 @@
 package gpr
 
 import (
+	"slices"
 	"sync"
-
-	"gonum.org/v1/gonum/blas"
-	"gonum.org/v1/gonum/blas/blas64"
 )
 
-// tileSize is the number of points whose triangular solves run together.
-const tileSize = 64
-
 // PredictMany stores the means and standard deviations at the points in mean and
-// deviation, which have their length: what Predict returns, to rounding, in about
-// two thirds of its time at 500 samples. Up to jobs goroutines (0 means 1) share
+// deviation, which have their length: what Predict returns, to rounding, in a
+// third of its time at 500 samples. Up to jobs goroutines (0 means 1) share
 // the points; the result does not depend on their number.
 //
 // It pays from about as many points as samples on: the correlations of the
@@ -23,11 +18,11 @@ func (p *Process) PredictMany(points [][]float64, mean, deviation []float64, job
 	}
 	tiles := (len(points) + tileSize - 1) / tileSize
 	jobs = min(max(jobs, 1), tiles)
-	correlations := p.sampleCorrelations()
+	shared := p.forTiles()
 	var group sync.WaitGroup
 	for job := range jobs {
 		group.Go(func() {
-			t := p.newTile(correlations)
+			t := shared.newTile()
 			for k := job; k < tiles; k += jobs {
 				low, high := k*tileSize, min((k+1)*tileSize, len(points))
 				t.predict(points[low:high], mean[low:high], deviation[low:high])
@@ -37,80 +32,82 @@ func (p *Process) PredictMany(points [][]float64, mean, deviation []float64, job
 	group.Wait()
 }
 
-// sampleCorrelations returns the correlations of the samples with one another,
-// by rows.
-func (p *Process) sampleCorrelations() []float64 {
-	c := make([]float64, p.n*p.n)
+// forTiles is a process with what the prediction of many points shares.
+type forTiles struct {
+	*Process
+	correlations []float64 // of the samples with one another, by rows
+	factor       triangle
+	trended      panels // F'L^-T
+}
+
+func (p *Process) forTiles() *forTiles {
+	f := &forTiles{Process: p, correlations: make([]float64, p.n*p.n), factor: newTriangle(p.factor)}
 	for i := range p.n {
 		own := p.z[i*p.d : (i+1)*p.d]
 		for k := range i + 1 {
-			c[i*p.n+k] = p.config.Kernel.correlation(p.squared(own, k))
-			c[k*p.n+i] = c[i*p.n+k]
+			c := p.config.Kernel.correlation(p.squared(own, k))
+			f.correlations[i*p.n+k], f.correlations[k*p.n+i] = c, c
 		}
 	}
-	return c
+	f.trended = newPanels(slices.Collect(slices.Chunk(p.trended, p.n)))
+	return f
 }
 
-// tile is the working space of one goroutine: a few points, one to a row.
+// tile is the working space of one goroutine: a few points side by side.
 type tile struct {
-	*Process
-	correlations []float64      // of the samples
-	u            []float64      // scaled inputs of a point
-	least        []float64      // scaled squared distance of each point to its nearest sample
-	white        blas64.General // r, delta, L^-1 delta of Predict
-	trend        blas64.General // f - F'R^-1 r
+	*forTiles
+	u     []float64         // scaled inputs of a point
+	r     []float64         // its correlations with the samples
+	white []float64         // delta, L^-1 delta of Predict: a row a sample, a column a point
+	trend []sums            // f - F'R^-1 r: a row a function
+	least [tileSize]float64 // scaled squared distance of each point to its nearest sample
 }
 
-func (p *Process) newTile(correlations []float64) *tile {
-	stride := 8 * ((p.n+7)/8 | 1) // an odd number of cache lines: columns spread over the cache
+func (f *forTiles) newTile() *tile {
 	return &tile{
-		Process: p, correlations: correlations, u: make([]float64, 0, p.d), least: make([]float64, tileSize),
-		white: blas64.General{Cols: p.n, Stride: stride, Data: make([]float64, tileSize*stride)},
-		trend: blas64.General{Cols: p.q, Stride: max(p.q, 1), Data: make([]float64, tileSize*p.q)},
+		forTiles: f, u: make([]float64, 0, f.d), r: make([]float64, f.n),
+		white: make([]float64, len(f.factor.left)*panelRows*tileSize), trend: make([]sums, len(f.trended)),
 	}
 }
 
 // predict follows Predict, step by step for all points of the tile.
 func (t *tile) predict(points [][]float64, mean, deviation []float64) {
-	t.white.Rows, t.trend.Rows = len(points), len(points)
+	clear(t.trend)
 	for c, x := range points {
-		mean[c], t.least[c] = t.relate(x, t.white.Data[c*t.white.Stride:][:t.n], t.trend.Data[c*t.q:][:t.q])
+		mean[c] = t.relate(c, x)
 	}
-	t.solve()
-	if t.q > 0 {
-		trended := blas64.General{Rows: t.q, Cols: t.n, Stride: t.n, Data: t.trended}
-		blas64.Gemm(blas.NoTrans, blas.Trans, -1, t.white, trended, 1, t.trend)
+	t.factor.solve(t.white)
+	for b, panel := range t.trended {
+		t.trend[b].subtract(panel, t.white)
 	}
-	for c := range points {
-		white := vector(t.white.Data[c*t.white.Stride:][:t.n])
-		deviation[c] = t.deviation(t.least[c], blas64.Dot(white, white), t.trend.Data[c*t.q:][:t.q])
-	}
-}
-
-// relate stores delta and f(x) - f(x_i) of a point in white and trend and returns
-// its mean and its scaled squared distance to the nearest sample, i.
-func (t *tile) relate(x, white, trend []float64) (mean, least float64) {
-	u := t.scaled(t.u[:0], x)
-	sum, nearest, least := t.correlate(u, white)
-	for k, c := range t.correlations[nearest*t.n : (nearest+1)*t.n] {
-		white[k] -= c
-	}
-	white[nearest] = -(t.hyper.Nugget + t.config.Kernel.complement(least))
-	t.trendFrom(trend, u, nearest)
-	return t.scaling.Undo(t.trendAt(x) + sum), least
-}
-
-// solve overwrites each row v of white by L^-1 v, one entry of all rows at a
-// time: the library's product of a matrix with a vector is faster here than its
-// triangular solve.
-func (t *tile) solve() {
-	left := t.white
-	for i := range t.n {
-		row := t.factor.Data[i*t.factor.Stride : i*t.factor.Stride+i+1]
-		entries := blas64.Vector{N: left.Rows, Inc: left.Stride, Data: t.white.Data[i:]}
-		if left.Cols = i; i > 0 {
-			blas64.Gemv(blas.NoTrans, -1, left, vector(row[:i]), 1, entries)
+	var quadratic [tileSize]float64
+	for k := range t.n {
+		for c, v := range t.white[k*tileSize:][:tileSize] {
+			quadratic[c] += v * v
 		}
-		blas64.Scal(1/row[i], entries)
 	}
+	trend := make([]float64, t.q)
+	for c := range points {
+		for j := range trend {
+			trend[j] = t.trend[j/panelRows][j%panelRows][c]
+		}
+		deviation[c] = t.deviation(t.least[c], quadratic[c], trend)
+	}
+}
+
+// relate stores delta and f(x) - f(x_i), i the nearest sample, of a point in
+// column c and returns its mean.
+func (t *tile) relate(c int, x []float64) (mean float64) {
+	u := t.scaled(t.u[:0], x)
+	sum, nearest, least := t.correlate(u, t.r)
+	for k, own := range t.correlations[nearest*t.n : (nearest+1)*t.n] {
+		t.white[k*tileSize+c] = t.r[k] - own
+	}
+	t.white[nearest*tileSize+c] = -(t.hyper.Nugget + t.config.Kernel.complement(least))
+	t.least[c] = least
+	t.trendFrom(t.r[:t.q], u, nearest)
+	for j, f := range t.r[:t.q] {
+		t.trend[j/panelRows][j%panelRows][c] = f
+	}
+	return t.scaling.Undo(t.trendAt(x) + sum)
 }

@@ -1,0 +1,100 @@
+//go:build !noasm
+
+#include "textflag.h"
+
+// func subtractEights(s *sums, panel, tile *float64, count int)
+TEXT ·subtractEights(SB), NOSPLIT, $0-32
+	MOVQ    s+0(FP), DI
+	MOVQ    panel+8(FP), SI
+	MOVQ    tile+16(FP), DX
+	MOVQ    count+24(FP), CX
+	VMOVUPD 0(DI), Z0
+	VMOVUPD 64(DI), Z1
+	VMOVUPD 128(DI), Z2
+	VMOVUPD 192(DI), Z3
+	VMOVUPD 256(DI), Z4
+	VMOVUPD 320(DI), Z5
+	VMOVUPD 384(DI), Z6
+	VMOVUPD 448(DI), Z7
+
+column:
+	VMOVUPD           (DX), Z8
+	VFNMADD231PD.BCST 0(SI), Z8, Z0
+	VFNMADD231PD.BCST 8(SI), Z8, Z1
+	VFNMADD231PD.BCST 16(SI), Z8, Z2
+	VFNMADD231PD.BCST 24(SI), Z8, Z3
+	VFNMADD231PD.BCST 32(SI), Z8, Z4
+	VFNMADD231PD.BCST 40(SI), Z8, Z5
+	VFNMADD231PD.BCST 48(SI), Z8, Z6
+	VFNMADD231PD.BCST 56(SI), Z8, Z7
+	ADDQ              $64, DX
+	ADDQ              $64, SI
+	DECQ              CX
+	JNZ               column
+
+	VMOVUPD Z0, 0(DI)
+	VMOVUPD Z1, 64(DI)
+	VMOVUPD Z2, 128(DI)
+	VMOVUPD Z3, 192(DI)
+	VMOVUPD Z4, 256(DI)
+	VMOVUPD Z5, 320(DI)
+	VMOVUPD Z6, 384(DI)
+	VMOVUPD Z7, 448(DI)
+	VZEROUPPER
+	RET
+
+// func subtractFours(s *sums, panel, tile *float64, count int)
+//
+// Four rows of s and of the panel fill the registers: two passes.
+TEXT ·subtractFours(SB), NOSPLIT, $0-32
+	MOVQ s+0(FP), DI
+	MOVQ panel+8(FP), R8
+	MOVQ $2, BX
+
+pass:
+	MOVQ    R8, SI
+	MOVQ    tile+16(FP), DX
+	MOVQ    count+24(FP), CX
+	VMOVUPD 0(DI), Y0
+	VMOVUPD 32(DI), Y1
+	VMOVUPD 64(DI), Y2
+	VMOVUPD 96(DI), Y3
+	VMOVUPD 128(DI), Y4
+	VMOVUPD 160(DI), Y5
+	VMOVUPD 192(DI), Y6
+	VMOVUPD 224(DI), Y7
+
+column:
+	VMOVUPD      0(DX), Y8
+	VMOVUPD      32(DX), Y9
+	VBROADCASTSD 0(SI), Y10
+	VBROADCASTSD 8(SI), Y11
+	VBROADCASTSD 16(SI), Y12
+	VBROADCASTSD 24(SI), Y13
+	VFNMADD231PD Y8, Y10, Y0
+	VFNMADD231PD Y9, Y10, Y1
+	VFNMADD231PD Y8, Y11, Y2
+	VFNMADD231PD Y9, Y11, Y3
+	VFNMADD231PD Y8, Y12, Y4
+	VFNMADD231PD Y9, Y12, Y5
+	VFNMADD231PD Y8, Y13, Y6
+	VFNMADD231PD Y9, Y13, Y7
+	ADDQ         $64, DX
+	ADDQ         $64, SI
+	DECQ         CX
+	JNZ          column
+
+	VMOVUPD Y0, 0(DI)
+	VMOVUPD Y1, 32(DI)
+	VMOVUPD Y2, 64(DI)
+	VMOVUPD Y3, 96(DI)
+	VMOVUPD Y4, 128(DI)
+	VMOVUPD Y5, 160(DI)
+	VMOVUPD Y6, 192(DI)
+	VMOVUPD Y7, 224(DI)
+	ADDQ    $256, DI
+	ADDQ    $32, R8
+	DECQ    BX
+	JNZ     pass
+	VZEROUPPER
+	RET
