@@ -56,8 +56,11 @@ func sweepAll(fluid gas.Perfect, free FreeStream, g *Geometry, settings Settings
 }
 
 // steep reports whether the captured stream ended at a wave that leans upstream of
-// the sweep.
-func (c *core) steep() bool { return c.ending != nil && c.ending.Reason == SteepWave }
+// the sweep, and another sweep may help: in nearly sonic flow the waves of both
+// families stand across every sweep.
+func (c *core) steep() bool {
+	return c.ending != nil && c.ending.Reason == SteepWave && c.ending.State.Mach >= nearlySonic
+}
 
 func sweepIn(t frame, fluid gas.Perfect, free FreeStream, g *Geometry, settings Settings) *core {
 	c := cores.Get().(*core)

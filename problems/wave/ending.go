@@ -2,6 +2,7 @@ package wave
 
 import (
 	"fmt"
+	"math"
 
 	"rampwright/problems/contour"
 )
@@ -18,7 +19,11 @@ const (
 	// Irregular: two fronts of one family, or a front and a slip line, meet
 	// without a regular solution, or one whose fronts do not spread in order.
 	Irregular
-	// SubsonicPocket: shocks exist, but the flow behind one of them is subsonic.
+	// SubsonicPocket: shocks exist, but the flow behind one of them is subsonic; or
+	// the flow ahead is so nearly sonic, below Mach 1.1, that it cannot follow even a
+	// turning of 1.5 deg. The layer between a shock that falls inside the lip and
+	// the cowl often ends so: it has lost much total pressure in one strong shock,
+	// and must take the pressure behind the lip shock.
 	SubsonicPocket
 	// SteepWave: no direction of the sweep was found that every wave runs down: the
 	// flow is nearly sonic, or turned far from the walls.
@@ -49,11 +54,17 @@ type Ending struct {
 	// Turning is what was asked of the waves there, rad: of the wall, or the angle
 	// between two streams that meet; 0 for a spent budget.
 	Turning float64
+	// BehindLip is the distance from the lip along x over capture height.
+	BehindLip float64
 }
 
 func (e *Ending) Error() string {
-	return fmt.Sprintf("%v at %s, x %.5g m, y %.5g m, Mach %.4g, turning %.3g deg",
-		e.Reason, e.Site, e.Place.X, e.Place.Y, e.State.Mach, e.Turning*degreesPerRadian)
+	where := "behind"
+	if e.BehindLip < 0 {
+		where = "ahead of"
+	}
+	return fmt.Sprintf("%v at %s, x %.5g m, y %.5g m, %.3g capture heights %s the lip, Mach %.4g, turning %.3g deg",
+		e.Reason, e.Site, e.Place.X, e.Place.Y, math.Abs(e.BehindLip), where, e.State.Mach, e.Turning*degreesPerRadian)
 }
 
 const degreesPerRadian = 57.29577951308232 // 180/pi, exact to double precision
@@ -69,7 +80,7 @@ func (s *sweep) wallEnding(p contour.Point, w *wall, state State, turning float6
 	if hit {
 		reason = MachReflection
 	}
-	return &Ending{Reason: why.or(reason), Place: p, Site: site, State: state, Turning: turning}
+	return &Ending{Reason: why.or(reason, state.Mach), Place: p, Site: site, State: state, Turning: turning}
 }
 
 // crossingEnding is the ending of a stream whose fronts low..high cannot cross.
@@ -80,29 +91,39 @@ func (s *sweep) crossingEnding(p contour.Point, low, high int32, why unsolved) *
 		reason = MachReflection
 	}
 	return &Ending{
-		Reason: why.or(reason), Place: p, Site: crossing.String(),
+		Reason: why.or(reason, min(below.Mach, above.Mach)), Place: p, Site: crossing.String(),
 		State: below, Turning: below.FlowAngle - above.FlowAngle,
 	}
 }
 
 // spent is the ending of a stream that has used up a budget ahead of an event.
 func (s *sweep) spent(st *stream, e event, reason Reason) *Ending {
-	return &Ending{Reason: reason, Place: e.place(s, st), Site: e.site.String(), State: s.regions[st.lowest]}
+	region := st.lowest
+	switch e.site {
+	case crossing:
+		region = s.fronts[e.lower].below
+	case atTop:
+		region = st.highest
+	}
+	return &Ending{Reason: reason, Place: e.place(s, st), Site: e.site.String(), State: s.regions[region]}
 }
 
-// or is the reason behind an unsolved Riemann problem: the one given where the
-// turning is beyond attachment.
-func (u unsolved) or(reason Reason) Reason {
-	switch u {
-	case subsonic:
-		return SubsonicPocket
-	case evacuated:
+// or is the reason behind an unsolved Riemann problem in flow of a Mach number: the
+// one given where the turning is beyond attachment.
+func (u unsolved) or(reason Reason, mach float64) Reason {
+	switch {
+	case u == evacuated:
 		return Evacuated
-	case leaning:
+	case u == leaning:
 		return SteepWave
-	case tangled:
+	case u == subsonic, mach < nearlySonic:
+		return SubsonicPocket
+	case u == tangled:
 		return Irregular
-	default:
-		return reason
 	}
+	return reason
 }
+
+// nearlySonic is the Mach number below which the largest turning of an attached
+// shock is below 1.5 deg.
+const nearlySonic = 1.1

@@ -13,7 +13,8 @@ type limb struct {
 	slope    float64
 	kind     Kind
 	family   int8
-	merged   bool // carries the jump of limbs that were merged into it
+	merged   bool   // carries the jump of limbs that were merged into it
+	ledger   ledger // of a slip line
 }
 
 // fan is everything that leaves one event, bottom to top: limbs[i] lies between
@@ -24,6 +25,8 @@ type fan struct {
 	down    []State // behind each front of the wave into the lower stream, outermost first
 	up      []State // the same into the upper stream
 	dropped Dropped
+
+	downLimb, slipLimb, upLimb limb // of a crossing
 }
 
 // Dropped counts the waves and slip lines that crossings did not send out but
@@ -34,24 +37,9 @@ type Dropped struct {
 	Strength float64 // sum of the merged strengths
 }
 
-// incoming says which families already run into a crossing.
-type incoming struct{ down, slip, up bool }
-
-// slipThreshold is the threshold of a slip line over that of a wave: half a step
-// of total pressure gathers on average before it is let go.
-const slipThreshold = 2
-
-// lingering is the part of a threshold below which a family that came in is merged
-// on its way out.
-const lingering = 0.5
-
-// dominance is the most that a merged front may have of the strength of the front
-// that carries it, so that the carrier still runs nearly as it would alone.
-const dominance = 0.3
-
 // wave stores in chain the states behind the wave that takes a stream to ln(p/p0)
-// = q, and returns how its fronts look: one shock, or round(turning/wavelet)
-// wavelets of equal pressure ratio.
+// = q, and returns how its fronts look: one shock, or wavelets of
+// equal pressure ratio.
 func (s *side) wave(chain []State, q float64, family int8, wavelet float64) ([]State, limb) {
 	if q > s.log {
 		behind, waveAngle := s.shocked(q, family)
@@ -60,14 +48,26 @@ func (s *side) wave(chain []State, q float64, family int8, wavelet float64) ([]S
 			angle: s.state.FlowAngle + float64(family)*waveAngle,
 		}
 	}
-	turned, _ := s.turning(q)
-	parts := max(1, int(math.Round(-turned/wavelet)))
+	parts := s.parts(q, wavelet)
 	step := (q - s.log) / float64(parts)
 	chain = chain[:0]
 	for i := 1; i <= parts; i++ {
 		chain = append(chain, s.expanded(s.log+step*float64(i), family))
 	}
 	return chain, limb{kind: Wavelet, family: family, strength: -step}
+}
+
+// parts is the number of wavelets of an expansion to ln(p2/p0) = q: one for each
+// `wavelet` of turning, or of half the angle that the fan spreads over, whichever
+// is more. Near Mach 1 a fan spreads over several times its turning.
+func (s *side) parts(q, wavelet float64) int {
+	gain := s.gain(q - s.log)
+	turned := s.fanAngle(gain)
+	if turned < wavelet/4 {
+		return 1
+	}
+	spread := turned + math.Asin(1/s.state.Mach) - math.Asin(1/math.Sqrt(s.square+gain))
+	return max(1, int(math.Round(max(turned, spread/2)/wavelet)))
 }
 
 // offWall builds the fan that leaves a wall below (family +1) or above the stream.
@@ -104,69 +104,84 @@ func (f *fan) add(l limb, next State) {
 }
 
 // crossing builds the fan between two streams joined at q: a wave down, a slip
-// line, a wave up. What is weaker than the threshold is merged into the stronger
-// of the two waves: the streams that enter the event and the other wave stay as
-// they are, and the strong wave carries the sum of the jumps. Nothing is lost: the
-// next event of that wave solves for the whole jump again, so that small
-// reflections and entropy steps gather until they pass the threshold.
-func (f *fan) crossing(lower, upper *side, q float64, came incoming, wavelet, threshold float64) {
-	var down, up limb
-	f.down, down = lower.wave(f.down, q, -1, wavelet)
-	f.up, up = upper.wave(f.up, q, 1, wavelet)
-	under, over := &f.down[len(f.down)-1], &f.up[len(f.up)-1]
-	slip := limb{kind: Slip, angle: under.FlowAngle, strength: math.Abs(math.Log(over.TotalPressure / under.TotalPressure))}
-
+// line, a wave up. A weak wave that the slip line does not send out yet (account),
+// and a slip line below the threshold, are merged into the stronger of the two
+// waves: the streams that enter the event and the other wave stay as they are, and
+// the strong wave carries the sum of the jumps. Nothing is lost: the next event of
+// that wave solves for the whole jump again, so that entropy steps gather until
+// they pass the threshold.
+func (f *fan) crossing(lower, upper *side, q float64, came ledger, m merging) {
+	f.solve(lower, upper, q, m.wavelet)
+	down, up, slip := &f.downLimb, &f.upLimb, &f.slipLimb
 	upCarries := up.strength >= down.strength
 	carrier := max(up.strength, down.strength)
-	weak := func(l limb, limit float64, came bool) bool {
-		if came {
-			limit *= lingering
-		}
-		return l.strength < min(limit, dominance*carrier)
+	keepDown, keepUp := true, true
+	if upCarries {
+		f.down, keepDown = came.down.settle(lower, f.down, down, -1, carrier, m)
+	} else {
+		f.up, keepUp = came.up.settle(upper, f.up, up, 1, carrier, m)
 	}
-	keepSlip := !weak(slip, slipThreshold*threshold, came.slip)
-	keepDown := !upCarries || len(f.down) > 1 || !weak(down, threshold, came.down)
-	keepUp := upCarries || len(f.up) > 1 || !weak(up, threshold, came.up)
+	keepSlip := slip.strength >= min(m.threshold, dominance*carrier)
 	low, high := lower.state, upper.state // next to the slip line
 	if keepDown {
-		low = *under
+		low = f.down[len(f.down)-1]
 	}
 	if keepUp {
-		high = *over
+		high = f.up[len(f.up)-1]
 	}
 	if upCarries {
-		high, up.merged = inherit(lower.gas, high, low, keepSlip, keepDown)
-		*over = high
+		high, up.merged = inherit(lower.gas, high, low, keepSlip)
 	} else {
-		low, down.merged = inherit(lower.gas, low, high, keepSlip, keepUp)
-		*under = low
+		low, down.merged = inherit(lower.gas, low, high, keepSlip)
 	}
+	f.down[len(f.down)-1], f.up[len(f.up)-1] = low, high
+	slip.ledger = came.born(m.x)
+	f.assemble(lower, upper, keepDown, keepSlip, keepUp)
+	f.count(*slip, keepSlip)
+	f.count(*down, keepDown)
+	f.count(*up, keepUp)
+}
 
+// whole builds the fan of a crossing with nothing merged, where aim fails for one
+// with merged fronts.
+func (f *fan) whole(lower, upper *side, q float64, came ledger, m merging) {
+	f.solve(lower, upper, q, m.wavelet)
+	f.slipLimb.ledger = came.born(m.x)
+	f.assemble(lower, upper, true, true, true)
+}
+
+// assemble strings the fronts of a crossing that are kept.
+func (f *fan) assemble(lower, upper *side, keepDown, keepSlip, keepUp bool) {
 	f.limbs, f.states = f.limbs[:0], append(f.states[:0], lower.state)
 	if keepDown {
-		f.addDown(down)
+		f.addDown(f.downLimb)
 	}
 	if keepSlip {
-		slip.angle = low.FlowAngle
-		f.add(slip, high)
+		f.slipLimb.angle = f.states[len(f.states)-1].FlowAngle
+		f.add(f.slipLimb, f.up[len(f.up)-1])
 	}
 	if keepUp {
-		f.addUp(up, upper.state)
+		f.addUp(f.upLimb, upper.state)
 	}
-	f.count(slip, keepSlip)
-	f.count(down, keepDown)
-	f.count(up, keepUp)
+}
+
+// solve takes both waves and the slip line between them.
+func (f *fan) solve(lower, upper *side, q, wavelet float64) {
+	f.down, f.downLimb = lower.wave(f.down, q, -1, wavelet)
+	f.up, f.upLimb = upper.wave(f.up, q, 1, wavelet)
+	under, over := &f.down[len(f.down)-1], &f.up[len(f.up)-1]
+	f.slipLimb = limb{kind: Slip, strength: math.Abs(math.Log(over.TotalPressure / under.TotalPressure))}
 }
 
 // inherit returns the state behind the carrying wave once the jumps between it and
 // `other`, the state across the slip line, are merged into that wave: the other
 // state itself where the slip line goes, its pressure and direction where the
-// wave beyond it goes.
-func inherit(g gas.Perfect, own, other State, keepSlip, keepWave bool) (state State, merged bool) {
+// wave beyond it is not the one that was solved for.
+func inherit(g gas.Perfect, own, other State, keepSlip bool) (state State, merged bool) {
 	switch {
 	case !keepSlip:
 		return other, true
-	case !keepWave:
+	case own.Pressure != other.Pressure:
 		return own.moved(g, other.Pressure, other.FlowAngle), true
 	}
 	return own, false
@@ -188,13 +203,16 @@ func (f *fan) count(l limb, kept bool) {
 const nothing = 1e-12
 
 // aim sets the slope of every limb: a pure shock or slip line its own angle, a
-// wavelet and whatever carries a merged jump the angle that closes mass, unless
-// that strays from the wave by more than closingReach. It fails where a front would
-// lean upstream of the sweep, or two would cross at birth.
+// wavelet and whatever carries a merged jump the angle that closes mass. It fails
+// where a front would lean upstream of the sweep, where a merged jump would turn its
+// carrier by more than closingReach, or where two fronts would cross at birth.
 func (f *fan) aim(g gas.Perfect) unsolved {
 	for i := range f.limbs {
-		if !f.slope(g, i) {
+		if !(f.states[i+1].Mach >= 1) {
 			return leaning
+		}
+		if why := f.slope(g, i); why != solved {
+			return why
 		}
 		if i > 0 && f.limbs[i-1].slope > f.limbs[i].slope {
 			return tangled
@@ -203,22 +221,27 @@ func (f *fan) aim(g gas.Perfect) unsolved {
 	return solved
 }
 
-func (f *fan) slope(g gas.Perfect, i int) bool {
+func (f *fan) slope(g gas.Perfect, i int) unsolved {
 	l, below, above := &f.limbs[i], &f.states[i], &f.states[i+1]
 	angle := l.angle
 	if l.kind == Wavelet { // the Mach line halfway, the limit of a closing wavelet
 		angle = (below.FlowAngle+above.FlowAngle)/2 + float64(l.family)*math.Asin(2/(below.Mach+above.Mach))
 	}
 	if !(math.Abs(angle) < steepest) {
-		return false
+		return leaning
 	}
 	l.slope = math.Tan(angle)
-	if l.kind == Wavelet || l.merged {
-		if slope, ok := closing(g, below, above); ok && math.Abs(math.Atan(slope)-angle) < closingReach {
-			l.slope = slope
-		}
+	if l.kind != Wavelet && !l.merged {
+		return solved
 	}
-	return true
+	closed, ok := closing(g, below, above)
+	switch {
+	case ok && math.Abs(math.Atan(closed)-angle) < closingReach:
+		l.slope = closed
+	case l.merged:
+		return tangled
+	}
+	return solved
 }
 
 const (

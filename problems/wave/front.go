@@ -33,6 +33,7 @@ type front struct {
 	alive        bool
 	grounded     bool // ended on the body
 	merged       bool // carries the jump of a merged front
+	ledger       ledger
 	duct         bool // enters the duct, or ends ahead of the lip; else outside
 }
 

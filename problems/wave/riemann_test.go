@@ -164,7 +164,7 @@ func TestMergingKeepsTheStreams(t *testing.T) {
 		}
 		var f fan
 		threshold := math.Exp(rapid.Float64Range(-12, 1).Draw(t, "ln threshold"))
-		f.crossing(&lower, &upper, q, incoming{}, 2*degree, threshold)
+		f.crossing(&lower, &upper, q, blank, merging{wavelet: 2 * degree, threshold: threshold, reach: 1})
 		last := len(f.states) - 1
 		if f.states[0] != lower.state || f.states[last] != upper.state || len(f.limbs) != last || last < 1 {
 			t.Fatalf("%d fronts between %d states, from %+v to %+v", len(f.limbs), len(f.states), f.states[0], f.states[last])

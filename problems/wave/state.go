@@ -101,12 +101,14 @@ func (s *side) fanAngle(gain float64) float64 {
 	return k*math.Atan(rise*k/(square+r1*r2)) - math.Atan(rise/(1+r1*r2))
 }
 
-// sonic returns ln(p2/p0) behind the shock that leaves sonic flow (NACA Report
-// 1135 eq. 167 for M1^2 sin^2(beta)).
-func (s *side) sonic() float64 {
+// sonic returns ln(p2/p0) behind the shock that leaves sonic flow.
+func (s *side) sonic() float64 { return s.logBehind(s.sonicSquare()) }
+
+// sonicSquare is M1^2 sin^2(beta) of that shock (NACA Report 1135 eq. 167).
+func (s *side) sonicSquare() float64 {
 	gamma := s.gas.Gamma
 	root := math.Sqrt((gamma + 1) * ((gamma+1)*s.square*s.square/16 - (3-gamma)/8*s.square + (9+gamma)/16))
-	return s.logBehind(((gamma+1)/4*s.square - (3-gamma)/4 + root) / gamma)
+	return ((gamma+1)/4*s.square - (3-gamma)/4 + root) / gamma
 }
 
 // detachment returns ln(p2/p0) behind the shock of largest turning (NACA Report

@@ -116,8 +116,13 @@ func (s *sweep) cross(st *stream, p contour.Point, low, high int32) {
 		st.ending = s.crossingEnding(p, low, high, why)
 		return
 	}
-	s.fan.crossing(&lower, &upper, q, s.arriving(low, high), s.settings.Wavelet, s.threshold())
+	came, m := s.arriving(low, high), s.merging(p.X)
+	s.fan.crossing(&lower, &upper, q, came, m)
 	if why = s.fan.aim(s.gas); why != solved {
+		s.fan.whole(&lower, &upper, q, came, m)
+		why = s.fan.aim(s.gas)
+	}
+	if why != solved {
 		st.ending = s.crossingEnding(p, low, high, why)
 		return
 	}
@@ -139,17 +144,18 @@ func (s *sweep) threshold() float64 {
 // refine changes the resolution of what follows.
 func (s *sweep) refine(settings Settings) { s.settings, s.coarsest = settings, settings.Threshold }
 
-// arriving says which families fronts low..high belong to.
-func (s *sweep) arriving(low, high int32) incoming {
-	var came incoming
+// merging is the resolution of a crossing at x.
+func (s *sweep) merging(x float64) merging {
+	threshold := s.threshold()
+	return merging{wavelet: s.settings.Wavelet, threshold: threshold, reach: gathering * threshold * s.near / tie, x: x}
+}
+
+// arriving joins the ledgers of the slip lines among fronts low..high.
+func (s *sweep) arriving(low, high int32) ledger {
+	came := blank
 	for f := low; ; f = s.fronts[f].next {
-		switch s.fronts[f].family {
-		case -1:
-			came.down = true
-		case 1:
-			came.up = true
-		default:
-			came.slip = true
+		if s.fronts[f].family == 0 {
+			came = came.plus(s.fronts[f].ledger)
 		}
 		if f == high {
 			return came
@@ -214,7 +220,7 @@ func (s *sweep) place(st *stream, p contour.Point, prev, next, below, above int3
 		id := int32(len(s.fronts))
 		s.fronts = append(s.fronts, front{
 			from: p, slope: l.slope, below: below, above: over, prev: prev, next: none,
-			source: sources[l.family+1], kind: l.kind, family: l.family, alive: true, merged: l.merged, duct: !st.outside,
+			source: sources[l.family+1], kind: l.kind, family: l.family, alive: true, merged: l.merged, ledger: l.ledger, duct: !st.outside,
 		})
 		s.link(st, prev, id)
 		s.schedule(st, prev, id)

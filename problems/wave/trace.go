@@ -194,6 +194,7 @@ func (c *core) leaveFrame(t *Trace) {
 	for _, e := range []*Ending{t.Ending, t.OutsideEnding} {
 		if e != nil {
 			e.Place = c.frame.out(e.Place)
+			e.BehindLip = (e.Place.X - c.geometry.CowlInner[0].X) / c.geometry.captureHeight()
 			e.State.FlowAngle += c.frame.angle
 		}
 	}
