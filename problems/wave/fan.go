@@ -27,7 +27,11 @@ type fan struct {
 	dropped Dropped
 
 	downLimb, slipLimb, upLimb limb // of a crossing
+	keep                       kept
 }
+
+// kept says which fronts of a crossing are sent out; the others are merged.
+type kept struct{ down, slip, up bool }
 
 // Dropped counts the waves and slip lines that crossings did not send out but
 // merged into a neighbour because they were weaker than the threshold.
@@ -38,8 +42,8 @@ type Dropped struct {
 }
 
 // wave stores in chain the states behind the wave that takes a stream to ln(p/p0)
-// = q, and returns how its fronts look: one shock, or wavelets of
-// equal pressure ratio.
+// = q, and returns how its fronts look: one shock, or wavelets of equal pressure
+// ratio.
 func (s *side) wave(chain []State, q float64, family int8, wavelet float64) ([]State, limb) {
 	if q > s.log {
 		behind, waveAngle := s.shocked(q, family)
@@ -51,9 +55,10 @@ func (s *side) wave(chain []State, q float64, family int8, wavelet float64) ([]S
 	parts := s.parts(q, wavelet)
 	step := (q - s.log) / float64(parts)
 	chain = chain[:0]
-	for i := 1; i <= parts; i++ {
+	for i := 1; i < parts; i++ {
 		chain = append(chain, s.expanded(s.log+step*float64(i), family))
 	}
+	chain = append(chain, s.expanded(q, family)) // to the last bit, see inherit
 	return chain, limb{kind: Wavelet, family: family, strength: -step}
 }
 
@@ -115,57 +120,54 @@ func (f *fan) crossing(lower, upper *side, q float64, came ledger, m merging) {
 	down, up, slip := &f.downLimb, &f.upLimb, &f.slipLimb
 	upCarries := up.strength >= down.strength
 	carrier := max(up.strength, down.strength)
-	keepDown, keepUp := true, true
+	f.keep = kept{down: true, slip: slip.strength >= min(m.threshold, dominance*carrier), up: true}
 	if upCarries {
-		f.down, keepDown = came.down.settle(lower, f.down, down, -1, carrier, m)
+		f.down, f.keep.down = came.down.settle(lower, f.down, down, -1, carrier, m)
 	} else {
-		f.up, keepUp = came.up.settle(upper, f.up, up, 1, carrier, m)
+		f.up, f.keep.up = came.up.settle(upper, f.up, up, 1, carrier, m)
 	}
-	keepSlip := slip.strength >= min(m.threshold, dominance*carrier)
 	low, high := lower.state, upper.state // next to the slip line
-	if keepDown {
+	if f.keep.down {
 		low = f.down[len(f.down)-1]
 	}
-	if keepUp {
+	if f.keep.up {
 		high = f.up[len(f.up)-1]
 	}
 	if upCarries {
-		high, up.merged = inherit(lower.gas, high, low, keepSlip)
+		high, up.merged = inherit(lower.gas, high, low, f.keep.slip)
 	} else {
-		low, down.merged = inherit(lower.gas, low, high, keepSlip)
+		low, down.merged = inherit(lower.gas, low, high, f.keep.slip)
 	}
 	f.down[len(f.down)-1], f.up[len(f.up)-1] = low, high
 	slip.ledger = came.born(m.x)
-	f.assemble(lower, upper, keepDown, keepSlip, keepUp)
-	f.count(*slip, keepSlip)
-	f.count(*down, keepDown)
-	f.count(*up, keepUp)
+	f.assemble(lower, upper)
 }
 
 // whole builds the fan of a crossing with nothing merged, where aim fails for one
 // with merged fronts.
 func (f *fan) whole(lower, upper *side, q float64, came ledger, m merging) {
 	f.solve(lower, upper, q, m.wavelet)
+	f.keep = kept{true, true, true}
 	f.slipLimb.ledger = came.born(m.x)
-	f.assemble(lower, upper, true, true, true)
+	f.assemble(lower, upper)
 }
 
 // assemble strings the fronts of a crossing that are kept.
-func (f *fan) assemble(lower, upper *side, keepDown, keepSlip, keepUp bool) {
+func (f *fan) assemble(lower, upper *side) {
 	f.limbs, f.states = f.limbs[:0], append(f.states[:0], lower.state)
-	if keepDown {
+	if f.keep.down {
 		f.addDown(f.downLimb)
 	}
-	if keepSlip {
+	if f.keep.slip {
 		f.slipLimb.angle = f.states[len(f.states)-1].FlowAngle
 		f.add(f.slipLimb, f.up[len(f.up)-1])
 	}
-	if keepUp {
+	if f.keep.up {
 		f.addUp(f.upLimb, upper.state)
 	}
 }
 
-// solve takes both waves and the slip line between them.
+// solve finds both waves and the slip line between them.
 func (f *fan) solve(lower, upper *side, q, wavelet float64) {
 	f.down, f.downLimb = lower.wave(f.down, q, -1, wavelet)
 	f.up, f.upLimb = upper.wave(f.up, q, 1, wavelet)
@@ -187,16 +189,23 @@ func inherit(g gas.Perfect, own, other State, keepSlip bool) (state State, merge
 	return own, false
 }
 
-func (f *fan) count(l limb, kept bool) {
+// count enters what a crossing merged.
+func (f *fan) count() {
+	f.dropped.count(f.downLimb, f.keep.down)
+	f.dropped.count(f.slipLimb, f.keep.slip)
+	f.dropped.count(f.upLimb, f.keep.up)
+}
+
+func (d *Dropped) count(l limb, kept bool) {
 	switch {
 	case kept || l.strength < nothing:
 		return
 	case l.kind == Slip:
-		f.dropped.Slips++
+		d.Slips++
 	default:
-		f.dropped.Waves++
+		d.Waves++
 	}
-	f.dropped.Strength += l.strength
+	d.Strength += l.strength
 }
 
 // nothing is the strength of a wave that is only rounding.

@@ -126,6 +126,7 @@ func (s *sweep) cross(st *stream, p contour.Point, low, high int32) {
 		st.ending = s.crossingEnding(p, low, high, why)
 		return
 	}
+	s.fan.count()
 	sources := [3]int16{s.sourceOf(low, high, -1), 0, s.sourceOf(low, high, 1)}
 	prev, next := s.fronts[low].prev, s.fronts[high].next
 	s.end(st, p, low, high)
