@@ -11,7 +11,9 @@ import "math"
 //
 // The error of a trace falls with the threshold and with the square of the
 // wavelet, so that the change is about three times the error; the largest relative
-// change of a station counts for all its averages.
+// change of a station counts for all its averages. It is an estimate, no proof: of
+// 966 stations of 600 random inlets one, at Mach 1.57, differed by more from the fine
+// trace: there wavelets of 1 and of 2 deg agreed by chance.
 type Error struct {
 	Capture  float64
 	Spillage float64
