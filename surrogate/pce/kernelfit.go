@@ -95,7 +95,7 @@ type kernelFit struct {
 	inverse  []float64 // 1/(D + lambda)
 	ofY      []float64 // inverse * U'(y - b0)
 	ofOnes   []float64 // inverse * U'1
-	tail     float64   // mean prior variance of the total degrees beyond the level
+	tail     float64   // mean prior variance of the degrees beyond the level; 0 with fewer terms than samples
 }
 
 // fit finds the penalty of least leave-one-out error for a level and growth
@@ -231,7 +231,9 @@ func (f *kernelFit) finish(b *basis, x [][]float64, y []float64) *kernelFit {
 		f.coefficients[t] *= f.weights[t]
 	}
 	f.coefficients[0], f.weights[0] = f.constant, 0
-	f.tail = tail(len(b.inputs), f.level, f.growth)
+	if p >= n { // else the misfit shows what the degrees left out do, in lambda
+		f.tail = tail(len(b.inputs), f.level, f.growth)
+	}
 	likely := 0.0
 	for k, w := range f.ofY {
 		likely += w * (f.y[k] - f.constant*f.ones[k]) / float64(n-1)
