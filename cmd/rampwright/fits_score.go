@@ -111,10 +111,11 @@ func (r *fitsRun) judge(choice crossval.Choice, err error, quantity int, seconds
 	score.RMSE, score.Q2 = surrogate.RMSE(exact, predicted), surrogate.Q2(exact, predicted)
 	score.Median, score.P10, score.P90 = report.Quantile(errors, 0.5), report.Quantile(errors, 0.1), report.Quantile(errors, 0.9)
 	score.Max = report.Quantile(errors, 1)
-	for i := range min(len(points), intervalPoints) {
-		mean, deviation := choice.Predict(points[i])
-		score.Judged++
-		if math.Abs(mean-exact[i]) <= normal95*deviation {
+	score.Judged = min(len(points), intervalPoints)
+	mean, deviation := make([]float64, score.Judged), make([]float64, score.Judged)
+	choice.PredictMany(points[:score.Judged], mean, deviation, 1)
+	for i, s := range deviation {
+		if math.Abs(mean[i]-exact[i]) <= normal95*s {
 			score.Inside++
 		}
 	}

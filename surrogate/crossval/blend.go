@@ -16,53 +16,40 @@ const (
 	// farBehind is the error relative to the least one beyond which a fit has no
 	// part in the mean, and steepness the power with which the weight falls.
 	farBehind = 2
-	steepness = 7
+	steepness = 8
 )
 
-// weigh returns the weights of the fits in the weighted mean that stands for the
-// choice: nothing but the best fit where it explains the data, else every fit
-// whose error is within twice the least,
-//
-//	w_k = e_k^-7 / sum e^-7
-//
-// with the error e of sizeOfError. Our rule: measured on published test
-// functions with 20 to 80 samples, the mean comes closer to the kind that fresh
-// points show to be best than the fit of least error does.
-func (s Settings) weigh(figures []Figure, fits []surrogate.Fitted, best int, y []float64) {
-	scaling, _, constant := surrogate.Standardise(y)
-	if s.Alone || constant || figures[best].RMSE <= unexplained*scaling.Scale {
-		figures[best].Weight = 1
-		return
-	}
-	errors, least := make([]float64, len(fits)), math.Inf(1)
-	for i, fit := range fits {
-		if fit != nil {
-			errors[i] = sizeOfError(y, fit.LeaveOneOut())
-			if errors[i] < least {
-				least = errors[i]
-			}
-		}
-	}
-	sum := 0.0
-	for i, fit := range fits {
-		if fit != nil && (errors[i] <= farBehind*least || i == best) {
-			figures[i].Weight = math.Pow(least/errors[i], steepness)
-			sum += figures[i].Weight
-		}
-	}
-	for i := range figures {
-		figures[i].Weight /= sum
-	}
+// explains reports whether a fit explains the data, so that it needs no others.
+func (t *trial) explains(i int) bool {
+	scaling, _, constant := surrogate.Standardise(t.y)
+	return constant || t.figures[i].RMSE <= unexplained*scaling.Scale
 }
 
-// sizeOfError returns (mean sqrt|y - predicted|)^2: few large errors, which
-// decide the root mean square, hardly count.
-func sizeOfError(y, predicted []float64) float64 {
-	sum := 0.0
-	for i, v := range y {
-		sum += math.Sqrt(math.Abs(v - predicted[i]))
+// weigh gives the fits their weights in the weighted mean that stands for the
+// choice: to every fit whose error is within twice the least, and to the best,
+//
+//	w_k = e_k^-8 / sum e^-8
+//
+// with e the error to be expected at fresh points. Our rule: measured on
+// published test functions with 20 to 80 samples, the mean comes closer to the
+// kind that fresh points show to be best than the fit of least error does.
+func (t *trial) weigh(best int) {
+	least := math.Inf(1)
+	for i, fit := range t.fits {
+		if fit != nil {
+			least = math.Min(least, t.figures[i].Fresh)
+		}
 	}
-	return (sum / float64(len(y))) * (sum / float64(len(y)))
+	sum := 0.0
+	for i, fit := range t.fits {
+		if f := &t.figures[i]; fit != nil && (f.Fresh <= farBehind*least || i == best) {
+			f.Weight = math.Pow(least/f.Fresh, steepness)
+			sum += f.Weight
+		}
+	}
+	for i := range t.figures {
+		t.figures[i].Weight /= sum
+	}
 }
 
 // blend is a weighted mean of fits,

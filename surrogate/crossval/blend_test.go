@@ -81,15 +81,8 @@ func TestWeightedMean(t *testing.T) {
 // 95 % intervals cover fresh points.
 func TestWeightedMeanBeatsTheLeastError(t *testing.T) {
 	for name, f := range map[string]func([]float64) float64{
-		"front": front,
-		// Bratley, Fox & Niederreiter 1992 (from memory)
-		"product of i cos(i x)": func(u []float64) float64 {
-			product := 1.0
-			for i, v := range u {
-				product *= float64(i+1) * math.Cos(float64(i+1)*v)
-			}
-			return product
-		},
+		"front":              front,
+		"product of cosines": productOfCosines,
 	} {
 		together, alone := 0.0, 0.0
 		covered, points := 0, 0

@@ -37,6 +37,7 @@ type Figure struct {
 	Description string
 	Q2          float64
 	RMSE        float64 // of leave-one-out, in the output's unit
+	Fresh       float64 // RMSE to be expected at fresh points, see freshError
 	Coverage    float64 // of 95 % intervals
 	Candidate   int     // place in Settings.Candidates
 	Chosen      bool
@@ -44,13 +45,13 @@ type Figure struct {
 	Err         error   // why there is no fit; the figures are then NaN
 }
 
-// Choice is the fit with the least leave-one-out error, or a weighted mean of
-// good ones led by it, and the figures of all.
+// Choice is the fit of least error, or a weighted mean of good ones led by it,
+// and the figures of all.
 type Choice struct {
 	surrogate.Fitted
 	Kind      string // of the leading fit
 	Transform Transform
-	Widening  float64 // factor on the deviations, see widening and blendWidening
+	Widening  float64 // factor on the deviations: disagreement and small samples
 	Quality   surrogate.Quality
 	Figures   []Figure
 }
@@ -70,11 +71,17 @@ const (
 // Choose fits every candidate on every valid transform and returns the one with
 // the least root mean square leave-one-out error, in the output's unit; among
 // those within Tie of it, the simplest: least complexity, then the earliest
-// transform. Where even that leaves more than 3 % of the spread of the data
-// unexplained, it leads a weighted mean of all fits of similar error (see
-// Settings.Alone). Transforms whose domain the outputs leave are left out. A candidate
-// that cannot be fitted keeps its error in the table; when none can, the first
-// error is returned.
+// transform.
+//
+// Where even that leaves more than 3 % of the spread of the data unexplained, the
+// error to be expected at fresh points decides instead, and its best fit leads a
+// weighted mean of all fits of similar error (see Settings.Alone); or stands back
+// for the simplest fit, where it does not clearly beat the mean of the data.
+//
+// Deviations are widened by what small samples leave open and by the disagreement
+// of fits that explain the samples about as well. Transforms whose domain the
+// outputs leave are left out. A candidate that cannot be fitted keeps its error in
+// the table; when none can, the first error is returned.
 func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
 	if err := surrogate.Check(x, y, 1); err != nil {
 		return Choice{}, err
@@ -82,26 +89,22 @@ func (s Settings) Choose(ctx context.Context, x [][]float64, y []float64) (Choic
 	if len(s.Candidates) == 0 {
 		return Choice{}, errors.New("no candidate surrogate kinds")
 	}
-	figures, fits := s.fitAll(ctx, x, y)
-	if len(figures) == 0 {
+	t := s.try(ctx, x, y)
+	if len(t.figures) == 0 {
 		return Choice{}, s.transforms()[0].Valid(y)
 	}
 	if err := ctx.Err(); err != nil {
 		return Choice{}, err
 	}
-	best := s.pick(figures, fits, y)
+	best := t.decide()
 	if best < 0 {
-		return Choice{}, figures[0].Err
+		return Choice{}, t.figures[0].Err
 	}
-	figures[best].Chosen = true
-	s.weigh(figures, fits, best, y)
-	c := Choice{Kind: figures[best].Kind, Transform: figures[best].Transform, Figures: figures}
-	if figures[best].Weight == 1 {
-		c.Widening = widening(figures, best)
-	} else {
-		c.Widening = blendWidening(len(x), len(x[0]))
-	}
-	return c.with(c.combine(fits), y), nil
+	t.figures[best].Chosen = true
+	c := Choice{Kind: t.figures[best].Kind, Transform: t.figures[best].Transform, Figures: t.figures}
+	fitted := c.combine(t.fits)
+	c.Widening = t.widening(look(fitted, t.points))
+	return c.with(fitted, y), nil
 }
 
 // combine returns the only fit with a weight, or the weighted mean of several.
@@ -131,28 +134,45 @@ func (c Choice) PredictMany(points [][]float64, mean, deviation []float64, jobs 
 	surrogate.PredictMany(c.Fitted, points, mean, deviation, jobs)
 }
 
-// fitAll fills one line and one fit for each candidate and valid transform.
-func (s Settings) fitAll(ctx context.Context, x [][]float64, y []float64) ([]Figure, []surrogate.Fitted) {
-	var figures []Figure
+// trial is a choice under way.
+type trial struct {
+	Settings
+	x        [][]float64
+	y        []float64
+	points   [][]float64        // the probes
+	figures  []Figure           // one line for each candidate and valid transform
+	fits     []surrogate.Fitted // line by line, nil where there is none
+	outlooks []outlook
+	exact    float64 // leave-one-out error up to which fits count as exact
+}
+
+// try makes every fit.
+func (s Settings) try(ctx context.Context, x [][]float64, y []float64) *trial {
+	t := &trial{Settings: s, x: x, y: y, points: probesAmong(x)}
+	scaling, _, constant := surrogate.Standardise(y)
+	t.exact = exactTie * scaling.Scale
+	if constant {
+		t.exact = exactTie * math.Abs(scaling.Center)
+	}
 	for c, model := range s.Candidates {
-		for _, t := range s.transforms() {
-			if t == Identity || t.Valid(y) == nil {
-				figures = append(figures, Figure{Kind: model.Kind(), Transform: t, Candidate: c})
+		for _, transform := range s.transforms() {
+			if transform == Identity || transform.Valid(y) == nil {
+				t.figures = append(t.figures, Figure{Kind: model.Kind(), Transform: transform, Candidate: c})
 			}
 		}
 	}
-	fits := make([]surrogate.Fitted, len(figures))
-	jobs := min(max(s.Jobs, 1), len(figures))
+	t.fits, t.outlooks = make([]surrogate.Fitted, len(t.figures)), make([]outlook, len(t.figures))
+	jobs := min(max(s.Jobs, 1), len(t.figures))
 	var group sync.WaitGroup
 	for job := range jobs {
 		group.Go(func() {
-			for i := job; i < len(figures); i += jobs {
-				fits[i] = figures[i].fit(ctx, s.Candidates[figures[i].Candidate], x, y)
+			for i := job; i < len(t.figures); i += jobs {
+				t.fit(ctx, i)
 			}
 		})
 	}
 	group.Wait()
-	return figures, fits
+	return t
 }
 
 func (s Settings) transforms() []Transform {
@@ -162,15 +182,17 @@ func (s Settings) transforms() []Transform {
 	return s.Transforms
 }
 
-// fit fits the model and fills the line.
-func (f *Figure) fit(ctx context.Context, model surrogate.Model, x [][]float64, y []float64) surrogate.Fitted {
-	fitted, err := Transformed{model, f.Transform}.Fit(ctx, x, y)
+// fit makes the fit of a line and fills the line.
+func (t *trial) fit(ctx context.Context, i int) {
+	f := &t.figures[i]
+	fitted, err := Transformed{t.Candidates[f.Candidate], f.Transform}.Fit(ctx, t.x, t.y)
 	if err != nil {
-		f.Err, f.Q2, f.RMSE, f.Coverage = err, math.NaN(), math.NaN(), math.NaN()
-		return nil
+		f.Err, f.Q2, f.RMSE, f.Fresh, f.Coverage = err, math.NaN(), math.NaN(), math.NaN(), math.NaN()
+		return
 	}
-	f.report(fitted, y)
-	return fitted
+	f.report(fitted, t.y)
+	t.fits[i], t.outlooks[i] = fitted, look(fitted, t.points)
+	f.Fresh = freshError(f.RMSE, fitted, t.outlooks[i])
 }
 
 // report fills the figures of a fit.
@@ -179,29 +201,49 @@ func (f *Figure) report(fitted surrogate.Fitted, y []float64) {
 	f.Description, f.Q2, f.RMSE, f.Coverage = fitted.Describe(), quality.Q2, quality.RMSE, quality.Coverage
 }
 
-// pick returns the place of the best fit, or -1.
-func (s Settings) pick(figures []Figure, fits []surrogate.Fitted, y []float64) int {
+// decide gives every fit its weight and returns the place of the leading one, -1
+// where there is no fit.
+func (t *trial) decide() int {
+	best := t.pick(func(f *Figure) float64 { return f.RMSE })
+	if best >= 0 && !t.Alone && !t.explains(best) {
+		best = t.pick(func(f *Figure) float64 { return f.Fresh })
+		if beatsTheMean(t.y, t.fits[best]) {
+			t.weigh(best)
+			return best
+		}
+		best = t.simplest(func(*Figure) bool { return true })
+	}
+	if best >= 0 {
+		t.figures[best].Weight = 1
+	}
+	return best
+}
+
+// pick returns the place of the simplest fit whose error is within the tie of the
+// least, or -1.
+func (t *trial) pick(size func(*Figure) float64) int {
 	least := math.Inf(1)
-	for i := range figures {
-		if fits[i] != nil {
-			least = math.Min(least, figures[i].RMSE)
+	for i := range t.figures {
+		if t.fits[i] != nil {
+			least = math.Min(least, size(&t.figures[i]))
 		}
 	}
-	tie := s.Tie
+	tie := t.Tie
 	if tie == 0 {
 		tie = defaultTie
 	}
-	scaling, _, constant := surrogate.Standardise(y)
-	limit := math.Max(least*(1+tie), exactTie*scaling.Scale)
-	if constant {
-		limit = math.Max(least*(1+tie), exactTie*math.Abs(scaling.Center))
-	}
+	limit := math.Max(least*(1+tie), t.exact)
+	return t.simplest(func(f *Figure) bool { return size(f) <= limit })
+}
+
+// simplest returns the place of the simplest fit among those eligible, or -1.
+func (t *trial) simplest(eligible func(*Figure) bool) int {
 	best := -1
-	for i := range figures {
-		if fits[i] == nil || !(figures[i].RMSE <= limit) {
+	for i := range t.figures {
+		if t.fits[i] == nil || !eligible(&t.figures[i]) {
 			continue
 		}
-		if best < 0 || simpler(figures[i], fits[i], figures[best], fits[best]) {
+		if best < 0 || simpler(t.figures[i], t.fits[i], t.figures[best], t.fits[best]) {
 			best = i
 		}
 	}
