@@ -22,8 +22,9 @@ type Settings struct {
 	// Tie is the relative excess of error up to which a simpler fit is
 	// preferred; 0 means 0.01.
 	Tie float64
-	// Alone keeps the best fit by itself where none explains the data, instead of
-	// a weighted mean of the good ones.
+	// Alone keeps the fit of least leave-one-out error by itself where none
+	// explains the data, instead of a weighted mean of the good ones or the
+	// simplest.
 	Alone bool
 	// Jobs is the number of fits run side by side; 0 means 1. The result does
 	// not depend on it.
@@ -259,9 +260,9 @@ func simpler(f Figure, fit surrogate.Fitted, g Figure, other surrogate.Fitted) b
 
 // Refit fits the chosen kind on the chosen transform again, or all members of a
 // weighted mean, starting from what they found: cheap, for a few samples more.
-// Weights and the figures of the other kinds are those of the choice. It returns
-// *TransformError when a new output leaves the domain of the transform: choose
-// again then.
+// Weights, errors expected at fresh points, the widening and the figures of the
+// other kinds are those of the choice. It returns *TransformError when a new
+// output leaves the domain of the transform: choose again then.
 func (c Choice) Refit(ctx context.Context, x [][]float64, y []float64) (Choice, error) {
 	fitted, err := c.Fitted.Warm().Fit(ctx, x, y)
 	if err != nil {

@@ -279,7 +279,8 @@ const tailDegrees = 1000
 //	s2 (lambda + tail + k(x,x) - k'A^-1 k + (1 - 1'A^-1 k)^2/(1'A^-1 1))
 //
 // (universal kriging), k = X W^-2 psi(x), tail the prior variance of the degrees
-// left out.
+// left out. With fewer terms than samples tail is 0: s2 lambda is then the misfit,
+// which those degrees have made.
 func (f *kernelFit) deviation(s *scratch) float64 {
 	n, p := len(f.values), len(f.weights)
 	space := s.room(p + 2*n)
