@@ -62,8 +62,9 @@ func (c *Candidate) verify(ctx context.Context, problem problems.Problem) error 
 	return nil
 }
 
-// routeGap is the largest difference between two evaluations, relative to values
-// above 1.
+// routeGap is the largest difference between two evaluations beyond the bounds of
+// the second, relative to values above 1. A value without a finite bound agrees
+// with nothing.
 func routeGap(a, b *problems.Evaluation) float64 {
 	gap := 0.0
 	for i, v := range a.Values {
@@ -72,7 +73,11 @@ func routeGap(a, b *problems.Evaluation) float64 {
 			return math.Inf(1)
 		}
 		if !math.IsNaN(v) {
-			gap = math.Max(gap, math.Abs(v-w)/math.Max(1, math.Abs(v)))
+			beyond := math.Max(0, math.Abs(v-w)-b.Bound(i))
+			if math.IsInf(b.Bound(i), 1) {
+				beyond = math.Inf(1)
+			}
+			gap = math.Max(gap, beyond/math.Max(1, math.Abs(v)))
 		}
 	}
 	return gap

@@ -39,6 +39,10 @@ type Quantity struct {
 type Evaluation struct {
 	Values  []float64
 	Reasons []error
+	// Bounds is filled by a Verifier where both routes are numerical: how far value
+	// i may lie from that of Evaluate by the error bounds of both, beyond rounding.
+	// It is nil where every value is exact.
+	Bounds []float64
 }
 
 // NewEvaluation returns a buffer for n quantities, every value missing.
@@ -54,6 +58,7 @@ func (e *Evaluation) Clear() {
 		e.Values[i] = math.NaN()
 		e.Reasons[i] = nil
 	}
+	e.Bounds = nil
 }
 
 // Set stores a present value.
@@ -62,11 +67,28 @@ func (e *Evaluation) Set(i int, value float64) { e.Values[i], e.Reasons[i] = val
 // Miss marks value i as missing for the reason given.
 func (e *Evaluation) Miss(i int, reason error) { e.Values[i], e.Reasons[i] = math.NaN(), reason }
 
+// Widen adds to the bound of value i.
+func (e *Evaluation) Widen(i int, by float64) {
+	if e.Bounds == nil {
+		e.Bounds = make([]float64, len(e.Values))
+	}
+	e.Bounds[i] += by
+}
+
+// Bound returns the bound of value i, 0 where it is exact.
+func (e *Evaluation) Bound(i int) float64 {
+	if e.Bounds == nil {
+		return 0
+	}
+	return e.Bounds[i]
+}
+
 // Clone returns an independent copy.
 func (e *Evaluation) Clone() *Evaluation {
 	return &Evaluation{
 		Values:  append([]float64(nil), e.Values...),
 		Reasons: append([]error(nil), e.Reasons...),
+		Bounds:  append([]float64(nil), e.Bounds...),
 	}
 }
 
@@ -97,7 +119,8 @@ type Linear interface {
 }
 
 // Verifier is implemented by a problem that can be computed by a second exact
-// route which shares nothing with Evaluate but constants and definitions.
+// route which shares nothing with Evaluate but constants and definitions. Both must
+// agree to rounding and, where dst carries Bounds, to those.
 type Verifier interface {
 	Verify(ctx context.Context, x []float64, dst *Evaluation) error
 }

@@ -7,6 +7,7 @@ import (
 	"rampwright/problems/contour"
 	"rampwright/problems/ramp"
 	"rampwright/problems/shock"
+	"rampwright/problems/wave"
 )
 
 // placeTolerance is how far, in capture heights, a shock or streamline may miss
@@ -39,7 +40,9 @@ type analysis struct {
 	lipMach    float64
 	reflection float64 // largest turning of regular reflection
 	lipErr     error   // no flow known at the lip
+	lipTurning float64 // of the flow at the lip
 	lip        shock.Oblique
+	lipRise    float64 // p2/p1 at the lip
 	miss       float64
 	throatErr  error // no flow known behind the lip shock
 
@@ -53,9 +56,27 @@ type analysis struct {
 	cowlMargin float64
 	cowlDrag   float64
 	cowlErr    error
+
+	trace *wave.Trace // what stands above was read off it; nil where the chain holds
+	view  view
 }
 
+// fly is run, and a trace by the settings given where the chain of straight
+// shocks has no answer.
+func (a *analysis) fly(settings wave.Settings) {
+	a.run()
+	if a.beyondChain() {
+		a.follow(settings)
+	}
+}
+
+// run is the chain of straight shocks.
 func (a *analysis) run() {
+	a.trace = nil
+	if a.def.Outline != nil {
+		a.unknown()
+		return
+	}
 	a.marchRamps()
 	a.placeLip()
 	a.meetLip()
@@ -189,7 +210,7 @@ func (a *analysis) bodyWave(place contour.Point, i int) contour.Line {
 
 // meetLip is the state ahead of the lip and what it allows.
 func (a *analysis) meetLip() {
-	a.lipErr = a.rampErr
+	a.lipErr, a.lipTurning = a.rampErr, a.design.LipTurning
 	if a.lipErr == nil && a.shape.err == nil {
 		a.lipErr = a.placeErr
 	}
@@ -216,7 +237,7 @@ func (a *analysis) crossLipShock() {
 		a.throatErr = detached("lip shock", a.lipMach, err)
 		return
 	}
-	a.lip = wave
+	a.lip, a.lipRise = wave, wave.Jump.Pressure
 	if a.shape.err == nil && a.design.LipTurning > 0 {
 		a.miss = contour.Distance(a.shape.Shoulder, a.lipFoot()) / a.shape.height
 	}

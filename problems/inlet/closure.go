@@ -1,6 +1,7 @@
 package inlet
 
 import (
+	"fmt"
 	"math"
 
 	"rampwright/problems"
@@ -95,7 +96,7 @@ func (c *closure) placeShoulder(r route, g gas.Perfect, machAhead float64) error
 
 // lastRamp is the line of ramp n.
 func (c *closure) lastRamp() contour.Line {
-	n := c.Ramps
+	n := len(c.Corners)
 	return contour.Line{Through: c.Corners[n-1], Angle: c.Angles[n-1]}
 }
 
@@ -154,7 +155,12 @@ func detached(name string, mach float64, err error) error {
 }
 
 // rampName names ramp i (from 0) as stations and members do.
-func rampName(i int) string { return rampNames[i] }
+func rampName(i int) string {
+	if i >= len(rampNames) {
+		return fmt.Sprintf("ramp %d", i+1)
+	}
+	return rampNames[i]
+}
 
 var rampNames = [ramp.MaxRamps]string{
 	"ramp 1", "ramp 2", "ramp 3", "ramp 4", "ramp 5", "ramp 6", "ramp 7", "ramp 8",

@@ -48,5 +48,17 @@ type Definition struct {
 	LipSetback    Setting  // fraction of capture height
 	TerminalShock bool     // a normal shock stands in the throat
 	DuctFactor    float64  // total-pressure factor behind the last shock
-	Points        []Point
+	// Outline, where it is given, is an existing inlet: there are no ramp angles,
+	// cowl angle or lip turning then, and CaptureHeight is that of its lip.
+	Outline *Outline
+	Points  []Point
+}
+
+// ramps is the number of ramps, of a given outline that of its straight stretches
+// ahead of the shoulder.
+func (d *Definition) ramps() int {
+	if d.Outline != nil {
+		return d.Outline.ramps()
+	}
+	return len(d.RampAngle)
 }

@@ -24,6 +24,8 @@ type Design struct {
 	Wedge      float64 // outer minus inner cowl angle
 	ShockOnLip float64 // Mach number
 	Setback    float64 // fraction of capture height
+	// Given is phi_n of a given outline, which has no ramp settings.
+	Given float64
 }
 
 // Outer returns the angle of the outer cowl surface, rad.
@@ -31,7 +33,7 @@ func (d *Design) Outer() float64 { return d.Cowl + d.Wedge }
 
 // TotalTurning returns phi_n, the sum of the ramp turnings, rad.
 func (d *Design) TotalTurning() float64 {
-	sum := 0.0
+	sum := d.Given
 	for _, theta := range d.Turning[:d.Ramps] {
 		sum += theta
 	}
@@ -88,6 +90,9 @@ func (d *Definition) resolve(x []float64) Design {
 		}
 		next++
 		return x[next-1]
+	}
+	if d.Outline != nil {
+		return Design{} // see closure.take
 	}
 	design := Design{Ramps: len(d.RampAngle)}
 	total := 0.0

@@ -45,7 +45,17 @@ func (a *analysis) terminalMachNumber() (float64, error) {
 	return a.terminalMach, a.throatErr
 }
 
+func (a *analysis) lipMachNumber() (float64, error) {
+	if a.trace != nil {
+		return a.lipMach, a.lipErr
+	}
+	return a.lipMach, a.rampErr
+}
+
 func (a *analysis) rampMargin(i int) (float64, error) {
+	if a.trace != nil {
+		return a.view.corners[i].margin / radian, a.view.corners[i].err
+	}
 	if i >= a.margins {
 		return 0, a.rampErr
 	}
@@ -56,12 +66,15 @@ func (a *analysis) lipMargin() (float64, error) {
 	if a.lipErr != nil {
 		return 0, a.lipErr
 	}
-	return (a.route.largestTurning(a.def.Gas, a.lipMach) - a.design.LipTurning) / radian, nil
+	return (a.route.largestTurning(a.def.Gas, a.lipMach) - a.lipTurning) / radian, nil
 }
 
 // separationMargin is 1 - (p2/p1)/limit at the corner of ramp i+2, or at the lip
 // shock for the last member.
 func (a *analysis) separationMargin(i int) (float64, error) {
+	if a.trace != nil {
+		return a.tracedSeparation(i)
+	}
 	if i+1 < a.design.Ramps {
 		if i+1 >= a.attached {
 			return 0, a.rampErr
@@ -72,11 +85,13 @@ func (a *analysis) separationMargin(i int) (float64, error) {
 	if a.throatErr != nil && a.throatErr != error(errSonic) {
 		return 0, a.throatErr
 	}
-	return 1 - a.lip.Jump.Pressure/SeparationPressureRatio(a.lipMach), nil
+	return 1 - a.lipRise/SeparationPressureRatio(a.lipMach), nil
 }
 
 func (a *analysis) lipClearance(i int) (float64, error) {
 	switch {
+	case a.trace != nil:
+		return a.tracedClearance(i)
 	case a.rampErr != nil:
 		return 0, a.rampErr
 	case a.shape.err != nil:
@@ -87,6 +102,8 @@ func (a *analysis) lipClearance(i int) (float64, error) {
 
 func (a *analysis) lipShockMiss() (float64, error) {
 	switch {
+	case a.trace != nil:
+		return a.tracedMiss()
 	case a.throatErr != nil:
 		return 0, a.throatErr
 	case a.shape.err != nil:

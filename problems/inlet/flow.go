@@ -6,6 +6,7 @@ import (
 
 	"rampwright/problems"
 	"rampwright/problems/contour"
+	"rampwright/problems/wave"
 )
 
 // Station is the state behind one wave. Ratios are to the free stream; numbers of
@@ -31,13 +32,22 @@ type Segment struct {
 	From, To contour.Point
 }
 
-// PointFlow is the exact flow at one flight point.
+// PointFlow is the flow of a frozen inlet at one condition.
 type PointFlow struct {
 	Point      Point
 	Err        error // why the stream is not attached from free stream to throat; nil if it is
 	Stations   []Station
 	Shocks     []Segment
 	Streamline []contour.Point // of the lip, from ahead of the first shock to the lip; empty where unknown
+	// Traced says that the chain of straight shocks has no answer here and that the
+	// quantities of the captured stream are those of Trace.
+	Traced bool
+	// Trace is every wave through the contour: of a traced point, and in Flow beside
+	// the chain where its lip shock misses the shoulder; else nil.
+	Trace *wave.Trace
+	// Quantities and Evaluation hold the catalogue at this point, in one order.
+	Quantities []problems.Quantity
+	Evaluation *problems.Evaluation
 }
 
 // Status is the word of results: "attached" or the reason.
@@ -46,6 +56,35 @@ func (f *PointFlow) Status() string {
 		return "attached"
 	}
 	return f.Err.Error()
+}
+
+// Value returns a quantity of the point by its name, of a group the least member
+// that has a value; NaN with the reason where it is missing.
+func (f *PointFlow) Value(name string) (value float64, reason error) {
+	value, reason = math.NaN(), &problems.NotApplicable{Why: "no such quantity"}
+	for i := range f.Quantities {
+		if f.Quantities[i].Name != name {
+			continue
+		}
+		v, err := f.Evaluation.Values[i], f.Evaluation.Reasons[i]
+		switch {
+		case err == nil && !(value <= v):
+			value, reason = v, nil
+		case math.IsNaN(value):
+			reason = err
+		}
+	}
+	return value, reason
+}
+
+// Member returns the value of one member of a group; see Value.
+func (f *PointFlow) Member(name, member string) (value float64, reason error) {
+	for i := range f.Quantities {
+		if q := &f.Quantities[i]; q.Name == name && q.Member == member {
+			return f.Evaluation.Values[i], f.Evaluation.Reasons[i]
+		}
+	}
+	return math.NaN(), &problems.NotApplicable{Why: "no such quantity"}
 }
 
 // Flow is one frozen inlet at every flight point.
@@ -60,28 +99,113 @@ type Flow struct {
 	Evaluation *problems.Evaluation // every quantity, in the problem's order
 }
 
-// Flow computes the frozen inlet at x with its stations and drawing lines.
+// Flow computes the frozen inlet at x with its stations and drawing lines. Points
+// beyond the chain are traced with the settings of verification; so is a point
+// whose lip shock misses the shoulder, for comparison only.
 func (p *Problem) Flow(ctx context.Context, x []float64) (*Flow, error) {
-	evaluation := problems.NewEvaluation(len(p.quantities))
-	if err := p.Evaluate(ctx, x, evaluation); err != nil {
+	return p.FlowBy(ctx, x, VerifyTrace())
+}
+
+// FlowBy is Flow with other settings of the traces.
+func (p *Problem) FlowBy(ctx context.Context, x []float64, settings wave.Settings) (*Flow, error) {
+	frozen := p.Freeze(x)
+	flow := &Flow{
+		Design: frozen.design, Contour: frozen.shape.Inlet, Focus: frozen.shape.Focus, ContourErr: frozen.shape.err,
+		CowlLength: p.definition.CowlLength * frozen.shape.height,
+		Evaluation: problems.NewEvaluation(len(p.quantities)),
+	}
+	next := 0
+	for i := range p.definition.Points {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		a := frozen.analysis(p.definition.Points[i])
+		a.fly(settings)
+		next = p.read(a, flow.Evaluation, next, i)
+		point := p.pointFlow(a)
+		if a.trace == nil && a.missesShoulder() {
+			point.Trace, _ = a.tracing(settings) // without one nothing is compared
+		}
+		flow.Points = append(flow.Points, *point)
+	}
+	p.read(frozen.analysis(p.definition.Points[0]), flow.Evaluation, next, -1)
+	return flow, nil
+}
+
+// missesShoulder reports whether the chain holds and its lip shock is not
+// cancelled at the shoulder.
+func (a *analysis) missesShoulder() bool {
+	return a.status() == nil && a.shape.err == nil && a.lipTurning > 0 && a.miss > placeTolerance
+}
+
+// Frozen is one inlet whose contour no longer changes, for any condition. It is
+// safe for concurrent use.
+type Frozen struct {
+	problem *Problem
+	design  Design
+	shape   *closure
+}
+
+// Freeze shapes the contour of the design at x, one value a variable; nil for a
+// problem without.
+func (p *Problem) Freeze(x []float64) *Frozen {
+	w := new(workspace)
+	p.freeze(w, first{}, x)
+	return &Frozen{problem: p, design: w.design, shape: &w.shape}
+}
+
+// Contour returns the frozen contour and the reason why it does not close, nil if
+// it does.
+func (f *Frozen) Contour() (contour.Inlet, error) { return f.shape.Inlet, f.shape.err }
+
+// Geometry returns the frozen contour as a trace takes it.
+func (f *Frozen) Geometry() wave.Geometry { return f.shape.geometry(&f.problem.definition) }
+
+// At computes the inlet at any condition: the chain of straight shocks where it
+// holds, else a trace by the settings given. A flow that ends early is an answer
+// with its reason in Err (and, of a traced one, its place in Trace.Ending); the
+// error is that of the context.
+func (f *Frozen) At(ctx context.Context, point Point, settings wave.Settings) (*PointFlow, error) {
+	if err := ctx.Err(); err != nil {
 		return nil, err
 	}
-	var w workspace
-	p.freeze(&w, first{}, x)
-	flow := &Flow{
-		Design: w.design, Contour: w.shape.Inlet, Focus: w.shape.Focus, ContourErr: w.shape.err,
-		CowlLength: p.definition.CowlLength * p.definition.CaptureHeight,
-		Evaluation: evaluation,
+	a := f.analysis(point)
+	a.fly(settings)
+	return f.problem.pointFlow(a), nil
+}
+
+// Trace traces the inlet at any condition, whether or not the chain holds there.
+// The error reports a contour or condition that no trace can use.
+func (f *Frozen) Trace(point Point, settings wave.Settings) (*wave.Trace, error) {
+	if f.shape.err != nil {
+		return nil, f.shape.err
 	}
-	for i := range p.definition.Points {
-		w.flow.point = &p.definition.Points[i]
-		w.flow.run()
-		flow.Points = append(flow.Points, PointFlow{
-			Point: *w.flow.point, Err: w.flow.status(), Stations: w.flow.stations(),
-			Shocks: w.flow.segments(), Streamline: w.flow.lipStreamline(),
-		})
+	return f.analysis(point).tracing(settings)
+}
+
+// At computes the inlet of the design at x under any condition; see Frozen.At.
+// Freeze once to ask for many conditions.
+func (p *Problem) At(ctx context.Context, x []float64, point Point, settings wave.Settings) (*PointFlow, error) {
+	return p.Freeze(x).At(ctx, point, settings)
+}
+
+func (f *Frozen) analysis(point Point) *analysis {
+	return &analysis{def: &f.problem.definition, route: first{}, shape: f.shape, design: &f.design, point: &point}
+}
+
+// pointFlow takes the flow of one point off its analysis.
+func (p *Problem) pointFlow(a *analysis) *PointFlow {
+	f := &PointFlow{
+		Point: *a.point, Err: a.status(), Traced: a.trace != nil, Trace: a.trace,
+		Quantities: p.pointQuantities, Evaluation: problems.NewEvaluation(len(p.pointQuantities)),
 	}
-	return flow, nil
+	p.read(a, f.Evaluation, 0, 0)
+	if f.Traced {
+		f.Stations, f.Shocks, f.Streamline = a.tracedStations(), a.tracedSegments(), a.trace.Captured.Streamline
+	} else {
+		f.Stations, f.Shocks, f.Streamline = a.stations(), a.segments(), a.lipStreamline()
+	}
+	return f
 }
 
 // stations lists the states along the flow as far as they are known; the last is

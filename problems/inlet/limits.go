@@ -62,7 +62,7 @@ func (d *Definition) lipTurningSearched() bool {
 	if d.LipTurning != nil {
 		return d.LipTurning.Searched
 	}
-	searched := d.CowlAngle.Searched
+	searched := d.CowlAngle != nil && d.CowlAngle.Searched
 	for _, s := range d.RampAngle {
 		searched = searched || s.Searched
 	}

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"sync"
 
 	"rampwright/problems"
@@ -21,7 +22,9 @@ type Problem struct {
 	quantities []problems.Quantity
 	readers    []reader // one a quantity
 	explicit   []int    // quantities of the geometry
-	pool       sync.Pool
+	// pointQuantities is the catalogue at one point, which the first point heads.
+	pointQuantities []problems.Quantity
+	pool            sync.Pool
 }
 
 // reader finds one quantity: an entry of the catalogue, the member of a group,
@@ -42,6 +45,11 @@ func New(definition Definition) (*Problem, error) {
 	for i := range definition.Points {
 		p.list(PerPoint, i, definition.Points[i].Name)
 	}
+	perPoint := len(p.quantities) / len(definition.Points)
+	p.pointQuantities = slices.Clone(p.quantities[:perPoint])
+	for i := range p.pointQuantities {
+		p.pointQuantities[i].Point = ""
+	}
 	first := len(p.quantities)
 	p.list(OfGeometry, -1, problems.Geometry)
 	for i := first; i < len(p.quantities); i++ {
@@ -58,7 +66,7 @@ func (p *Problem) list(scope Scope, point int, name string) {
 		}
 		members := []string{""}
 		if entry.Group() {
-			members = entry.members(len(p.definition.RampAngle))
+			members = entry.members(p.definition.ramps())
 		}
 		for k, member := range members {
 			p.quantities = append(p.quantities, problems.Quantity{
@@ -86,12 +94,16 @@ type workspace struct {
 	flow   analysis
 }
 
-// Evaluate computes every quantity at x by the first exact route.
+// Evaluate computes every quantity at x by the first exact route; points beyond the
+// chain of straight shocks are traced with the settings of a search.
 func (p *Problem) Evaluate(ctx context.Context, x []float64, dst *problems.Evaluation) error {
 	return p.evaluate(ctx, first{}, x, dst)
 }
 
-// Verify computes every quantity at x by the second exact route.
+// Verify computes every quantity at x by the second exact route. Points beyond the
+// chain are traced with the settings of verification, capture and spillage drag
+// come from the balances of the trace, and dst.Bounds says how far a value may lie
+// from that of Evaluate by the error bounds of both traces.
 func (p *Problem) Verify(ctx context.Context, x []float64, dst *problems.Evaluation) error {
 	return p.evaluate(ctx, second{}, x, dst)
 }
@@ -103,13 +115,19 @@ func (p *Problem) evaluate(ctx context.Context, r route, x []float64, dst *probl
 	w := p.pool.Get().(*workspace)
 	defer p.pool.Put(w)
 	p.freeze(w, r, x)
+	dst.Bounds = nil
 	next := 0
 	for i := range p.definition.Points {
 		w.flow.point = &p.definition.Points[i]
-		w.flow.run()
-		next = p.read(w, dst, next, i)
+		w.flow.fly(r.traces())
+		from := next
+		next = p.read(&w.flow, dst, next, i)
+		if w.flow.trace != nil && !w.flow.trace.Settings.WithoutError {
+			p.boundTrace(&w.flow, dst, from, i)
+		}
 	}
-	p.read(w, dst, next, -1)
+	p.read(&w.flow, dst, next, -1)
+	w.flow.trace = nil
 	return nil
 }
 
@@ -117,31 +135,37 @@ func (p *Problem) evaluate(ctx context.Context, r route, x []float64, dst *probl
 func (p *Problem) freeze(w *workspace, r route, x []float64) {
 	def := &p.definition
 	w.design = def.resolve(x)
-	w.shape.close(r, def.Gas, w.design, def.CaptureHeight, def.Points[0].Incidence)
+	if def.Outline != nil {
+		w.shape.take(def.Outline)
+		w.design = w.shape.Design
+	} else {
+		w.shape.close(r, def.Gas, w.design, def.CaptureHeight, def.Points[0].Incidence)
+	}
 	w.flow = analysis{def: def, route: r, shape: &w.shape, design: &w.design, point: &def.Points[0]}
 }
 
 // read stores the quantities of one point, starting at index next.
-func (p *Problem) read(w *workspace, dst *problems.Evaluation, next, point int) int {
+func (p *Problem) read(a *analysis, dst *problems.Evaluation, next, point int) int {
 	for ; next < len(p.readers) && p.readers[next].point == point; next++ {
-		value, err := p.readers[next].read(&w.flow)
-		switch {
-		case err != nil:
+		if value, err := p.readers[next].read(a); err != nil {
 			dst.Miss(next, err)
-		case math.IsNaN(value) || math.IsInf(value, 0):
-			dst.Miss(next, &problems.Status{Phrase: "not a finite number"})
-		default:
+		} else {
 			dst.Set(next, value)
 		}
 	}
 	return next
 }
 
-func (r *reader) read(a *analysis) (float64, error) {
+func (r *reader) read(a *analysis) (value float64, err error) {
 	if r.entry.Group() {
-		return r.entry.member(a, r.member)
+		value, err = r.entry.member(a, r.member)
+	} else {
+		value, err = r.entry.value(a)
 	}
-	return r.entry.value(a)
+	if err == nil && (math.IsNaN(value) || math.IsInf(value, 0)) {
+		err = &problems.Status{Phrase: "not a finite number"}
+	}
+	return value, err
 }
 
 // EvaluateExplicit computes the quantities of the geometry alone: shock theory
@@ -151,7 +175,7 @@ func (p *Problem) EvaluateExplicit(x []float64, dst *problems.Evaluation) {
 	w := p.pool.Get().(*workspace)
 	defer p.pool.Put(w)
 	p.freeze(w, first{}, x)
-	p.read(w, dst, p.explicit[0], -1)
+	p.read(&w.flow, dst, p.explicit[0], -1)
 }
 
 // LinearForm returns an angle of the geometry as a linear form of the variables:
@@ -191,10 +215,15 @@ func (d *Definition) validate() error {
 			wrong = append(wrong, &Invalid{fmt.Sprintf(format, arguments...)})
 		}
 	}
-	n := len(d.RampAngle)
-	require(n >= 1 && n <= ramp.MaxRamps, "%d ramps, allowed 1 to %d", n, ramp.MaxRamps)
 	require(len(d.Points) > 0, "no flight point")
-	require((d.CowlAngle == nil) != (d.LipTurning == nil), "exactly one of cowl angle and lip turning is needed")
+	if d.Outline != nil {
+		require(len(d.RampAngle) == 0 && d.CowlAngle == nil && d.LipTurning == nil, "an outline has no ramp angle, cowl angle or lip turning")
+		wrong = append(wrong, d.Outline.faults()...)
+	} else {
+		n := len(d.RampAngle)
+		require(n >= 1 && n <= ramp.MaxRamps, "%d ramps, allowed 1 to %d", n, ramp.MaxRamps)
+		require((d.CowlAngle == nil) != (d.LipTurning == nil), "exactly one of cowl angle and lip turning is needed")
+	}
 	require(d.CaptureHeight > 0 && d.Width > 0, "capture height %g m and width %g m must be positive", d.CaptureHeight, d.Width)
 	if err := d.Gas.Validate(); err != nil {
 		require(false, "%v", err)

@@ -72,12 +72,18 @@ func closed(read func(*closure) float64) func(*analysis) (float64, error) {
 	}
 }
 
-func everyRamp(ramps int) []string { return rampNames[:ramps] }
-
-func everyRampShock(ramps int) []string {
+func everyRamp(ramps int) []string {
 	names := make([]string, ramps)
 	for i := range names {
-		names[i] = rampNames[i] + " shock"
+		names[i] = rampName(i)
+	}
+	return names
+}
+
+func everyRampShock(ramps int) []string {
+	names := everyRamp(ramps)
+	for i := range names {
+		names[i] += " shock"
 	}
 	return names
 }
@@ -85,7 +91,7 @@ func everyRampShock(ramps int) []string {
 // cornersAndLip are the shocks that meet a boundary layer: the corners of ramps
 // 2.. and the lip shock.
 func cornersAndLip(ramps int) []string {
-	return append(append([]string(nil), rampNames[1:ramps]...), lipShockName)
+	return append(everyRamp(ramps)[1:], lipShockName)
 }
 
 const lipShockName = "lip shock"

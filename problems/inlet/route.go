@@ -5,6 +5,7 @@ import (
 
 	"rampwright/problems/gas"
 	"rampwright/problems/shock"
+	"rampwright/problems/wave"
 )
 
 // route is one exact way to compute an inlet. The two routes share constants,
@@ -19,6 +20,11 @@ type route interface {
 	recovery(a *analysis) float64
 	throatHeight(c *closure) float64
 	captured(a *analysis) (capture, spillage float64)
+	// balances reports whether capture and spillage of a trace are read from its
+	// mass and momentum balance rather than from its lip streamline.
+	balances() bool
+	// traces are the settings of a trace where the chain does not hold.
+	traces() wave.Settings
 }
 
 // first is the route of every search: cubic shock kernel, products of shock
@@ -58,6 +64,10 @@ func (first) throatHeight(c *closure) float64 { return c.cowlLine().Height(c.Sho
 
 // captured follows the lip streamline upstream through the regions of ramps n..1.
 func (first) captured(a *analysis) (capture, spillage float64) { return a.traced() }
+
+func (first) balances() bool { return false }
+
+func (first) traces() wave.Settings { return SearchTrace() }
 
 // second is the route of verification: bracketed roots, conservation laws,
 // entropy, and balances over the captured stream tube.
@@ -109,3 +119,7 @@ func (second) throatHeight(c *closure) float64 {
 
 // captured balances mass and momentum over the captured stream tube.
 func (second) captured(a *analysis) (capture, spillage float64) { return a.balanced() }
+
+func (second) balances() bool { return true }
+
+func (second) traces() wave.Settings { return VerifyTrace() }

@@ -29,6 +29,9 @@ type Trace struct {
 	Captured Captured
 	Stations []Station // one a plane
 	Forces   []Force
+	// LipRegion is the region just ahead of the lip whose flow meets the inner cowl,
+	// -1 where the lip was not reached.
+	LipRegion int
 	// LipShocks lists the shocks of the body at the lip, bottom to top.
 	LipShocks []LipShock
 	// LipShockMiss is the distance from the shoulder to the foot of the lip shock
@@ -118,7 +121,7 @@ func Run(fluid gas.Perfect, free FreeStream, geometry Geometry, settings Setting
 func (c *core) read() *Trace {
 	t := &Trace{
 		Gas: c.gas, Free: c.free, Settings: c.asked, Threshold: max(c.coarsest, c.blurAhead), Dropped: c.fan.dropped, Events: c.events,
-		LipShocks: c.lipShocks(), Ending: c.ending, OutsideEnding: c.outside.ending,
+		LipRegion: -1, LipShocks: c.lipShocks(), Ending: c.ending, OutsideEnding: c.outside.ending,
 		Captured:     Captured{Capture: math.NaN(), Traced: math.NaN(), Spillage: math.NaN(), Balance: math.NaN()},
 		LipShockMiss: c.shoulderMiss(),
 		Spilled:      Closure{math.NaN(), math.NaN(), math.NaN()},
@@ -127,6 +130,7 @@ func (c *core) read() *Trace {
 	var push vector
 	entry := math.NaN()
 	if c.atLip {
+		t.LipRegion = int(c.parting.inside)
 		line := c.traceLip()
 		push = c.push(line)
 		entry = c.capture(&t.Captured, line, push)
