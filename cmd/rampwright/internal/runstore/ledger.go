@@ -6,6 +6,7 @@ import (
 	"errors"
 	"math"
 	"os"
+	"slices"
 	"sync"
 	"time"
 
@@ -228,5 +229,6 @@ func deliver(model string, stored, dst *problems.Evaluation) error {
 	}
 	copy(dst.Values, stored.Values)
 	copy(dst.Reasons, stored.Reasons)
+	dst.Bounds = slices.Clone(stored.Bounds)
 	return nil
 }

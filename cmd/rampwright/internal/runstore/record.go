@@ -32,6 +32,7 @@ type record struct {
 	X       []bits    `json:"x"`
 	Values  []number  `json:"values"`
 	Missing []missing `json:"missing"`
+	Bounds  []number  `json:"bounds"` // of the second route; absent where every value is exact
 }
 
 // missing gives one reason to Count quantities from First on.
@@ -125,6 +126,13 @@ func appendRecord(dst []byte, model string, route Route, x []float64, e *problem
 	}
 	dst = append(dst, ']')
 	dst, err := appendMissing(dst, e.Reasons)
+	if e.Bounds != nil {
+		dst = append(dst, `,"bounds":[`...)
+		for i, v := range e.Bounds {
+			dst = appendNumber(separate(dst, i), v)
+		}
+		dst = append(dst, ']')
+	}
 	return append(dst, '}', '\n'), err
 }
 
@@ -179,10 +187,13 @@ func appendText(dst []byte, s string) []byte {
 // evaluation returns the evaluation of a line; ok is false when its parts do
 // not fit together.
 func (r *record) evaluation() (e *problems.Evaluation, ok bool) {
-	if r.Route == "" || len(r.Values) == 0 {
+	if r.Route == "" || len(r.Values) == 0 || r.Bounds != nil && len(r.Bounds) != len(r.Values) {
 		return nil, false
 	}
 	e = problems.NewEvaluation(len(r.Values))
+	for i, b := range r.Bounds {
+		e.Widen(i, float64(b))
+	}
 	for i, v := range r.Values {
 		e.Values[i] = float64(v)
 	}

@@ -43,6 +43,9 @@ func TestEveryFloatSurvivesAsValueAndAsVariable(t *testing.T) {
 		for i := range e.Values {
 			e.Set(i, anyFloat().Draw(t, "value"))
 		}
+		if rapid.Bool().Draw(t, "bounded") {
+			e.Widen(0, rapid.OneOf(rapid.Just(math.Inf(1)), rapid.Float64Min(0)).Draw(t, "bound"))
+		}
 		r, back := roundTrip(t, x, e)
 		if r.key() != string(appendKey(nil, x)) {
 			t.Fatalf("x %x came back as %x", x, r.X)
@@ -50,6 +53,9 @@ func TestEveryFloatSurvivesAsValueAndAsVariable(t *testing.T) {
 		for i := range e.Values {
 			if !sameFloat(e.Values[i], back.Values[i]) {
 				t.Fatalf("value %x came back as %x", e.Values[i], back.Values[i])
+			}
+			if back.Bound(i) != e.Bound(i) || (back.Bounds == nil) != (e.Bounds == nil) {
+				t.Fatalf("bound %v came back as %v", e.Bound(i), back.Bound(i))
 			}
 			if back.Reasons[i] != nil {
 				t.Fatalf("a present value came back with the reason %v", back.Reasons[i])
@@ -171,6 +177,7 @@ func TestLinesThatDoNotFitTogetherAreUnreadable(t *testing.T) {
 		"past the end":       `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":1,"count":1,"reason":{"type":"status"}}]}`,
 		"overflowing count":  `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":1,"count":9223372036854775807,"reason":{"type":"status"}}]}`,
 		"before the start":   `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":-1,"count":1,"reason":{"type":"status"}}]}`,
+		"bounds too few":     `{"model":"m","route":"verify","x":[],"values":[1,2],"bounds":[0]}`,
 		"no reason":          `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":0,"count":1}]}`,
 		"unknown reason":     `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":0,"count":1,"reason":{"type":"later"}}]}`,
 		"unknown one inside": `{"model":"m","route":"evaluate","x":[],"values":[1],"missing":[{"first":0,"count":1,"reason":{"type":"other","inner":{"type":"later"}}}]}`,
