@@ -46,9 +46,11 @@ func Lookup(name string) (Entry, bool) {
 }
 
 const (
-	attached   = "shocks attached"
+	attached   = "shocks attached; where traced, average over the throat plane"
 	everywhere = "always"
 	closes     = "contour closes"
+	atCorner   = "flow ahead of the ramp supersonic; where traced, along the body just ahead of its corner"
+	atLip      = "ramp shocks attached; where traced, just ahead of the lip, turning below 0 where the cowl turns away"
 	kilo       = 1e-3 // Pa to kPa
 )
 
@@ -62,7 +64,7 @@ var catalogue = []Entry{
 	single(throat((*analysis).kineticEnergyEfficiency)).as("kinetic_energy_efficiency", "", PerPoint,
 		"1 - 2/((g-1) M0^2) (pi^(-(g-1)/g) - 1), pi the shock recovery", "Van Wie in Curran & Murthy 2000; Heiser & Pratt 1994 (from memory)", attached),
 	single((*analysis).compressionEfficiency).as("compression_efficiency", "", PerPoint,
-		"(psi - pi^(-(g-1)/g)) / (psi - 1), psi the static temperature ratio", "Heiser & Pratt 1994 (from memory)", attached+", psi above 1"),
+		"(psi - pi^(-(g-1)/g)) / (psi - 1), psi the static temperature ratio", "Heiser & Pratt 1994 (from memory)", attached+"; psi above 1"),
 	single(throat(func(a *analysis) float64 { return -math.Log(a.shockRecovery) })).as("entropy_rise", "", PerPoint,
 		"(s3 - s0)/R = -ln(shock recovery)", "second law for a perfect gas", attached),
 	single(throat(func(a *analysis) float64 { return a.throatMach })).as("throat_mach", "", PerPoint,
@@ -78,25 +80,25 @@ var catalogue = []Entry{
 	single(throat(func(a *analysis) float64 { return a.temperatureRatio })).as("temperature_ratio", "", PerPoint,
 		"throat static temperature over free-stream static temperature", "NACA Report 1135", attached),
 	single((*analysis).lipMachNumber).as("lip_mach", "", PerPoint,
-		"Mach number behind the last ramp shock, ahead of the lip shock", "NACA Report 1135", "ramp shocks attached"),
+		"Mach number behind the last ramp shock, ahead of the lip shock", "NACA Report 1135", "ramp shocks attached; where traced, just ahead of the lip"),
 	single((*analysis).terminalMachNumber).as("terminal_mach", "", PerPoint,
 		"Mach number ahead of the terminal normal shock", "NACA Report 1135", "terminal_shock is true"),
 	group(everyRamp, (*analysis).rampMargin).as("ramp_attachment_margin_deg", "deg", PerPoint,
-		"largest attached turning less the turning of each ramp", "NACA Report 1135", "flow ahead of the ramp supersonic"),
+		"largest attached turning less the turning of each ramp", "NACA Report 1135", atCorner),
 	single((*analysis).lipMargin).as("lip_attachment_margin_deg", "deg", PerPoint,
-		"largest attached turning at the lip Mach number less the lip turning", "NACA Report 1135", "ramp shocks attached"),
+		"largest attached turning at the lip Mach number less the lip turning", "NACA Report 1135", atLip),
 	single(func(a *analysis) (float64, error) { return a.cowlMargin / radian, nil }).as("cowl_attachment_margin_deg", "deg", PerPoint,
 		"largest attached turning of the free stream less the turning of the outer cowl", "NACA Report 1135", everywhere),
 	single(func(a *analysis) (float64, error) { return (a.reflection - a.lipTurning) / radian, a.lipErr }).as("lip_reflection_margin_deg", "deg", PerPoint,
-		"largest turning of regular reflection (detachment or mechanical equilibrium, the lower) less the lip turning", "Ben-Dor, Shock Wave Reflection Phenomena (from memory)", "ramp shocks attached"),
+		"largest turning of regular reflection (detachment or mechanical equilibrium, the lower) less the lip turning", "Ben-Dor, Shock Wave Reflection Phenomena (from memory)", atLip),
 	group(cornersAndLip, (*analysis).separationMargin).as("separation_margin", "", PerPoint,
-		"1 - (p2/p1) / limit at the corners of ramps 2.. and at the lip shock", "Korkegi 1975, turbulent (from memory)", attached),
+		"1 - (p2/p1) / limit at the corners of ramps 2.. and at the lip shock", "Korkegi 1975, turbulent (from memory)", "shocks attached; where traced, at the Mach number along the body, and an expansion at the lip counts by its p2/p1"),
 	group(everyRampShock, (*analysis).lipClearance).as("lip_clearance", "", PerPoint,
-		"distance along x from each ramp shock at lip height to the lip, over capture height; negative inside the lip", "geometry of straight shocks", "ramp shocks attached"),
+		"distance along x from each ramp shock at lip height to the lip, over capture height; negative inside the lip", "geometry of straight shocks", "ramp shocks attached; where traced, of the shocks that reach the lip, a merged one as its neighbour nearer to it"),
 	single((*analysis).lipShockMiss).as("lip_shock_miss", "", PerPoint,
-		"distance along ramp and throat wall from the shoulder to the foot of the lip shock, over capture height", "geometry of straight shocks", attached+", lip turning above 0"),
+		"distance along ramp and throat wall from the shoulder to the foot of the lip shock, over capture height", "geometry of straight shocks", "shocks attached, lip turning above 0; where traced, to where the lip shock first meets the body"),
 	single(captured(func(a *analysis) float64 { return a.capture })).as("capture", "", PerPoint,
-		"captured stream area normal to the free stream over capture area", "lip streamline traced through the ramp shocks", "ramp shocks attached, in order, outside the lip"),
+		"captured stream area normal to the free stream over capture area", "lip streamline followed through the shocks", "ramp shocks attached, in order, outside the lip; or the lip reached by a trace"),
 	single(captured((*analysis).massFlow)).as("mass_flow_kg_s", "kg/s", PerPoint,
 		"captured mass flow", "conservation of mass", "capture known"),
 	single(captured(func(a *analysis) float64 { return a.spillage })).as("spillage_drag", "", PerPoint,

@@ -92,7 +92,8 @@ type Flow struct {
 	Design     Design
 	Contour    contour.Inlet
 	Focus      contour.Point
-	ContourErr error // why the contour does not close
+	ContourErr error    // why the contour does not close
+	Outline    *Outline // the walls of an existing inlet; nil for a design
 	// CowlLength is the outer cowl along x, m.
 	CowlLength float64
 	Points     []PointFlow
@@ -111,7 +112,7 @@ func (p *Problem) FlowBy(ctx context.Context, x []float64, settings wave.Setting
 	frozen := p.Freeze(x)
 	flow := &Flow{
 		Design: frozen.design, Contour: frozen.shape.Inlet, Focus: frozen.shape.Focus, ContourErr: frozen.shape.err,
-		CowlLength: p.definition.CowlLength * frozen.shape.height,
+		Outline: p.definition.Outline, CowlLength: p.definition.CowlLength * frozen.shape.height,
 		Evaluation: problems.NewEvaluation(len(p.quantities)),
 	}
 	next := 0

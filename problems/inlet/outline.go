@@ -35,8 +35,8 @@ func (o *Outline) shoulder() int {
 
 func heading(a, b contour.Point) float64 { return math.Atan2(b.Y-a.Y, b.X-a.X) }
 
-// geometry is the outline as a trace takes it.
-func (o *Outline) geometry(outerLength float64) wave.Geometry {
+// Geometry is the outline as a trace takes it.
+func (o *Outline) Geometry(outerLength float64) wave.Geometry {
 	return wave.Geometry{
 		Body: o.Body, CowlInner: o.CowlInner, OuterAngle: o.OuterAngle, OuterLength: outerLength,
 		Shoulder: o.shoulder(), Planes: []float64{o.ThroatX},

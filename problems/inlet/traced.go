@@ -51,7 +51,7 @@ func (a *analysis) tracing(settings wave.Settings) (*wave.Trace, error) {
 // geometry is the contour as a trace takes it.
 func (c *closure) geometry(d *Definition) wave.Geometry {
 	if d.Outline != nil {
-		return d.Outline.geometry(d.CowlLength * c.height)
+		return d.Outline.Geometry(d.CowlLength * c.height)
 	}
 	return wave.FromContour(&c.Inlet, d.CowlLength*c.height)
 }

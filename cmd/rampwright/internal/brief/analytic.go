@@ -44,10 +44,11 @@ func (r *reader) refuseBeside(n *node, k Key) {
 	if part := n.get(k.Name); part != nil && part.shape == mapping && len(part.pairs) > 0 && part.pairs[0].value != nil && part.pairs[0].value.flag != "" {
 		at = part.pairs[0].value // the section is there for a flag alone
 	}
-	r.add(at, Problem{
-		Message: k.Name + " does not go with " + k.Unless,
-		Hint:    "an analytic problem brings its own variables, aim and limits: remove " + k.Name,
-	})
+	hint := "an analytic problem brings its own variables, aim and limits"
+	if k.Unless == outlinePart {
+		hint = "an outline states every wall, and its lip the capture height"
+	}
+	r.add(at, Problem{Message: k.Name + " does not go with " + k.Unless, Hint: hint + ": remove " + k.Name})
 }
 
 func (b *Brief) writeAnalytic(w *bytes.Buffer) {

@@ -27,6 +27,7 @@ type Brief struct {
 	Tolerance Tolerance
 	Effort    Effort
 
+	outerDeg    float64    // outer cowl of an outline, as written
 	words       vocabulary // what aims and limits may name
 	aimHasPoint bool       // the aim takes an `at`: some quantity of it is tied to no point
 	replaced    map[spot]sides

@@ -66,6 +66,10 @@ func (b *Brief) writeTolerance(w *bytes.Buffer) {
 
 func (b *Brief) writeInlet(w *bytes.Buffer) {
 	d := b.Definition
+	if d.Outline != nil {
+		b.writeOutline(w)
+		return
+	}
 	angles := make([]string, len(d.RampAngle))
 	for i, s := range d.RampAngle {
 		angles[i] = settingText(s)
@@ -211,6 +215,7 @@ type canonicalInlet struct {
 	LipSetback    canonicalSetting   `json:"lip_setback"`
 	TerminalShock bool               `json:"terminal_shock"`
 	DuctFactor    float64            `json:"duct_factor"`
+	Outline       *canonicalOutline  `json:"outline,omitempty"`
 }
 
 // canonicalSetting is a setting; From equals To when it is fixed.
@@ -250,6 +255,7 @@ func (b *Brief) canonicalJSON() []byte {
 	if b.Analytic != nil {
 		c.Analytic = b.Analytic.Name
 	}
+	c.Inlet.Outline = b.canonicalOutline()
 	for _, s := range d.RampAngle {
 		c.Inlet.RampAngle = append(c.Inlet.RampAngle, canonicalSettingOf(s))
 	}

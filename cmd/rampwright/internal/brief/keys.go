@@ -22,6 +22,7 @@ const (
 	Side    Form = "number or none"
 	Points  Form = "point, every or list of points"
 	Formula Form = "quantity or formula"
+	Wall    Form = "list of [x, y] points" // in the order of the flow
 	Part    Form = "section"
 	Parts   Form = "list of sections"
 )
@@ -52,6 +53,7 @@ const (
 	flight      = "flight"
 	gasModel    = "gas"
 	inletPart   = "inlet"
+	outlinePart = "outline" // in inlet
 	problemPart = "problem"
 	aimPart     = "aim"
 	limits      = "limits"
@@ -88,18 +90,25 @@ var keys = []Key{
 	{Section: gasModel, Name: "model", Form: Choice, Choices: []string{perfect}, Default: perfect, Meaning: "model of the gas"},
 	{Section: gasModel, Name: "ratio_of_specific_heats", Form: Number, Low: 1, OpenLow: true, High: 5. / 3, Default: "1.4", Flag: true, Meaning: "ratio of specific heats of the perfect gas"},
 
-	{Section: inletPart, Name: "capture_height_m", Form: Number, Unit: "m", Low: 0.001, High: 20, Required: true, Flag: true, Meaning: "height of the lip above the leading edge of the first ramp"},
+	{Section: inletPart, Name: "capture_height_m", Form: Number, Unit: "m", Low: 0.001, High: 20, Required: true, Unless: outlinePart, Flag: true, Meaning: "height of the lip above the leading edge of the first ramp"},
 	{Section: inletPart, Name: "width_m", Form: Number, Unit: "m", Low: 0.001, High: 50, Required: true, Flag: true, Meaning: "span of the planar inlet"},
-	{Section: inletPart, Name: "ramps", Form: Whole, Low: 1, High: 8, Required: true, Flag: true, Meaning: "number of ramps"},
-	{Section: inletPart, Name: "ramp_angle_deg", Form: Ramps, Unit: "deg", Low: 0.1, High: 40, Required: true, Flag: true, Meaning: "turning of each ramp from the one before"},
-	{Section: inletPart, Name: "cowl_angle_deg", Form: Search, Unit: "deg", Low: -20, High: 60, Flag: true, Meaning: "angle of the inner cowl surface to the x axis; or lip_turning_deg"},
-	{Section: inletPart, Name: "lip_turning_deg", Form: Search, Unit: "deg", Low: 0, High: 40, Flag: true, Meaning: "turning at the lip, last ramp surface less inner cowl surface; 0 is an aligned cowl; or cowl_angle_deg"},
-	{Section: inletPart, Name: "cowl_wedge_deg", Form: Search, Unit: "deg", Low: 0, High: 30, Default: "4", Flag: true, Meaning: "outer less inner cowl angle"},
+	{Section: inletPart, Name: "ramps", Form: Whole, Low: 1, High: 8, Required: true, Unless: outlinePart, Flag: true, Meaning: "number of ramps"},
+	{Section: inletPart, Name: "ramp_angle_deg", Form: Ramps, Unit: "deg", Low: 0.1, High: 40, Required: true, Unless: outlinePart, Flag: true, Meaning: "turning of each ramp from the one before"},
+	{Section: inletPart, Name: "cowl_angle_deg", Form: Search, Unit: "deg", Low: -20, High: 60, Unless: outlinePart, Flag: true, Meaning: "angle of the inner cowl surface to the x axis; or lip_turning_deg"},
+	{Section: inletPart, Name: "lip_turning_deg", Form: Search, Unit: "deg", Low: 0, High: 40, Unless: outlinePart, Flag: true, Meaning: "turning at the lip, last ramp surface less inner cowl surface; 0 is an aligned cowl; or cowl_angle_deg"},
+	{Section: inletPart, Name: "cowl_wedge_deg", Form: Search, Unit: "deg", Low: 0, High: 30, Default: "4", Unless: outlinePart, Flag: true, Meaning: "outer less inner cowl angle"},
 	{Section: inletPart, Name: "cowl_length", Form: Number, Low: 0, High: 10, Default: "0.25", Flag: true, Meaning: "outer cowl along x, fraction of capture height, for cowl drag"},
-	{Section: inletPart, Name: "shock_on_lip_mach", Form: Search, Low: 1.5, High: 12, Default: "the Mach number of the design point", Flag: true, Meaning: "Mach number at which every ramp shock meets the lip"},
-	{Section: inletPart, Name: "lip_setback", Form: Search, Low: 0, High: 0.5, Default: "0", Flag: true, Meaning: "lip behind the focus of the ramp shocks, fraction of capture height"},
+	{Section: inletPart, Name: "shock_on_lip_mach", Form: Search, Low: 1.5, High: 12, Default: "the Mach number of the design point", Unless: outlinePart, Flag: true, Meaning: "Mach number at which every ramp shock meets the lip"},
+	{Section: inletPart, Name: "lip_setback", Form: Search, Low: 0, High: 0.5, Default: "0", Unless: outlinePart, Flag: true, Meaning: "lip behind the focus of the ramp shocks, fraction of capture height"},
 	{Section: inletPart, Name: "terminal_shock", Form: Truth, Default: "false", Flag: true, Meaning: "a normal shock stands in the throat"},
 	{Section: inletPart, Name: "duct_factor", Form: Number, Low: 0, OpenLow: true, High: 1, Default: "1", Flag: true, Meaning: "total-pressure factor behind the last shock"},
+
+	{Section: inletPart, Name: outlinePart, Form: Part, Meaning: "the walls of an existing inlet, in place of ramps and cowl: flow traces it, nothing is searched"},
+
+	{Section: outlinePart, Name: "body_m", Form: Wall, Unit: "m", Low: -1000, High: 1000, Required: true, Meaning: "corners of the body from the leading edge [0, 0] downstream"},
+	{Section: outlinePart, Name: "cowl_inner_m", Form: Wall, Unit: "m", Low: -1000, High: 1000, Required: true, Meaning: "corners of the inner cowl from the lip downstream; the y of the lip is the capture height"},
+	{Section: outlinePart, Name: "cowl_outer_angle_deg", Form: Number, Unit: "deg", Low: -20, High: 60, Required: true, Meaning: "angle of the outer cowl surface to the x axis"},
+	{Section: outlinePart, Name: "throat_x_m", Form: Number, Unit: "m", Low: 0, OpenLow: true, High: 1000, Required: true, Meaning: "x of the vertical plane, behind the lip, on which the throat is averaged"},
 
 	{Section: problemPart, Name: "analytic", Form: Choice, Choices: analytic.Names(), Required: true, Meaning: "name of the problem"},
 
@@ -167,8 +176,11 @@ func namesOf(section string) []string {
 
 // Path is the key's place as shown in tables: "inlet.width_m".
 func (k Key) Path() string {
-	if k.Section == top {
+	switch k.Section {
+	case top:
 		return k.Name
+	case outlinePart:
+		return inletPart + "." + outlinePart + "." + k.Name
 	}
 	return k.Section + "." + k.Name
 }

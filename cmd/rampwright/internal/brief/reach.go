@@ -6,6 +6,9 @@ import "math"
 // possible: from the box itself, or from the free stream at the point.
 func (b *Brief) reach(quantity, point string) (low, high float64, known bool) {
 	d := b.Definition
+	if d.Outline != nil {
+		return b.streamReach(quantity, b.condition(point), point)
+	}
 	turnLow, turnHigh := turning(d)
 	cowlLow, cowlHigh := b.cowlReach()
 	wedgeLow, wedgeHigh := bounds(d.CowlWedge)

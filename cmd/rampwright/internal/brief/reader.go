@@ -138,6 +138,8 @@ func inSection(section string) string {
 	switch section {
 	case top:
 		return ""
+	case outlinePart:
+		return " in inlet.outline"
 	case span:
 		return " in a range {from, to}"
 	default:

@@ -116,7 +116,8 @@ func sectionSchema(section string) *schema {
 		s.OneOf = eachRequired(ways...)
 		s.DependentRequired = map[string][]string{"pressure_kPa": {"temperature_K"}, "temperature_K": {"pressure_kPa"}}
 	case inletPart:
-		s.OneOf = eachRequired("cowl_angle_deg", "lip_turning_deg")
+		s.If = &schema{Required: []string{outlinePart}}
+		s.Then, s.Else = besideOutline()
 	case aimPart:
 		s.OneOf = eachRequired("highest", "lowest")
 	case limits:
@@ -174,6 +175,8 @@ func formSchema(k Key) *schema {
 			numberSchema(k, "number"), rangeSchema(k),
 			{Type: "array", Items: searchSchema(k), MinItems: 1, MaxItems: int(known(inletPart, "ramps").High)},
 		}}
+	case Wall:
+		return wallSchema(k)
 	case Truth:
 		return &schema{Type: "boolean"}
 	case Choice:

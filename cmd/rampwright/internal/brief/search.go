@@ -18,6 +18,9 @@ func CheckSearch(b *Brief) Problems {
 	if b.Analytic != nil {
 		return nil // it always has variables and an aim, and any limit may be met
 	}
+	if b.Definition.Outline != nil {
+		return Problems{b.at("inlet.outline", Problem{Message: "nothing to search: the outline fixes every wall", Hint: "use `rampwright flow`"})}
+	}
 	var refused Problems
 	if b.Searched() == 0 {
 		refused = append(refused, b.at(inletPart, Problem{Message: "nothing to search: every value of the inlet is fixed", Hint: "use `rampwright flow`, or write a value as {from: .., to: ..}"}))

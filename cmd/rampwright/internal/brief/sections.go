@@ -35,6 +35,10 @@ func (r *reader) readInlet(root *node) {
 	}
 	d := &r.brief.Definition
 	r.brief.place[inletPart] = part
+	if part.has(outlinePart) {
+		r.readOutline(part)
+		return
+	}
 	d.CaptureHeight = number("capture_height_m")
 	d.Width = number("width_m")
 	d.RampAngle = r.rampAngles(part)

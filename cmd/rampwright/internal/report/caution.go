@@ -59,6 +59,7 @@ type rule struct {
 var flowRules = []rule{
 	{"terminal_mach", terminalMach},
 	{"not_attached", notAttached},
+	{"traced", traced},
 	{"contraction_beyond_isentropic", beyondIsentropic},
 	{"contraction_above_self_start", aboveSelfStart},
 	{"pressure_rise", pressureRise},
@@ -131,7 +132,36 @@ func notAttached(in *inspection, p *inlet.PointFlow) (float64, string, string) {
 	if p.Err == nil {
 		return 0, "", ""
 	}
-	return 1, fmt.Sprintf("The stream is not attached at %s (Mach %.3g): %s. What lies behind is not known.", p.Point.Name, p.Point.Mach, p.Status()), p.Status()
+	what := p.Status()
+	if p.Trace != nil && p.Trace.Ending != nil {
+		what = p.Trace.Ending.Error()
+	}
+	return 1, fmt.Sprintf("The stream is not attached at %s (Mach %.3g): %s. What lies behind is not known.", p.Point.Name, p.Point.Mach, what), p.Status()
+}
+
+// traced says what the numbers of a traced point rest on, at the point of the
+// greatest error bound.
+func traced(in *inspection, p *inlet.PointFlow) (float64, string, string) {
+	if !p.Traced || p.Err != nil {
+		return 0, "", ""
+	}
+	t := newTrace(p)
+	settings := fmt.Sprintf("expansions in wavelets of %s deg, waves below %s merged", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
+	share := t.share()
+	if !finite(share) {
+		return math.MaxFloat64, fmt.Sprintf("The shocks of %s cross ahead of the lip or fall inside it: its flow is traced wave by wave (%s), with no error bound, because a coarser trace does not reach the throat.",
+			p.Point.Name, settings), "no bound"
+	}
+	percent := plain(roundUp(100 * share))
+	return 1 + share, fmt.Sprintf("The flow at %s is traced wave by wave (%s) and averaged over the throat plane: throat averages within %s %%, capture %s. Shocks that reflect in the duct separate boundary layers, which no trace sees.",
+		p.Point.Name, settings, percent, exactOrWithin(float64(t.Error.Capture))), "within " + percent + " %"
+}
+
+func exactOrWithin(bound float64) string {
+	if bound < noise {
+		return "exact"
+	}
+	return fmt.Sprintf("within %.1g", roundUp(bound))
 }
 
 func beyondIsentropic(in *inspection, p *inlet.PointFlow) (float64, string, string) {
@@ -188,9 +218,10 @@ func lipShockMiss(in *inspection, p *inlet.PointFlow) (float64, string, string) 
 // ramps 2.. and of the lip shock: the stations of ramps 1..n.
 func separationExtrapolated(in *inspection, p *inlet.PointFlow) (float64, string, string) {
 	least := math.Inf(1)
-	ramps := in.flow.Design.Ramps
-	for i := 1; i <= ramps && i < len(p.Stations); i++ {
-		least = math.Min(least, p.Stations[i].Mach)
+	for _, s := range p.Stations {
+		if strings.HasPrefix(s.Name, "ramp ") {
+			least = math.Min(least, s.Mach)
+		}
 	}
 	if !(least < leastSeparationMach) {
 		return 0, "", ""
@@ -218,7 +249,7 @@ func geometryCautions(in *inspection) []Caution {
 	if outer := degrees(design.Outer()); outer > steepestCowl {
 		add("steep_cowl", "The outer cowl stands at %.4g deg, above the %g deg of common practice: its wave drag grows fast.", outer, steepestCowl)
 	}
-	if design.Setback < leastSetback {
+	if in.flow.Outline == nil && design.Setback < leastSetback {
 		add("shock_on_lip", "The lip setback is %.3g capture heights, below %g: at Mach %.4g every ramp shock strikes the lip, which multiplies its heating, and any disturbance puts a shock inside.",
 			design.Setback, leastSetback, design.ShockOnLip)
 	}

@@ -57,6 +57,7 @@ type Shape struct {
 	WidthM       Number
 	// The contour; nil where it does not close.
 	Corners    [][2]Number
+	Outline    *Outline // of an existing inlet
 	Lip        *[2]Number
 	Shoulder   *[2]Number
 	Quantities Object[Number]
@@ -75,6 +76,9 @@ func newShape(d inlet.Definition, flow *inlet.Flow, geometry []reading) Shape {
 	}
 	for _, turning := range design.Turning[:design.Ramps] {
 		s.RampAngleDeg = append(s.RampAngleDeg, Number(degrees(turning)))
+	}
+	if o := flow.Outline; o != nil {
+		s.takeOutline(o, flow)
 	}
 	if flow.ContourErr != nil {
 		for _, name := range []string{"corners_m", "lip_m", "shoulder_m"} {
@@ -100,6 +104,9 @@ func (s Shape) MarshalJSON() ([]byte, error) {
 		{"terminal_shock", s.Terminal}, {"capture_height_m", s.HeightM}, {"width_m", s.WidthM},
 		{"corners_m", s.Corners}, {"lip_m", s.Lip}, {"shoulder_m", s.Shoulder},
 	}
+	if s.Outline != nil {
+		object = append(object, Field[any]{"outline", s.Outline})
+	}
 	for _, q := range s.Quantities {
 		object = append(object, Field[any]{q.Name, q.Value})
 	}
@@ -115,10 +122,12 @@ type Point struct {
 	PressureKPa  Number                 `json:"pressure_kPa"`
 	TemperatureK Number                 `json:"temperature_K"`
 	Status       string                 `json:"status"` // "attached" or the reason
+	Traced       bool                   `json:"traced"` // quantities of the captured stream are those of the trace
 	Quantities   Object[Number]         `json:"quantities,omitzero"`
 	Members      Object[Object[Number]] `json:"members,omitzero"`
 	Missing      Object[string]         `json:"missing,omitzero"`
 	Stations     []Station              `json:"stations"`
+	Trace        *Trace                 `json:"trace,omitempty"`
 }
 
 // Station is a uniform state and the wave that leads into it; ratios are to the
@@ -141,7 +150,7 @@ func newPoint(flow *inlet.PointFlow) Point {
 	p := Point{
 		Name: flow.Point.Name, Mach: Number(flow.Point.Mach), IncidenceDeg: Number(degrees(flow.Point.Incidence)),
 		PressureKPa: Number(flow.Point.Pressure / pascals), TemperatureK: Number(flow.Point.Temperature),
-		Status: flow.Status(), Stations: []Station{},
+		Status: flow.Status(), Traced: flow.Traced, Stations: []Station{}, Trace: newTrace(flow),
 	}
 	for _, s := range flow.Stations {
 		p.Stations = append(p.Stations, Station{

@@ -65,7 +65,7 @@ func (s *Shape) UnmarshalJSON(data []byte) error {
 		"shock_on_lip_mach": &s.ShockOnLip, "lip_setback": &s.LipSetback, "duct_factor": &s.DuctFactor,
 		"terminal_shock": &s.Terminal, "capture_height_m": &s.HeightM, "width_m": &s.WidthM,
 		"corners_m": &s.Corners, "lip_m": &s.Lip, "shoulder_m": &s.Shoulder,
-		"members": &s.Members, "missing": &s.Missing,
+		"members": &s.Members, "missing": &s.Missing, "outline": &s.Outline,
 	}
 	for _, f := range fields {
 		if place, ok := own[f.Name]; ok {

@@ -88,8 +88,12 @@ func (p *page) contour(s *Shape) {
 		add(name, corner, surface)
 	}
 	cowl, _ := s.Quantities.Get("cowl_angle_deg")
-	add("shoulder", *s.Shoulder, float64(cowl))
-	add("cowl lip", *s.Lip, float64(cowl))
+	if s.Outline == nil {
+		add("shoulder", *s.Shoulder, float64(cowl))
+		add("cowl lip", *s.Lip, float64(cowl))
+	} else {
+		s.Outline.walls(len(s.Corners), add)
+	}
 	t := &table{columns: []column{{head: "point"}, {head: "x m"}, {head: "y m"}, {head: "surface behind, deg"}}}
 	xs, ys, angles := fixed(x, 4), fixed(y, 4), fixed(angle, 3)
 	for i, name := range names {
@@ -127,6 +131,9 @@ func (p *page) stations(points []Point) {
 			t.add(row...)
 		}
 		p.table(t)
+		if point.Trace != nil {
+			p.wrap(indent, point.Trace.text(point), indent)
+		}
 	}
 }
 

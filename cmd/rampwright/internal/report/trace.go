@@ -1,0 +1,172 @@
+package report
+
+import (
+	"fmt"
+	"math"
+
+	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
+)
+
+// Trace is what a trace of every wave says of one flight point: the source of its
+// quantities where the chain of straight shocks has no answer, a comparison beside
+// the chain where its lip shock misses the shoulder.
+type Trace struct {
+	WaveletDeg Number `json:"wavelet_deg"` // turning of one expansion wavelet
+	Threshold  Number `json:"threshold"`   // strength below which a wave is merged
+	Events     int    `json:"events"`
+	// Ending is why the captured stream was not followed to the throat plane.
+	Ending       *Ending        `json:"ending,omitempty"`
+	Capture      Number         `json:"capture"`
+	LipShockMiss Number         `json:"lip_shock_miss"` // negative ahead of the shoulder
+	Throat       Throat         `json:"throat"`
+	Closure      Closure        `json:"closure"`
+	Error        TraceError     `json:"error"`
+	Missing      Object[string] `json:"missing,omitzero"`
+}
+
+// Ending is where and why a trace ends early.
+type Ending struct {
+	Reason     string    `json:"reason"`
+	Site       string    `json:"site"`
+	PlaceM     [2]Number `json:"place_m"`
+	Mach       Number    `json:"mach"`
+	TurningDeg Number    `json:"turning_deg"`
+}
+
+// Throat is the average over the vertical plane at the shoulder: recovery, Mach
+// number and temperature over the mass, pressure over the area; ratios to the free
+// stream.
+type Throat struct {
+	XM                 Number `json:"x_m"`
+	HeightM            Number `json:"height_m"`
+	ShockRecovery      Number `json:"shock_recovery"`
+	Mach               Number `json:"mach"`
+	PressureRatio      Number `json:"pressure_ratio"`
+	TemperatureRatio   Number `json:"temperature_ratio"`
+	WorstTotalPressure Number `json:"worst_total_pressure_ratio"`
+	BestTotalPressure  Number `json:"best_total_pressure_ratio"`
+	Distortion         Number `json:"distortion"`
+}
+
+// Closure is what mass, momentum and energy of the captured stream tube leave open.
+type Closure struct {
+	Mass     Number `json:"mass"`
+	Momentum Number `json:"momentum"`
+	Energy   Number `json:"energy"`
+}
+
+// TraceError are the error bounds of a trace.
+type TraceError struct {
+	Capture       Number `json:"capture"`
+	SpillageDrag  Number `json:"spillage_drag"`
+	ShockRecovery Number `json:"shock_recovery"`
+	Mach          Number `json:"mach"`
+	PressureRatio Number `json:"pressure_ratio"`
+}
+
+// newTrace describes the trace of a point, nil where there is none.
+func newTrace(flow *inlet.PointFlow) *Trace {
+	t := flow.Trace
+	if t == nil {
+		return nil
+	}
+	none := Number(math.NaN())
+	trace := &Trace{
+		WaveletDeg: Number(degrees(t.Settings.Wavelet)), Threshold: Number(t.Threshold), Events: t.Events,
+		Capture: Number(t.Captured.Capture), LipShockMiss: Number(t.LipShockMiss),
+		Throat:  Throat{Number(t.Stations[0].X), none, none, none, none, none, none, none, none},
+		Closure: Closure{none, none, none},
+		Error:   TraceError{Number(t.Error.Capture), Number(t.Error.Spillage), none, none, none},
+	}
+	if e := t.Ending; e != nil {
+		trace.Ending = &Ending{e.Reason.String(), e.Site, pair(e.Place), Number(e.State.Mach), Number(degrees(e.Turning))}
+	}
+	if s := &t.Stations[0]; s.Err == nil {
+		trace.Throat = Throat{
+			Number(s.X), Number(s.Height), Number(s.Recovery), Number(s.Mach), Number(s.Pressure), Number(s.Temperature),
+			Number(s.Worst), Number(s.Best), Number(s.Distortion),
+		}
+		trace.Closure = Closure{Number(s.Closure.Mass), Number(s.Closure.Momentum), Number(s.Closure.Energy)}
+		if len(t.Error.Stations) > 0 {
+			e := t.Error.Stations[0]
+			trace.Error.ShockRecovery, trace.Error.Mach, trace.Error.PressureRatio = Number(e.Recovery), Number(e.Mach), Number(e.Pressure)
+		}
+	}
+	trace.Missing = trace.reasons(t)
+	return trace
+}
+
+// reasons says why numbers of a trace are null.
+func (t *Trace) reasons(from *wave.Trace) Object[string] {
+	var list Object[string]
+	add := func(name string, missing bool, why string) {
+		if missing {
+			list = append(list, Field[string]{name, why})
+		}
+	}
+	ended := "the trace ended ahead of it"
+	add("capture", !finite(float64(t.Capture)), ended)
+	add("lip_shock_miss", !finite(float64(t.LipShockMiss)), "no lip shock reaches the body")
+	add("throat", from.Stations[0].Err != nil, ended)
+	add("closure", from.Stations[0].Err != nil, ended)
+	bounds := []Number{t.Error.Capture, t.Error.SpillageDrag, t.Error.ShockRecovery, t.Error.Mach, t.Error.PressureRatio}
+	for _, b := range bounds {
+		if !finite(float64(b)) {
+			add("error", true, "this trace or the coarser one beside it ended ahead of it")
+			break
+		}
+	}
+	return list
+}
+
+// text tells the trace of a point in a sentence or two.
+func (t *Trace) text(point *Point) string {
+	settings := fmt.Sprintf("wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
+	if t.Ending != nil {
+		where := fmt.Sprintf("%s at %s, x %s m, y %s m, Mach %s", t.Ending.Reason, t.Ending.Site,
+			significant(float64(t.Ending.PlaceM[0])), significant(float64(t.Ending.PlaceM[1])), significant(float64(t.Ending.Mach)))
+		if point.Traced {
+			return fmt.Sprintf("Traced wave by wave (%s). The trace ends ahead of the throat: %s.", settings, where)
+		}
+		return fmt.Sprintf("Traced wave by wave (%s), the lip shock strikes the body %s and the stream does not reach the throat plane in a regular supersonic flow: %s. The throat above leaves that out.",
+			settings, t.missText(), where)
+	}
+	average := fmt.Sprintf("Mach %s, p/p0 %s, pt/pt0 %s", significant(float64(t.Throat.Mach)),
+		significant(float64(t.Throat.PressureRatio)), significant(float64(t.Throat.ShockRecovery)))
+	within := ""
+	if share := t.share(); finite(share) {
+		within = fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
+	}
+	if point.Traced {
+		return fmt.Sprintf("Traced wave by wave (%s): the throat averages are %s%s, best and worst stream tube differ by %s of the recovery; the mass closes to %.1g.",
+			settings, average, within, significant(float64(t.Throat.Distortion)), math.Abs(float64(t.Closure.Mass)))
+	}
+	return fmt.Sprintf("Traced wave by wave (%s), the lip shock strikes the body %s and reflects: averaged over the throat plane %s%s, in place of the state behind the lip shock.",
+		settings, t.missText(), average, within)
+}
+
+func (t *Trace) missText() string {
+	miss := float64(t.LipShockMiss)
+	switch {
+	case !finite(miss):
+		return "off the shoulder"
+	case miss < 0:
+		return significant(-miss) + " capture heights ahead of the shoulder"
+	}
+	return significant(miss) + " capture heights behind the shoulder"
+}
+
+// share is the error bound of the throat averages over their values.
+func (t *Trace) share() float64 {
+	return float64(t.Error.ShockRecovery) / float64(t.Throat.ShockRecovery)
+}
+
+// roundUp keeps one significant digit of a bound, rounded up.
+func roundUp(v float64) float64 {
+	if !(v > 0) {
+		return v
+	}
+	size := math.Pow(10, math.Floor(math.Log10(v)))
+	return math.Ceil(v/size-1e-9) * size
+}
