@@ -290,7 +290,7 @@ func drawings(study *study, flow *inlet.Flow) ([]file, error) {
 	if err != nil {
 		return nil, err
 	}
-	view, err := sideView(study.brief.Title, "preliminary geometry: inviscid flow, sharp edges; read the cautions of the result", flow)
+	view, err := sideView(study.brief.Title, "preliminary geometry: inviscid flow, sharp edges; read the cautions of the result", flow, &flow.Points[0])
 	if err != nil {
 		return nil, err
 	}

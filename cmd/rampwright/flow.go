@@ -13,34 +13,74 @@ import (
 
 	"rampwright/cmd/rampwright/internal/report"
 	"rampwright/problems"
+	"rampwright/problems/inlet"
 )
 
 func (a *app) flowCommand() *cobra.Command {
 	var of string
 	var strict bool
+	var picture picture
 	cmd := &cobra.Command{
 		Use: "flow BRIEF", Short: "Compute the exact flow of one fixed geometry at every flight point", Args: exactArgs(1),
 		Long: `Compute the exact flow of one fixed geometry at every flight point of the brief.
 
 Values the brief searches are fixed by flags (--ramp-angle-deg 8.08,7.22,8.44
 --cowl-angle-deg 8) or taken from a result folder (--of DIR), a flag winning. A
-detached shock is an answer, not an error: --strict turns it into exit code 4.`,
+detached shock is an answer, not an error: --strict turns it into exit code 4.
+
+Where ramp shocks cross ahead of the lip or fall inside it, and for an inlet given
+by its outline, every wave is traced and the throat is an average. --svg draws the
+waves of one flight point.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			study, err := read(cmd, args[0])
 			if err != nil {
 				return err
 			}
-			return a.flow(study, of, strict)
+			return a.flow(study, of, strict, picture)
 		},
 	}
 	cmd.Flags().StringVar(&of, "of", "", "take searched values from this result folder")
 	cmd.Flags().BoolVar(&strict, "strict", false, "exit with code 4 unless every point is attached")
+	cmd.Flags().StringVar(&picture.file, "svg", "", "draw the inlet and its waves into this file, which must not exist")
+	cmd.Flags().StringVar(&picture.at, "at", "", "flight point of the drawing (default the first)")
 	cmd.Flags().BoolVar(&a.json, "json", false, "print one JSON document")
 	briefFlags(cmd)
 	return cmd
 }
 
-func (a *app) flow(study *study, of string, strict bool) error {
+// picture is the drawing that flow is asked for: a file, and the flight point.
+type picture struct{ file, at string }
+
+// draw writes the side view at the point asked for.
+func (p picture) draw(title string, flow *inlet.Flow) error {
+	if p.file == "" {
+		if p.at != "" {
+			return &usageError{"--at names the flight point of a drawing, and there is none", "add --svg FILE"}
+		}
+		return nil
+	}
+	at := &flow.Points[0]
+	var names []string
+	for i := range flow.Points {
+		names = append(names, flow.Points[i].Point.Name)
+		if flow.Points[i].Point.Name == p.at {
+			at = &flow.Points[i]
+		}
+	}
+	if p.at != "" && at.Point.Name != p.at {
+		return &usageError{fmt.Sprintf("there is no flight point %q", p.at), "points: " + strings.Join(names, ", ")}
+	}
+	if flow.ContourErr != nil {
+		return &usageError{"nothing to draw: the contour does not close: " + flow.ContourErr.Error(), ""}
+	}
+	drawing, err := sideView(title, "preliminary geometry: inviscid flow, sharp edges; read the cautions of the flow", flow, at)
+	if err != nil {
+		return err
+	}
+	return writeNew(p.file, drawing)
+}
+
+func (a *app) flow(study *study, of string, strict bool, picture picture) error {
 	if study.problem == nil {
 		return &usageError{"flow computes an inlet; this brief poses the analytic problem " + study.analyticName(), "rampwright design searches it, rampwright fits shows how well it can be fitted"}
 	}
@@ -50,6 +90,9 @@ func (a *app) flow(study *study, of string, strict bool) error {
 	}
 	flow, err := study.problem.Flow(context.Background(), x)
 	if err != nil {
+		return err
+	}
+	if err := picture.draw(study.brief.Title, flow); err != nil {
 		return err
 	}
 	document := report.NewFlow(study.head(0), study.problem, flow)

@@ -33,6 +33,15 @@ func (a *app) writeStarter(file, scenario string) error {
 		}
 		return &usageError{fmt.Sprintf("there is no starter %q", scenario), hint}
 	}
+	if err := writeNew(file, data); err != nil {
+		return err
+	}
+	_, err := fmt.Fprintf(a.messages, "wrote %s; next: rampwright design %s\n", file, file)
+	return err
+}
+
+// writeNew writes a file that must not exist.
+func writeNew(file string, data []byte) error {
 	out, err := os.OpenFile(file, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
 	if errors.Is(err, fs.ErrExist) {
 		return &usageError{file + " exists and is not overwritten", "choose another name, or remove it first"}
@@ -46,6 +55,5 @@ func (a *app) writeStarter(file, scenario string) error {
 	if err := out.Close(); err != nil {
 		return errors.Join(err, os.Remove(file))
 	}
-	_, err = fmt.Fprintf(a.messages, "wrote %s; next: rampwright design %s\n", file, file)
-	return err
+	return nil
 }

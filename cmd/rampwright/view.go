@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"fmt"
 	"math"
+	"strings"
 
 	"rampwright/cmd/rampwright/internal/chart"
 	"rampwright/cmd/rampwright/internal/handoff"
@@ -14,30 +15,23 @@ import (
 
 const degree = 180 / math.Pi
 
-// sideView draws the inlet at its first flight point: mold line, shocks, lip
-// streamline and the names of the stations.
-func sideView(title, caution string, flow *inlet.Flow) ([]byte, error) {
-	at := &flow.Points[0]
+// sideView draws the inlet at one flight point: mold line, waves, lip streamline and
+// the names of the stations.
+func sideView(title, caution string, flow *inlet.Flow, at *inlet.PointFlow) ([]byte, error) {
 	shape := &flow.Contour
-	behind := ductLength(shape)
+	outer := along(shape.Lip, shape.CowlOuter, math.Max(flow.CowlLength, 0.1*shape.Lip.Y)/math.Cos(shape.CowlOuter))
 	view := chart.SideView{
 		Title:     title,
 		Subtitle:  []string{fmt.Sprintf("%s, Mach %.4g, incidence %.3g deg: %s", at.Point.Name, at.Point.Mach, at.Point.Incidence*degree, at.Status())},
 		Caution:   caution,
 		Incidence: at.Point.Incidence,
-		Body:      body(shape, behind),
-		CowlInner: []chart.Vertex{vertex("", shape.Lip), vertex("", along(shape.Lip, shape.CowlInner, innerLength(shape, behind)))},
-		CowlOuter: []chart.Vertex{vertex("", shape.Lip), vertex("", along(shape.Lip, shape.CowlOuter, math.Max(flow.CowlLength, 0.1*shape.Lip.Y)/math.Cos(shape.CowlOuter)))},
+		CowlOuter: []chart.Vertex{vertex("", shape.Lip), vertex("", outer)},
 		Stations:  stationPlaces(flow, at),
 	}
-	view.Body[0].Name = "leading edge"
-	view.CowlInner[0].Name = "cowl lip"
-	for _, s := range at.Shocks {
-		kind := chart.RampShock
-		if s.Name == "lip shock" {
-			kind = chart.LipShock
-		}
-		view.Waves = append(view.Waves, chart.Wave{Name: s.Name, Kind: kind, X1: s.From.X, Y1: s.From.Y, X2: s.To.X, Y2: s.To.Y})
+	view.Body, view.CowlInner = walls(flow)
+	view.Waves = waves(at, view.Body[len(view.Body)-1].X)
+	if at.Traced {
+		view.Subtitle = append(view.Subtitle, "traced wave by wave; waves of pressure ratios within 2 % of 1 are left out")
 	}
 	for _, p := range at.Streamline {
 		view.LipStreamline = append(view.LipStreamline, vertex("", p))
@@ -47,6 +41,64 @@ func sideView(title, caution string, flow *inlet.Flow) ([]byte, error) {
 		return nil, err
 	}
 	return out.Bytes(), nil
+}
+
+// walls are the body and the inner cowl as drawn, named where a label is due.
+func walls(flow *inlet.Flow) (inner, cowl []chart.Vertex) {
+	shape := &flow.Contour
+	if o := flow.Outline; o != nil {
+		for i, p := range o.Body {
+			name := ""
+			if i < len(shape.Corners) {
+				name = cornerName(i)
+			} else if p == shape.Shoulder {
+				name = "shoulder"
+			}
+			inner = append(inner, vertex(name, p))
+		}
+		for _, p := range o.CowlInner {
+			cowl = append(cowl, vertex("", p))
+		}
+	} else {
+		behind := ductLength(shape)
+		inner = body(shape, behind)
+		cowl = []chart.Vertex{vertex("", shape.Lip), vertex("", along(shape.Lip, shape.CowlInner, innerLength(shape, behind)))}
+	}
+	inner[0].Name, cowl[0].Name = "leading edge", "cowl lip"
+	return inner, cowl
+}
+
+// waves are the shocks of a point and, of a traced one, the rays of its fans. A
+// shock that others cut into pieces is named at the first.
+func waves(at *inlet.PointFlow, end float64) []chart.Wave {
+	var list []chart.Wave
+	named := map[string]bool{}
+	for _, s := range at.Shocks {
+		if s.From.X > end {
+			continue
+		}
+		wave := chart.Wave{Name: s.Name, Kind: waveKind(s), X1: s.From.X, Y1: s.From.Y, X2: s.To.X, Y2: s.To.Y}
+		if named[s.Name] {
+			wave.Name = ""
+		}
+		named[s.Name] = true
+		list = append(list, wave)
+	}
+	return list
+}
+
+func waveKind(s inlet.Segment) chart.WaveKind {
+	switch {
+	case s.Expansion:
+		return chart.Expansion
+	case s.Name == "":
+		return chart.DuctShock
+	case s.Name == "lip shock":
+		return chart.LipShock
+	case s.Name == "outer cowl shock":
+		return chart.CowlShock
+	}
+	return chart.RampShock
 }
 
 // ductLength is how much of the duct behind the shoulder is drawn and handed
@@ -92,7 +144,7 @@ func stationPlaces(flow *inlet.Flow, at *inlet.PointFlow) []chart.Vertex {
 	height := shape.Lip.Y
 	places := []chart.Vertex{{Name: "free stream", X: 0.02 * shape.Lip.X, Y: 0.75 * height}}
 	for i := range shape.Corners {
-		if i+1 >= len(at.Stations) {
+		if i+1 >= len(at.Stations) || !strings.HasPrefix(at.Stations[i+1].Name, "ramp ") {
 			return places
 		}
 		end := shape.Shoulder
@@ -102,6 +154,9 @@ func stationPlaces(flow *inlet.Flow, at *inlet.PointFlow) []chart.Vertex {
 		start := shape.Corners[i]
 		middle := contour.Point{X: (start.X + 2*end.X) / 3, Y: (start.Y + 2*end.Y) / 3}
 		places = append(places, vertex(at.Stations[i+1].Name, along(middle, shape.Angles[i]+math.Pi/2, 0.03*height)))
+	}
+	if at.Traced {
+		return places // what lies in the duct is not uniform
 	}
 	if last := at.Stations[len(at.Stations)-1]; last.Name == "throat" {
 		places = append(places, vertex("throat", along(along(shape.Shoulder, shape.CowlInner, 2*shape.Throat), shape.CowlInner+math.Pi/2, shape.Throat/2)))

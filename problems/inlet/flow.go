@@ -26,10 +26,12 @@ type Station struct {
 }
 
 // Segment is a straight shock as drawn: from the wall or lip it starts at to
-// where it ends.
+// where it ends. Of a traced point it is a piece between two crossings, or a ray of
+// an expansion; pieces that crossings and reflections made have no name.
 type Segment struct {
-	Name     string
-	From, To contour.Point
+	Name      string
+	From, To  contour.Point
+	Expansion bool
 }
 
 // PointFlow is the flow of a frozen inlet at one condition.
@@ -127,6 +129,11 @@ func (p *Problem) FlowBy(ctx context.Context, x []float64, settings wave.Setting
 		if a.trace == nil && a.missesShoulder() {
 			point.Trace, _ = a.tracing(settings) // without one nothing is compared
 		}
+		if point.Traced {
+			if t := a.downTheDuct(); t != nil {
+				point.Shocks = a.tracedSegments(t)
+			}
+		}
 		flow.Points = append(flow.Points, *point)
 	}
 	p.read(frozen.analysis(p.definition.Points[0]), flow.Evaluation, next, -1)
@@ -202,7 +209,7 @@ func (p *Problem) pointFlow(a *analysis) *PointFlow {
 	}
 	p.read(a, f.Evaluation, 0, 0)
 	if f.Traced {
-		f.Stations, f.Shocks, f.Streamline = a.tracedStations(), a.tracedSegments(), a.trace.Captured.Streamline
+		f.Stations, f.Shocks, f.Streamline = a.tracedStations(), a.tracedSegments(a.trace), a.trace.Captured.Streamline
 	} else {
 		f.Stations, f.Shocks, f.Streamline = a.stations(), a.segments(), a.lipStreamline()
 	}
@@ -272,11 +279,11 @@ func (a *analysis) segments() []Segment {
 	for i := range a.attached {
 		end, ok := contour.Meet(level, a.shockLine(i))
 		if ok {
-			list = append(list, Segment{rampName(i) + " shock", a.shape.Corners[i], end})
+			list = append(list, Segment{Name: rampName(i) + " shock", From: a.shape.Corners[i], To: end})
 		}
 	}
 	if a.throatErr == nil && a.design.LipTurning > 0 {
-		list = append(list, Segment{lipShockName, a.shape.Lip, a.lipFoot()})
+		list = append(list, Segment{Name: lipShockName, From: a.shape.Lip, To: a.lipFoot()})
 	}
 	return list
 }

@@ -3,6 +3,7 @@ package inlet
 import (
 	"math"
 
+	"rampwright/problems/contour"
 	"rampwright/problems/wave"
 )
 
@@ -63,29 +64,67 @@ func cornerShock(t *wave.Trace, corner int) (wave.Front, bool) {
 	return wave.Front{}, false
 }
 
-// tracedSegments lists the shocks of a trace that are strong enough to draw, with
-// the name of the corner or lip they start from.
-func (a *analysis) tracedSegments() []Segment {
+// tracedSegments lists the shocks and expansions of a trace that are strong enough
+// to draw, with the name of the corner or lip they start from.
+func (a *analysis) tracedSegments(t *wave.Trace) []Segment {
 	var list []Segment
-	for _, f := range a.trace.Fronts {
-		if f.Kind != wave.Shock || a.rise(f) < drawnRise {
+	for _, f := range t.Fronts {
+		if f.Kind == wave.Slip || rise(t, f) < drawnRise || contour.Distance(f.From, f.To) < drawnLength*a.shape.height {
 			continue
 		}
-		name := "shock"
-		switch {
-		case f.Source > 0 && f.Source <= len(a.shape.Corners):
-			name = rampName(f.Source-1) + " shock"
-		case f.Source == -1:
-			name = lipShockName
-		}
-		list = append(list, Segment{name, f.From, f.To})
+		list = append(list, Segment{a.sourceName(f), f.From, f.To, f.Kind == wave.Wavelet})
 	}
 	return list
 }
 
-// drawnRise is the least |p2/p1 - 1| of a shock worth drawing.
-const drawnRise = 0.02
+// drawnRise is the least |ln(p2/p1)| of a wave worth drawing, drawnLength the least
+// length, capture heights.
+const (
+	drawnRise   = 0.02
+	drawnLength = 2e-3
+)
 
-func (a *analysis) rise(f wave.Front) float64 {
-	return math.Abs(a.trace.Regions[f.Below].Pressure/a.trace.Regions[f.Above].Pressure - 1)
+func rise(t *wave.Trace, f wave.Front) float64 {
+	return math.Abs(math.Log(t.Regions[f.Below].Pressure / t.Regions[f.Above].Pressure))
+}
+
+// drawnDuct is how much of the duct behind the shoulder of a design a drawing shows,
+// throat heights.
+const drawnDuct = 4
+
+// downTheDuct traces the point once more to the end of what is drawn, in default
+// wavelets; nil where that tells less than the trace of the quantities.
+func (a *analysis) downTheDuct() *wave.Trace {
+	g := a.shape.geometry(a.def)
+	end := a.shape.Shoulder.X + drawnDuct*a.shape.Throat*math.Cos(a.shape.CowlInner)
+	if o := a.def.Outline; o != nil {
+		end = math.Min(o.Body[len(o.Body)-1].X, o.CowlInner[len(o.CowlInner)-1].X)
+	}
+	if !(end > g.Planes[0]) {
+		return nil
+	}
+	throat := g.Planes[0]
+	g.Planes = []float64{end}
+	free := wave.FreeStream{Mach: a.point.Mach, Incidence: a.point.Incidence}
+	t, err := wave.Run(a.def.Gas, free, g, wave.Settings{WithoutError: true})
+	if err != nil || t.Ending != nil && t.Ending.Place.X < throat {
+		return nil
+	}
+	return t
+}
+
+// sourceName names a shock that starts at a corner of a ramp, at the lip or on the
+// outer cowl; "" for any other wave.
+func (a *analysis) sourceName(f wave.Front) string {
+	switch {
+	case f.Kind != wave.Shock:
+		return ""
+	case f.Source > 0 && f.Source <= len(a.shape.Corners):
+		return rampName(f.Source-1) + " shock"
+	case f.Source == wave.SourceLip:
+		return lipShockName
+	case f.Source == wave.SourceOuterCowl:
+		return "outer cowl shock"
+	}
+	return ""
 }

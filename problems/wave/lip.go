@@ -2,10 +2,15 @@ package wave
 
 import "rampwright/problems/contour"
 
-// Sources of fronts other than body corners, which count from 1.
+// Sources of fronts other than body corners, which count from 1; see Front.Source.
 const (
-	sourceLip   int16 = -1
-	sourceOuter int16 = -2
+	SourceLip       = -1
+	SourceOuterCowl = -2
+)
+
+const (
+	sourceLip   int16 = SourceLip
+	sourceOuter int16 = SourceOuterCowl
 )
 
 // parting is where the stream ahead meets the lip: fronts up to below pass under

@@ -25,7 +25,8 @@ var strokes = [...]stroke{
 	LipShock:      {"#c24e00", 1.6, "9 3"},
 	TerminalShock: {"#8a2f7c", 3, "3 1.5"},
 	CowlShock:     {"#45535f", 1.3, "5 3"},
-	Expansion:     {"#7a6200", 1.1, "2 2.5"},
+	Expansion:     {"#7a6200", 0.7, "2 2.5"},
+	DuctShock:     {"#005f9e", 1.2, "5 2"},
 }
 
 var streamlineStroke = stroke{"#00735a", 1.3, "12 3 2 3"}

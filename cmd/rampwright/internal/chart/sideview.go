@@ -28,6 +28,8 @@ const (
 	CowlShock
 	// Expansion is one ray of a fan.
 	Expansion
+	// DuctShock is a shock that a crossing or a reflection made.
+	DuctShock
 )
 
 // String returns the word used in the key of the drawing.
@@ -38,7 +40,7 @@ func (k WaveKind) String() string {
 	return waveWords[k]
 }
 
-var waveWords = [...]string{"ramp shock", "lip shock", "terminal shock", "outer cowl shock", "expansion"}
+var waveWords = [...]string{"ramp shock", "lip shock", "terminal shock", "outer cowl shock", "expansion", "crossed or reflected shock"}
 
 // Wave is a straight front from (X1, Y1) to (X2, Y2), in metres. An empty name
 // draws no label.

@@ -77,6 +77,9 @@ func (d drawing) describe() string {
 	var words []string
 	words = append(words, "Side view to scale, lengths in metres, flow from left to right.")
 	for _, w := range d.view.Waves {
+		if w.Name == "" {
+			continue // one of many crossed and reflected waves
+		}
 		words = append(words, fmt.Sprintf("%s (%s) from (%.4g, %.4g) to (%.4g, %.4g).", w.Name, w.Kind, w.X1, w.Y1, w.X2, w.Y2))
 	}
 	return strings.Join(words, " ")
