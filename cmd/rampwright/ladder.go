@@ -75,6 +75,9 @@ func (a *app) rungs(cmd *cobra.Command, file, counts string) (*ladder, error) {
 	if base.problem == nil {
 		return nil, &usageError{"a ladder counts ramps; this brief poses the analytic problem " + base.analyticName(), ""}
 	}
+	if base.brief.Definition.Outline != nil {
+		return nil, brief.CheckSearch(base.brief)
+	}
 	l := &ladder{base: base}
 	open := false
 	for n := low; n <= high; n++ {

@@ -41,6 +41,7 @@ type drawnFlow struct {
 		ShockOnLip    float64      `json:"shock_on_lip_mach"`
 		CowlAngle     float64      `json:"cowl_angle_deg"`
 		Corners       [][2]float64 `json:"corners_m"`
+		Setback       float64      `json:"lip_setback"`
 		Lip           [2]float64   `json:"lip_m"`
 		Shoulder      [2]float64   `json:"shoulder_m"`
 	}
@@ -234,7 +235,8 @@ func checkShocks(t *testing.T, view *sideViewFile, flow *drawnFlow) {
 		end := xy{from.x + (lip.y-from.y)/math.Tan(flow.waveAngle(t, name)), lip.y}
 		near(t, "end of the shock of "+name, drawn[1], end, height)
 		if focused {
-			near(t, "end of the shock of "+name, drawn[1], lip, height)
+			focus := xy{lip.x - flow.Inlet.Setback*height, lip.y}
+			near(t, "end of the shock of "+name, drawn[1], focus, height)
 		}
 	}
 	drawn, ok := view.waves["lip shock"]

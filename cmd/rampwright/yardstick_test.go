@@ -19,8 +19,10 @@ import (
 const (
 	// leastShare of the independent optimum a design must reach.
 	leastShare = 0.9999
-	// yardstickStarts are random starts of the independent search.
-	yardstickStarts = 200
+	// yardstickStarts are random starts of the independent search, fewer where a
+	// flight point has to be traced.
+	yardstickStarts       = 200
+	yardstickTracedStarts = 60
 	// yardstickAgain are the best of them searched again.
 	yardstickAgain = 10
 	// yardstickRounds is how often.
@@ -103,6 +105,7 @@ type penalty struct {
 	parts   []indexedPart
 	weights float64 // sum over the parts
 	linear  []linearLimit
+	traced  bool // a flight point may lie beyond shock-on-lip
 }
 
 // indexed is a problem with what a search asks again and again.
@@ -137,6 +140,10 @@ const penaltyWeight = 6
 func newPenalty(s *study) *penalty {
 	quantities := s.problem.Quantities()
 	p := &penalty{problem: &indexed{s.problem, s.problem.Variables(), len(quantities)}}
+	for _, point := range s.problem.Definition().Points {
+		lip := s.problem.Definition().ShockOnLip
+		p.traced = p.traced || point.Mach > lip.Low
+	}
 	for _, limit := range s.limits {
 		for i, q := range quantities {
 			if q.Name != limit.Quantity || q.Point != limit.Point {
@@ -258,7 +265,11 @@ func (p *penalty) insideLinear(u []float64) bool {
 func (p *penalty) search(t *testing.T) float64 {
 	t.Helper()
 	random := rand.New(rand.NewPCG(1, 200))
-	begins := make([][]float64, yardstickStarts)
+	starts := yardstickStarts
+	if p.traced {
+		starts = yardstickTracedStarts
+	}
+	begins := make([][]float64, starts)
 	for i := range begins {
 		begins[i] = p.start(random)
 	}

@@ -39,3 +39,26 @@ func BenchmarkEvaluateExplicit(b *testing.B) {
 		return nil
 	})
 }
+
+// BenchmarkEvaluateTraced is one point beyond the chain: the merged ramp shocks
+// pass outside a lip set back.
+func BenchmarkEvaluateTraced(b *testing.B) { traced(b, first{}) }
+
+// BenchmarkVerifyTraced is the same by the second route, with its bounds.
+func BenchmarkVerifyTraced(b *testing.B) { traced(b, second{}) }
+
+func traced(b *testing.B, r route) {
+	d := veyric().at(6.4, 0)
+	d.LipSetback = Fixed(0.06)
+	p, err := New(d)
+	if err != nil {
+		b.Fatal(err)
+	}
+	dst := problems.NewEvaluation(len(p.Quantities()))
+	b.ReportAllocs()
+	for b.Loop() {
+		if err := p.evaluate(context.Background(), r, nil, dst); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

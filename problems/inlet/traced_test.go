@@ -5,6 +5,7 @@ import (
 	"errors"
 	"math"
 	"math/rand/v2"
+	"sync"
 	"testing"
 
 	"rampwright/problems"
@@ -104,5 +105,124 @@ func TestTracedShockOnLipIsTheChain(t *testing.T) {
 				}
 			}
 		}
+	}
+}
+
+// Where no wave strikes the lip or the shoulder at the design condition, a flow
+// changes continuously: just above shock-on-lip the shocks fall inside the lip by
+// little, and capture, spillage and the flow along the ramps are nearly those just
+// below. (The throat is not: the duct sees another wave pattern.)
+func TestQuantitiesAreContinuousAcrossShockOnLip(t *testing.T) {
+	for _, ramps := range [][]float64{{10}, {6, 7}, {5, 6, 7}} {
+		d := veyric().at(6, 0).lipTurned(6)
+		d.RampAngle = nil
+		for _, angle := range ramps {
+			d.RampAngle = append(d.RampAngle, Fixed(angle))
+		}
+		frozen := problemOf(t, d).Freeze(nil)
+		at := func(mach float64) *PointFlow {
+			point := d.Points[0]
+			point.Mach = mach
+			f, err := frozen.At(context.Background(), point, wave.Settings{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			return f
+		}
+		const step = 1e-4
+		below, above := at(6-step), at(6+step)
+		if below.Traced || !above.Traced {
+			t.Fatalf("traced below %t, above %t: %s, %s", below.Traced, above.Traced, below.Status(), above.Status())
+		}
+		for name, tolerance := range map[string]float64{
+			"capture": 20 * step, "spillage_drag": 20 * step, "mass_flow_kg_s": 20 * step, "lip_clearance": 20 * step,
+			"ramp_attachment_margin_deg": 20 * step, "cowl_drag": step, "cowl_attachment_margin_deg": 20 * step,
+		} {
+			a, errA := below.Value(name)
+			b, errB := above.Value(name)
+			if errA != nil || errB != nil {
+				t.Fatalf("%s: %v, %v", name, errA, errB)
+			}
+			within(t, name+" above and below shock-on-lip", b, a, tolerance)
+		}
+		if clearance, _ := above.Value("lip_clearance"); !(clearance < 0) {
+			t.Errorf("clearance %v of a shock inside the lip", clearance)
+		}
+	}
+}
+
+// A frozen inlet answers at any condition as the problem does at its points, and to
+// many callers at once.
+func TestFrozenInletAnswersAsTheProblem(t *testing.T) {
+	d := veyric()
+	d.LipSetback = Fixed(0.05)
+	d.Points = append(d.Points, Point{Name: "over", Mach: 6.4, Pressure: 1984, Temperature: 223.18})
+	p := problemOf(t, d)
+	dst := problems.NewEvaluation(len(p.Quantities()))
+	if err := p.Evaluate(context.Background(), nil, dst); err != nil {
+		t.Fatal(err)
+	}
+	frozen := p.Freeze(nil)
+	var wait sync.WaitGroup
+	for i, point := range d.Points {
+		wait.Go(func() {
+			f, err := frozen.At(context.Background(), point, SearchTrace())
+			if err != nil {
+				t.Error(err)
+				return
+			}
+			if f.Traced != (point.Name == "over") || f.Err != nil {
+				t.Errorf("%s: traced %t, %s", point.Name, f.Traced, f.Status())
+			}
+			for k, value := range f.Evaluation.Values {
+				want := dst.Values[i*len(f.Quantities)+k]
+				if value != want && !(math.IsNaN(value) && math.IsNaN(want)) {
+					t.Errorf("%s at %s: %v, of the problem %v", f.Quantities[k].Name, point.Name, value, want)
+				}
+			}
+			least, _ := f.Value("lip_clearance")
+			for _, shock := range everyRampShock(3) {
+				if member, _ := f.Member("lip_clearance", shock); member < least {
+					t.Errorf("%s has %v, the least is %v", shock, member, least)
+				}
+			}
+		})
+	}
+	wait.Wait()
+	if _, reason := mustAt(t, frozen, d.Points[0]).Value("recovry"); reason == nil {
+		t.Error("a name that does not exist has a value")
+	}
+	cancelled, cancel := context.WithCancel(context.Background())
+	cancel()
+	if _, err := frozen.At(cancelled, d.Points[0], SearchTrace()); !errors.Is(err, context.Canceled) {
+		t.Errorf("a cancelled context: %v", err)
+	}
+}
+
+func mustAt(t *testing.T, f *Frozen, point Point) *PointFlow {
+	t.Helper()
+	flow, err := f.At(context.Background(), point, SearchTrace())
+	if err != nil {
+		t.Fatal(err)
+	}
+	return flow
+}
+
+// Shocks of a focused design that turn the flow by more than a regular reflection
+// bears, all at once, end in a Mach reflection at the cowl, in place and words.
+func TestSwallowedShocksOfASteepDesignEndAtTheCowl(t *testing.T) {
+	d := veyric().at(6.66, 0)
+	f := mustAt(t, problemOf(t, d).Freeze(nil), d.Points[0])
+	if f.Err == nil || f.Trace == nil || f.Trace.Ending == nil {
+		t.Fatalf("status %s", f.Status())
+	}
+	if place := f.Trace.Ending.Place; !(place.Y > 0.15) {
+		t.Errorf("ended at %v", place)
+	}
+	if _, reason := f.Value("recovery"); phrase(reason) != f.Status() {
+		t.Errorf("recovery is missing for %v, the status is %s", reason, f.Status())
+	}
+	if capture, reason := f.Value("capture"); reason != nil || math.Abs(capture-1) > 1e-9 {
+		t.Errorf("capture %v (%v)", capture, reason)
 	}
 }

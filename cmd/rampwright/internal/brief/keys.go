@@ -197,6 +197,8 @@ func (k Key) Allowed() string {
 		return join(k.Choices)
 	case Side:
 		return "a decimal number or none"
+	case Wall:
+		return fmt.Sprintf("%d to %d points [x, y], x rising", leastPoints, mostPoints)
 	case Parts:
 		return "list of up to " + shortNumber(k.High) + " sections"
 	default:

@@ -59,11 +59,10 @@ func (r *reader) wall(part *node, name string) []contour.Point {
 		r.wrongShape(n, name, sequence)
 		return nil
 	case len(n.items) < leastPoints && !n.partial || len(n.items) > mostPoints:
-		r.add(n, Problem{Message: fmt.Sprintf("%s lists %d points", name, len(n.items)), Allowed: k.Allowed()})
+		r.add(n, Problem{Message: name + " has too few or too many points", Value: fmt.Sprint(len(n.items)), Allowed: k.Allowed()})
 		return nil
 	}
 	points, sound := make([]contour.Point, len(n.items)), !n.partial
-	texts := make([]string, len(n.items))
 	for i, item := range n.items {
 		p, ok := r.point(item, k, fmt.Sprintf("point %d of %s", i+1, name))
 		if ok && sound && i > 0 && !(p.X > points[i-1].X) {
@@ -75,12 +74,12 @@ func (r *reader) wall(part *node, name string) []contour.Point {
 			ok = false
 		}
 		points[i], sound = p, sound && ok
-		texts[i] = pointText(p)
 	}
 	if !sound {
 		return nil
 	}
-	r.record(k.Path(), "["+join(texts)+"]", k.Unit, n)
+	last := len(points) - 1
+	r.record(k.Path(), fmt.Sprintf("%d points, %s to %s", len(points), pointText(points[0]), pointText(points[last])), k.Unit, n)
 	return points
 }
 
@@ -91,6 +90,7 @@ func (r *reader) point(n *node, k Key, name string) (p contour.Point, ok bool) {
 		return p, false
 	}
 	ok = !n.partial
+	k.Form = Number
 	for i, to := range []*float64{&p.X, &p.Y} {
 		if i >= len(n.items) {
 			return p, false

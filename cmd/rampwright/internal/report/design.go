@@ -62,6 +62,7 @@ type Best struct {
 	Predicted Object[Object[Number]]         `json:"predicted"` // of the quantities with a surrogate
 	Error     Object[Object[Number]]         `json:"error"`     // predicted less exact
 	Limits    []Limit                        `json:"limits"`
+	Traced    []TracedPoint                  `json:"traced,omitempty"`
 }
 
 // Candidate is one design in short.
@@ -242,7 +243,7 @@ func (s *Study) best(list []reading) Best {
 	b := Best{
 		Candidate: s.candidate(c), Limits: []Limit{},
 		Exact: Object[Object[Number]]{}, Members: Object[Object[Object[Number]]]{}, Missing: Object[Object[string]]{},
-		Predicted: Object[Object[Number]]{}, Error: Object[Object[Number]]{},
+		Predicted: Object[Object[Number]]{}, Error: Object[Object[Number]]{}, Traced: s.tracedPoints(),
 	}
 	predicted := s.predicted(list)
 	for _, point := range s.points() {

@@ -80,7 +80,7 @@ func TestFlowKeys(t *testing.T) {
 	problem, flow := flowOf(t, ramjet(), 8, 5, 5, 3)
 	want := slices.Concat(
 		strings.Fields("format program title brief_hash inlet"), under("inlet", shapeKeys),
-		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status quantities members missing stations"),
+		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status traced quantities members missing stations"),
 		under("points.stations", stationKeys),
 		strings.Fields("cautions assumptions"))
 	got := keyPaths(t, NewFlow(head, problem, flow).JSON())
@@ -100,7 +100,7 @@ func TestDesignKeys(t *testing.T) {
 		[]string{"evaluations"}, under("evaluations", "samples infill verify surrogate"),
 		strings.Fields("conflicts relaxation rounded play notes history"), under("history", "evaluations aim violation error radius"),
 		[]string{"inlet"}, under("inlet", shapeKeys),
-		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status stations"),
+		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status traced stations"),
 		under("points.stations", stationKeys),
 		strings.Fields("cautions assumptions"))
 	got := keyPaths(t, NewDesign(head, study(t)).JSON())

@@ -340,7 +340,7 @@ func (s *Study) offDesign(ctx context.Context) (*OffDesign, error) {
 	if err != nil {
 		return nil, err
 	}
-	flow, err := problem.Flow(ctx, s.Result.Best.X)
+	flow, err := problem.FlowBy(ctx, s.Result.Best.X, inlet.SearchTrace())
 	if err != nil {
 		return nil, err
 	}

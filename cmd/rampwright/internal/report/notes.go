@@ -52,6 +52,7 @@ func (s *Study) notes() []string {
 	if note := s.notUnique(); note != "" {
 		notes = append(notes, note)
 	}
+	notes = append(notes, s.tracedNotes()...)
 	return append(notes, s.slower()...)
 }
 
@@ -117,7 +118,7 @@ func (s *Study) slower() []string {
 	if err != nil {
 		return nil
 	}
-	flow, err := problem.Flow(context.Background(), s.Result.Best.X)
+	flow, err := problem.FlowBy(context.Background(), s.Result.Best.X, inlet.SearchTrace())
 	if err != nil || flow.Points[0].Err != nil {
 		return nil
 	}
