@@ -338,6 +338,23 @@ func TestRouteGap(t *testing.T) {
 	}
 }
 
+// Numerical routes may differ by the bounds of the second, no more, and a value
+// without a finite bound agrees with nothing.
+func TestRouteGapBeyondTheBounds(t *testing.T) {
+	for _, c := range []struct{ b, bound, want float64 }{
+		{2.01, 0.02, 0}, {2.01, 0.005, 0.0025}, {1.99, 0.005, 0.0025}, {2, math.Inf(1), math.Inf(1)}, {2, 0, 0},
+	} {
+		second := problems.NewEvaluation(2)
+		second.Set(0, c.b)
+		second.Set(1, 5)
+		second.Widen(0, c.bound)
+		first := &problems.Evaluation{Values: []float64{2, 5}}
+		if got := routeGap(first, second); math.Abs(got-c.want) > 1e-12 && got != c.want {
+			t.Errorf("2 against %g within %g: %g, want %g", c.b, c.bound, got, c.want)
+		}
+	}
+}
+
 // Runners-up are distinct designs that hold every limit, best first.
 func TestFinalistsAreDistinct(t *testing.T) {
 	task := disk(1)

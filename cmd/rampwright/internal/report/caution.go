@@ -210,8 +210,27 @@ func lipShockMiss(in *inspection, p *inlet.PointFlow) (float64, string, string) 
 	if !(miss > largestMiss) {
 		return 0, "", ""
 	}
-	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.",
-		p.Point.Name, miss, largestMiss), fmt.Sprintf("%.3g", miss)
+	if p.Traced { // the throat is an average behind the reflections
+		return 0, "", ""
+	}
+	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.%s",
+		p.Point.Name, miss, largestMiss, in.tracedThroat(p)), fmt.Sprintf("%.3g", miss)
+}
+
+// tracedThroat is the sentence on the throat of a trace beside the chain.
+func (in *inspection) tracedThroat(p *inlet.PointFlow) string {
+	switch t := p.Trace; {
+	case t == nil:
+		return ""
+	case t.Ending != nil:
+		return fmt.Sprintf(" Traced, no regular supersonic flow reaches the throat plane: %s at %s.", t.Ending.Reason, t.Ending.Site)
+	default:
+		throat := in.value("throat_mach", p)
+		if mach := in.value(terminalMachQuantity, p); finite(mach) {
+			throat = mach
+		}
+		return fmt.Sprintf(" Traced, its average Mach number is %s in place of %s.", significant(t.Stations[0].Mach), significant(throat))
+	}
 }
 
 // separationExtrapolated looks at the Mach numbers ahead of the corner shocks of

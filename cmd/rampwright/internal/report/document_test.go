@@ -81,8 +81,8 @@ func TestFlowKeys(t *testing.T) {
 	want := slices.Concat(
 		strings.Fields("format program title brief_hash inlet"), under("inlet", shapeKeys),
 		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status traced quantities members missing stations"),
-		under("points.stations", stationKeys),
-		strings.Fields("cautions assumptions"))
+		under("points.stations", stationKeys), []string{"points.trace"}, under("points.trace", traceKeys), under("points.trace", endingKeys),
+		strings.Fields("points.trace.missing cautions assumptions"))
 	got := keyPaths(t, NewFlow(head, problem, flow).JSON())
 	if !slices.Equal(got, want) {
 		t.Errorf("keys\n%s\nwant\n%s", strings.Join(got, " "), strings.Join(want, " "))

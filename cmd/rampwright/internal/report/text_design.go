@@ -28,6 +28,7 @@ func (d *DesignDocument) Text(width int) string {
 	if d.Inlet != nil {
 		p.contour(d.Inlet)
 		p.stations(d.Points)
+		p.traces(d.Points)
 		p.quantities(d.readings, d.Points)
 	} else {
 		d.plainQuantities(p)

@@ -17,6 +17,7 @@ func (d *FlowDocument) Text(width int) string {
 	p.wrap("", d.answer(), "")
 	p.contour(&d.Inlet)
 	p.stations(d.Points)
+	p.traces(d.Points)
 	p.quantities(d.readings, d.Points)
 	p.assumptions(d.Assumptions)
 	return p.String()
@@ -131,9 +132,21 @@ func (p *page) stations(points []Point) {
 			t.add(row...)
 		}
 		p.table(t)
-		if point.Trace != nil {
-			p.wrap(indent, point.Trace.text(point), indent)
+	}
+}
+
+// traces writes what the traces say, point by point.
+func (p *page) traces(points []Point) {
+	headed := false
+	for i := range points {
+		if points[i].Trace == nil {
+			continue
 		}
+		if !headed {
+			p.heading("Wave by wave")
+			headed = true
+		}
+		p.wrap(indent+points[i].Name+": ", points[i].Trace.text(&points[i]), indent+indent)
 	}
 }
 

@@ -122,28 +122,27 @@ func (t *Trace) reasons(from *wave.Trace) Object[string] {
 
 // text tells the trace of a point in a sentence or two.
 func (t *Trace) text(point *Point) string {
-	settings := fmt.Sprintf("wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
+	settings := fmt.Sprintf("expansion wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
 	if t.Ending != nil {
 		where := fmt.Sprintf("%s at %s, x %s m, y %s m, Mach %s", t.Ending.Reason, t.Ending.Site,
 			significant(float64(t.Ending.PlaceM[0])), significant(float64(t.Ending.PlaceM[1])), significant(float64(t.Ending.Mach)))
 		if point.Traced {
-			return fmt.Sprintf("Traced wave by wave (%s). The trace ends ahead of the throat: %s.", settings, where)
+			return fmt.Sprintf("traced (%s). The trace ends ahead of the throat: %s.", settings, where)
 		}
-		return fmt.Sprintf("Traced wave by wave (%s), the lip shock strikes the body %s and the stream does not reach the throat plane in a regular supersonic flow: %s. The throat above leaves that out.",
-			settings, t.missText(), where)
+		return fmt.Sprintf("the lip shock strikes the body %s. Traced on (%s), no regular supersonic flow reaches the throat plane: %s. The throat state of the table leaves that out.",
+			t.missText(), settings, where)
 	}
-	average := fmt.Sprintf("Mach %s, p/p0 %s, pt/pt0 %s", significant(float64(t.Throat.Mach)),
+	average := fmt.Sprintf("Mach %s, static pressure ratio %s, total pressure ratio %s", significant(float64(t.Throat.Mach)),
 		significant(float64(t.Throat.PressureRatio)), significant(float64(t.Throat.ShockRecovery)))
-	within := ""
 	if share := t.share(); finite(share) {
-		within = fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
+		average += fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
 	}
 	if point.Traced {
-		return fmt.Sprintf("Traced wave by wave (%s): the throat averages are %s%s, best and worst stream tube differ by %s of the recovery; the mass closes to %.1g.",
-			settings, average, within, significant(float64(t.Throat.Distortion)), math.Abs(float64(t.Closure.Mass)))
+		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery. The mass of the captured stream closes to %.1g.",
+			settings, average, significant(float64(t.Throat.Distortion)), math.Abs(float64(t.Closure.Mass)))
 	}
-	return fmt.Sprintf("Traced wave by wave (%s), the lip shock strikes the body %s and reflects: averaged over the throat plane %s%s, in place of the state behind the lip shock.",
-		settings, t.missText(), average, within)
+	return fmt.Sprintf("the lip shock strikes the body %s and reflects. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
+		t.missText(), settings, average)
 }
 
 func (t *Trace) missText() string {

@@ -1,0 +1,124 @@
+package report
+
+import (
+	"encoding/json"
+	"slices"
+	"strings"
+	"testing"
+
+	"rampwright/problems/contour"
+	"rampwright/problems/inlet"
+)
+
+// swallowed is the Mach 6 article set back, flown above shock-on-lip so that its
+// shocks merge and pass outside, and faster so that they fall inside the lip.
+func swallowed() inlet.Definition {
+	d := supersonic()
+	d.LipSetback = inlet.Fixed(0.04)
+	d.Points = append(d.Points,
+		inlet.Point{Name: "over", Mach: 6.4, Pressure: 1984, Temperature: 223.18},
+		inlet.Point{Name: "beyond", Mach: 8, Pressure: 1984, Temperature: 223.18},
+		inlet.Point{Name: "slow", Mach: 4.5, Pressure: 3600, Temperature: 219.4})
+	return d
+}
+
+const traceKeys = "wavelet_deg threshold events capture lip_shock_miss throat throat.x_m throat.height_m throat.shock_recovery " +
+	"throat.mach throat.pressure_ratio throat.temperature_ratio throat.worst_total_pressure_ratio throat.best_total_pressure_ratio " +
+	"throat.distortion closure closure.mass closure.momentum closure.energy error"
+
+const endingKeys = "ending ending.reason ending.site ending.place_m ending.mach ending.turning_deg"
+
+// A traced point says so, with settings, averages and error bounds; a trace beside
+// the chain is shown and does not touch the quantities; one that ends says where.
+func TestTracesInTheFlow(t *testing.T) {
+	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
+	document := NewFlow(head, problem, flow)
+	raw := document.JSON()
+	var read struct {
+		Points []struct {
+			Name, Status string
+			Traced       bool
+			Quantities   map[string]*float64
+			Trace        *struct {
+				Ending *struct{ Reason, Site string }
+				Throat struct {
+					Mach *float64
+				}
+				Error map[string]*float64
+			}
+		}
+	}
+	if err := json.Unmarshal(raw, &read); err != nil {
+		t.Fatal(err)
+	}
+	cruise, over, beyond, slow := read.Points[0], read.Points[1], read.Points[2], read.Points[3]
+	if cruise.Traced || cruise.Trace != nil {
+		t.Errorf("at shock-on-lip: %+v", cruise)
+	}
+	if !over.Traced || over.Status != "attached" || over.Trace == nil || over.Trace.Throat.Mach == nil ||
+		*over.Trace.Throat.Mach != *over.Quantities["throat_mach"] || !(*over.Trace.Error["mach"] < 0.02) {
+		t.Errorf("merged shocks outside the lip: %+v", over)
+	}
+	if !beyond.Traced || beyond.Trace == nil || beyond.Trace.Ending == nil || !strings.HasPrefix(beyond.Status, beyond.Trace.Ending.Reason) || beyond.Quantities["throat_mach"] != nil {
+		t.Errorf("shocks inside the lip: %+v", beyond)
+	}
+	if slow.Traced || slow.Trace == nil || slow.Trace.Throat.Mach == nil || *slow.Trace.Throat.Mach == *slow.Quantities["throat_mach"] {
+		t.Errorf("below shock-on-lip: %+v", slow)
+	}
+	for _, key := range under("points.trace", traceKeys) {
+		if !slices.Contains(keyPaths(t, raw), key) {
+			t.Errorf("no key %s", key)
+		}
+	}
+	text := document.Text(100)
+	for _, want := range []string{
+		"over: traced (expansion wavelets of 0.5 deg, threshold", "Throat averages: Mach", "throat average",
+		"beyond: traced", "The trace ends ahead of the throat: ", "capture heights ahead of the shoulder and reflects. Traced on", "ahead of the lip",
+		"The flow at over is traced wave by wave",
+	} {
+		if !strings.Contains(strings.Join(strings.Fields(text), " "), want) {
+			t.Errorf("the text does not say %q:\n%s", want, text)
+		}
+	}
+}
+
+// An outline shows every corner of its walls, in text and JSON, and no setting that
+// shocks would have placed.
+func TestOutlineInTheFlow(t *testing.T) {
+	d := supersonic()
+	d.RampAngle, d.CowlAngle, d.CaptureHeight = nil, nil, 0.36
+	d.Outline = &inlet.Outline{
+		Body:      []contour.Point{{}, {X: 0.62, Y: 0.0978}, {X: 1.17, Y: 0.2722}, {X: 1.6, Y: 0.31}},
+		CowlInner: []contour.Point{{X: 1.085, Y: 0.36}, {X: 1.2, Y: 0.38}, {X: 1.6, Y: 0.4}}, OuterAngle: 0.24, ThroatX: 1.2,
+	}
+	d.Points[0].Mach = 5
+	problem, flow := flowOf(t, d)
+	document := NewFlow(head, problem, flow)
+	text := document.Text(100)
+	for _, want := range []string{"corner 2", "shoulder", "body end", "cowl lip", "cowl corner 2", "cowl end"} {
+		if !strings.Contains(text, "\n  "+want+" ") {
+			t.Errorf("no %s in\n%s", want, text)
+		}
+	}
+	var read struct {
+		Inlet struct {
+			Outline struct {
+				Body [][2]float64 `json:"body_m"`
+			}
+			ShockOnLip *float64          `json:"shock_on_lip_mach"`
+			Missing    map[string]string `json:"missing"`
+			Angles     []float64         `json:"ramp_angle_deg"`
+		}
+	}
+	if err := json.Unmarshal(document.JSON(), &read); err != nil {
+		t.Fatal(err)
+	}
+	if len(read.Inlet.Outline.Body) != 4 || read.Inlet.ShockOnLip != nil || read.Inlet.Missing["shock_on_lip_mach"] == "" || len(read.Inlet.Angles) != 2 {
+		t.Errorf("%+v", read.Inlet)
+	}
+	for _, c := range document.Cautions {
+		if c.Rule == "shock_on_lip" {
+			t.Errorf("a caution on a setback that is not there: %s", c.Text)
+		}
+	}
+}
