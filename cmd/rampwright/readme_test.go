@@ -311,25 +311,30 @@ func TestReadmeComparison(t *testing.T) {
 	}
 }
 
-// The brief README.md shows is that of the starter it tells of.
-func TestReadmeBrief(t *testing.T) {
-	var shown []string
+// The briefs README.md shows are those it tells of.
+func TestReadmeBriefs(t *testing.T) {
+	var shown [][]string
 	inside := false
 	for _, line := range readLines(t, readmeFile) {
 		switch {
 		case line == "```yaml":
 			inside = true
+			shown = append(shown, nil)
 		case line == "```":
 			inside = false
 		case inside:
-			shown = append(shown, line)
+			last := len(shown) - 1
+			shown[last] = append(shown[last], line)
 		}
 	}
-	if len(shown) == 0 {
-		t.Fatal("README.md shows no brief")
+	names := []string{"veyric-6", "sorvane-5"}
+	if len(shown) != len(names) {
+		t.Fatalf("README.md shows %d briefs, want %d", len(shown), len(names))
 	}
-	if why := differs(shown, readLines(t, starterBrief("veyric-6"))); why != "" {
-		t.Error(why)
+	for i, name := range names {
+		if why := differs(shown[i], readLines(t, starterBrief(name))); why != "" {
+			t.Errorf("%s: %s", name, why)
+		}
 	}
 }
 

@@ -10,7 +10,7 @@ import (
 
 // SearchTrace are the settings of a trace in a search: wavelets of 2 deg, a
 // threshold of 4e-3, no more than 4000 events, no error estimate. A trace takes a
-// few tenths of a millisecond and is within about 0.2 % of the throat averages.
+// tenth of a millisecond and is within about 0.5 % of the throat averages.
 func SearchTrace() wave.Settings {
 	return wave.Settings{Wavelet: 2 * radian, Threshold: 4e-3, Events: 4000, WithoutError: true}
 }

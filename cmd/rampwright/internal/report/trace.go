@@ -138,11 +138,19 @@ func (t *Trace) text(point *Point) string {
 		average += fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
 	}
 	if point.Traced {
-		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery. The mass of the captured stream closes to %.1g.",
-			settings, average, significant(float64(t.Throat.Distortion)), math.Abs(float64(t.Closure.Mass)))
+		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery. The mass of the captured stream closes to %s.",
+			settings, average, significant(float64(t.Throat.Distortion)), closureText(math.Abs(float64(t.Closure.Mass))))
 	}
 	return fmt.Sprintf("the lip shock strikes the body %s and reflects. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
 		t.missText(), settings, average)
+}
+
+// closureText writes what a balance leaves open.
+func closureText(open float64) string {
+	if open < 1e-12 {
+		return "rounding"
+	}
+	return fmt.Sprintf("%.1g", open)
 }
 
 func (t *Trace) missText() string {
