@@ -138,7 +138,7 @@ var catalogue = []Entry{
 	single(closed(func(c *closure) float64 { return c.Lip.X })).as("lip_x_m", "m", OfGeometry,
 		"x of the cowl lip", "shock focus and setback", closes),
 	single(closed(func(c *closure) float64 { return c.Throat })).as("throat_height_m", "m", OfGeometry,
-		"distance from the shoulder to the inner cowl surface", "cancelled lip shock", closes),
+		"distance from the shoulder to the inner cowl surface; of an outline, the vertical height of its throat plane", "cancelled lip shock", closes),
 	group(everyRamp, (*analysis).rampLength).as("shortest_ramp_m", "m", OfGeometry,
 		"length of each ramp surface", "shock focus", closes),
 	group(everyRamp, func(a *analysis, i int) (float64, error) {

@@ -19,8 +19,8 @@ type view struct {
 	lipErr    error     // why the lip was not reached, nil if it was
 	lipMach   float64   // just ahead of the lip, below it
 	lipFlow   float64   // direction there, rad
-	capture   float64   // NaN where the lip streamline was lost, as is spillage
-	spillage  float64   //
+	capture   float64   // NaN where the lip streamline was lost
+	spillage  float64   // likewise
 	clearance []float64 // of each ramp shock, NaN where no shock of the body reaches the lip
 
 	miss float64 // NaN where no shock of the lip reaches the body
@@ -104,16 +104,12 @@ func (v *view) lookAtCorners(t *wave.Trace, c *closure) {
 	for i, corner := range c.Corners {
 		seen := cornerView{turn: c.Angles[i] - before}
 		before = c.Angles[i]
-		switch region := bodyAhead(t, corner, i, near); {
-		case region < 0:
+		if region := bodyAhead(t, corner, i, near); region < 0 {
 			seen.err = endedBy(t.Ending)
-		default:
-			seen.mach = t.Regions[region].Mach
-		}
-		if i == 0 && seen.turn <= 0 {
-			seen.err = notApplicable("ramp 1 turns away from the flow")
 		} else if seen.turn <= 0 {
 			seen.err = notApplicable("the body turns away from the flow there")
+		} else {
+			seen.mach = t.Regions[region].Mach
 		}
 		v.corners = append(v.corners, seen)
 	}
