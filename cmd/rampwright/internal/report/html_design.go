@@ -33,7 +33,7 @@ func (r *result) answerCells() []cell {
 	}
 	switch {
 	case r.Status == "verified":
-		return sentence("The "+extreme, " found under all limits is ", "; two exact routes agree on every quantity, and the surrogates foresaw aim and limits.")
+		return sentence("The "+extreme, " found under all limits is ", "; two exact routes agree on every quantity"+withinBounds(r.Best.Traced)+", and the surrogates foresaw aim and limits.")
 	case r.Status == "not_verified":
 		return sentence("A design with ", " of ", " holds every limit, but its evidence has a gap: see the cautions.")
 	case r.Status == "infeasible":

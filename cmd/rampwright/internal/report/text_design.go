@@ -46,8 +46,8 @@ func (d *DesignDocument) answer() string {
 	value := significant(float64(d.Best.Aim.Exact))
 	switch d.study.Result.Status {
 	case optimize.Verified:
-		return fmt.Sprintf("Verified: the %s %s found under all limits is %s; two exact routes agree on every quantity, and the surrogates foresaw aim and limits within %g.",
-			extreme, d.aimName(), value, d.study.Agreement)
+		return fmt.Sprintf("Verified: the %s %s found under all limits is %s; two exact routes agree on every quantity%s, and the surrogates foresaw aim and limits within %g.",
+			extreme, d.aimName(), value, withinBounds(d.Best.Traced), d.study.Agreement)
 	case optimize.NotVerified:
 		return fmt.Sprintf("Not verified: a design with %s of %s holds every limit, but its evidence has a gap (see the cautions).", d.aimName(), value)
 	case optimize.Infeasible:

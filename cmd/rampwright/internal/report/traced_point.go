@@ -92,3 +92,15 @@ func (s *Study) tracedNotes() []string {
 	}
 	return notes
 }
+
+// withinBounds says how the routes agree at traced points, "" without any.
+func withinBounds(points []TracedPoint) string {
+	var names []string
+	for _, p := range points {
+		names = append(names, p.Point)
+	}
+	if names == nil {
+		return ""
+	}
+	return " (at " + strings.Join(names, ", ") + " within the error bounds of its traces)"
+}
