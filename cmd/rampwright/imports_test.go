@@ -49,6 +49,7 @@ var rooms = map[string]room{
 	"problems/wave":       library("problems/gas", "problems/shock", "problems/contour"),
 	"problems/inlet": library("problems", "problems/gas", "problems/contour", "problems/atmosphere",
 		"problems/shock", "problems/ramp", "problems/wave", "problems/viscous"),
+	"problems/envelope": library("problems", "problems/atmosphere", "problems/contour", "problems/gas", "problems/inlet", "problems/wave"),
 	"problems/external": {may: []string{"problems"}, third: []string{gonumPath}}, // runs the user's own program
 	"problems/analytic": library("problems"),
 
@@ -75,7 +76,7 @@ var rooms = map[string]room{
 		third: []string{yamlPath, expressionPath},
 	},
 	"cmd/rampwright/internal/chart":    {third: []string{plotPath, svgoPath}},
-	"cmd/rampwright/internal/report":   results("cmd/rampwright/internal/chart"),
+	"cmd/rampwright/internal/report":   results("cmd/rampwright/internal/chart", "problems/envelope"),
 	"cmd/rampwright/internal/handoff":  results(),
 	"cmd/rampwright/internal/runstore": results(),
 }

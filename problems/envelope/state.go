@@ -1,0 +1,183 @@
+package envelope
+
+import (
+	"errors"
+	"fmt"
+	"math"
+
+	"rampwright/problems"
+	"rampwright/problems/wave"
+)
+
+// State is what the flow is at a point of the map, in the order of concern. Whether
+// limits hold is told beside it, by Sample.Missed.
+type State int
+
+const (
+	// Attached: shocks attached, outside the lip, and a duct that starts by itself.
+	Attached State = iota
+	// OverStart: attached, the duct contracts more than starts by itself.
+	OverStart
+	// Swallowed: attached, a ramp shock falls inside the lip.
+	Swallowed
+	// Ended: the stream does not reach the throat for a reason not named below.
+	Ended
+	// Pocket: the flow is subsonic behind a shock.
+	Pocket
+	// Reflection: shocks in the duct meet in a Mach reflection.
+	Reflection
+	// LipDetached: the shock of the lip is detached.
+	LipDetached
+	// RampDetached: a ramp shock is detached.
+	RampDetached
+	// States counts the states.
+	States
+)
+
+var stateNames = [States]string{
+	"attached", "over the self-start limit", "shocks inside the lip",
+	"flow ends", "subsonic pocket", "Mach reflection", "lip shock detached", "ramp shock detached",
+}
+
+// String returns the phrase of legends.
+func (s State) String() string { return stateNames[s] }
+
+// Quantities of the catalogue that states and boundaries are read from.
+const (
+	rampMargin   = "ramp_attachment_margin_deg"
+	lipMargin    = "lip_attachment_margin_deg"
+	reflection   = "lip_reflection_margin_deg"
+	clearance    = "lip_clearance"
+	overStart    = "internal_contraction_over_self_start"
+	overCeiling  = "internal_contraction_over_isentropic"
+	onTheLip     = 1e-9 // capture heights: a shock that near the lip meets it
+	rampDetached = "ramp "
+)
+
+// stateOf names the state of a sample.
+func (s *survey) stateOf(sample *Sample) State {
+	if sample.Status != nil {
+		return ending(sample.Status)
+	}
+	if v := s.swallowed.value(sample.Exact); v < -onTheLip {
+		return Swallowed
+	}
+	if s.starting.value(sample.Exact) < 0 {
+		return OverStart
+	}
+	return Attached
+}
+
+// missedBy lists the limits an evaluation does not meet, in their order.
+func (s *survey) missedBy(e *problems.Evaluation) []string {
+	var list []string
+	for i := range s.limits {
+		if s.limits[i].missed(e) {
+			list = append(list, s.limits[i].name())
+		}
+	}
+	return list
+}
+
+// ending names the state of a stream that does not reach the throat.
+func ending(status error) State {
+	var detached *problems.Detached
+	if errors.As(status, &detached) {
+		if len(detached.Shock) > len(rampDetached) && detached.Shock[:len(rampDetached)] == rampDetached {
+			return RampDetached
+		}
+		return LipDetached
+	}
+	var end *wave.Ending
+	if errors.As(status, &end) {
+		return tracedEnding(end)
+	}
+	var phrase *problems.Status
+	if errors.As(status, &phrase) {
+		switch phrase.Phrase {
+		case "shocks inside the lip":
+			return Swallowed
+		case "flow subsonic behind the lip shock", "flow subsonic behind the last ramp":
+			return Pocket
+		}
+	}
+	return Ended
+}
+
+// tracedEnding names the state of a trace that ended early.
+func tracedEnding(end *wave.Ending) State {
+	switch end.Reason {
+	case wave.MachReflection:
+		return Reflection
+	case wave.SubsonicPocket:
+		return Pocket
+	case wave.Detached:
+		if end.Site == "lip" {
+			return LipDetached
+		}
+		return RampDetached
+	}
+	return Ended
+}
+
+// margin is the signed distance of an evaluation from a bound: positive where it
+// holds, in the unit of the quantity, least over the members of a group.
+type margin struct {
+	quantity  string
+	indices   []int
+	low, high float64
+}
+
+// name states the bound: "throat_mach >= 2.3".
+func (m *margin) name() string {
+	switch {
+	case math.IsInf(m.high, 1):
+		return fmt.Sprintf("%s >= %.6g", m.quantity, m.low)
+	case math.IsInf(m.low, -1):
+		return fmt.Sprintf("%s <= %.6g", m.quantity, m.high)
+	}
+	return fmt.Sprintf("%s %.6g .. %.6g", m.quantity, m.low, m.high)
+}
+
+// value is the margin of an evaluation. A member to which the definition does not
+// apply asks nothing. One that is missing leaves the margin unknown, NaN, unless
+// another member fails already.
+func (m *margin) value(e *problems.Evaluation) float64 {
+	least, unknown := math.Inf(1), false
+	for _, i := range m.indices {
+		if v := e.Values[i]; !math.IsNaN(v) {
+			least = min(least, v-m.low, m.high-v)
+			continue
+		}
+		var none *problems.NotApplicable
+		unknown = unknown || !errors.As(e.Reasons[i], &none)
+	}
+	if math.IsInf(least, 1) || unknown && least >= 0 {
+		return math.NaN()
+	}
+	return least
+}
+
+// missed reports whether the limit does not hold: it fails, or a value it asks for
+// is missing.
+func (m *margin) missed(e *problems.Evaluation) bool {
+	for _, i := range m.indices {
+		v := e.Values[i]
+		var none *problems.NotApplicable
+		if math.IsNaN(v) && !errors.As(e.Reasons[i], &none) || v < m.low || v > m.high {
+			return true
+		}
+	}
+	return false
+}
+
+// marginOf finds the quantity's members.
+func marginOf(quantities []problems.Quantity, name string, low, high float64) margin {
+	m := margin{quantity: name, low: low, high: high}
+	for i, q := range quantities {
+		if q.Name == name {
+			m.indices = append(m.indices, i)
+		}
+	}
+	return m
+}
