@@ -84,7 +84,7 @@ func (a *app) flow(study *study, of string, strict bool, picture picture) error 
 	if study.problem == nil {
 		return &usageError{"flow computes an inlet; this brief poses the analytic problem " + study.analyticName(), "rampwright design searches it, rampwright fits shows how well it can be fitted"}
 	}
-	x, err := study.fixed(of)
+	x, err := study.fixed("flow", of)
 	if err != nil {
 		return err
 	}
@@ -129,8 +129,8 @@ func (s *study) head(seed int64) report.Head {
 }
 
 // fixed returns a value for every searched setting: from the result folder given
-// by --of, or an error that names the flags.
-func (s *study) fixed(of string) ([]float64, error) {
+// by --of, or an error of the command that names the flags.
+func (s *study) fixed(command, of string) ([]float64, error) {
 	variables := s.problem.Variables()
 	if len(variables) == 0 {
 		return nil, nil
@@ -143,7 +143,7 @@ func (s *study) fixed(of string) ([]float64, error) {
 			}
 		}
 		return nil, &usageError{
-			"the brief searches " + variableNames(variables) + "; flow needs one fixed geometry",
+			"the brief searches " + variableNames(variables) + "; " + command + " needs one fixed geometry",
 			"give " + strings.Join(missing, ", ") + ", or --of DIR for the best of a design",
 		}
 	}

@@ -16,17 +16,16 @@ const (
 	OverIsentropic    Kind = "over_the_isentropic_ceiling"
 	ShocksSwallowed   Kind = "shocks_swallowed"
 	LimitViolated     Kind = "limit"
-	StateChanges      Kind = "state"
+	StreamEnds        Kind = "stream_ends"
 )
 
 // Line is one stretch of a boundary.
 type Line struct {
-	Kind Kind
-	// Name tells lines of one kind apart: the limit, or the state that begins.
-	Name   string
+	Kind   Kind
+	Name   string // what happens there; of a limit the limit
 	Points []Condition
 	// Margin is the greatest margin left at a point, in the unit of Quantity; 0 where
-	// a state was bisected and there is no margin.
+	// the end of the stream was bisected and there is no margin.
 	Margin   float64
 	Quantity string
 	Closed   bool
@@ -56,8 +55,9 @@ var fixedBoundaries = []struct {
 }
 
 // boundaries lists the signed functions of the map: the fixed ones, the limits that
-// say something else, and the states of the grid that no margin announces.
-func (s *survey) boundaries(samples []Sample) []boundary {
+// say something else, and whether the stream reaches the throat, which no margin
+// announces.
+func (s *survey) boundaries() []boundary {
 	var list []boundary
 	known := map[string]bool{}
 	add := func(kind Kind, name string, m margin) {
@@ -72,27 +72,19 @@ func (s *survey) boundaries(samples []Sample) []boundary {
 	for _, m := range s.limits {
 		add(LimitViolated, m.name(), m)
 	}
-	seen := [States]bool{}
-	for _, x := range samples {
-		seen[x.State] = true
-	}
-	for _, state := range [...]State{Ended, Pocket, Reflection} {
-		if seen[state] {
-			list = append(list, boundary{StateChanges, state.String(), "", func(x *Sample) float64 {
-				if x.State == state {
-					return -1
-				}
-				return 1
-			}})
+	list = append(list, boundary{StreamEnds, "stream ends ahead of the throat", "", func(x *Sample) float64 {
+		if x.Status != nil {
+			return -1
 		}
-	}
+		return 1
+	}})
 	return list
 }
 
 // trace follows every boundary. Roots of all edges, then chords and loose ends of
 // all lines, are shared out among the workers; each fills its own slot.
 func (s *survey) trace(ctx context.Context, samples []Sample) ([]Line, error) {
-	kinds := s.boundaries(samples)
+	kinds := s.boundaries()
 	tracers := make([]*tracer, len(kinds))
 	for i, b := range kinds {
 		tracers[i] = s.newTracer(ctx, b, samples)
@@ -149,7 +141,7 @@ func (s *survey) newTracer(ctx context.Context, b boundary, samples []Sample) *t
 		t.values[i] = b.value(&samples[i])
 	}
 	t.value = func(p place) (float64, error) {
-		sample, err := s.sample(ctx, s.condition(p))
+		sample, err := s.sample(ctx, s.rough, s.condition(p))
 		if err != nil {
 			return 0, err
 		}
@@ -265,7 +257,7 @@ func (s *survey) extend(line *Line, p *piece) {
 			}
 		}
 		line.Points = append(line.Points, at)
-		if line.Kind != StateChanges {
+		if line.Kind != StreamEnds {
 			line.Margin = max(line.Margin, v.left)
 		}
 	}

@@ -12,6 +12,6 @@
 // side where the margin holds. What is not seen: a line that enters and leaves a
 // cell between two neighbouring points of the grid.
 //
-// A change of state without a signed margin, such as a Mach reflection in the
-// duct, is bisected in the same way.
+// Where the captured stream ceases to reach the throat without a margin that tells,
+// as behind a Mach reflection in the duct, the change is bisected in the same way.
 package envelope

@@ -5,37 +5,38 @@ import (
 
 	"rampwright/problems"
 	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
 )
 
-// Frozen is the inlet of a problem at fixed values of its variables, as a Model.
+// Frozen is the inlet of a problem at fixed values of its variables, as a Model:
+// the chain of straight shocks where it holds, a trace elsewhere.
 type Frozen struct {
+	inlet      *inlet.Frozen
 	definition inlet.Definition
-	x          []float64
 	air        Air
+	settings   wave.Settings
 	quantities []problems.Quantity
-	first      int // of the quantities of the condition among those of a problem with it
 }
 
-// conditionName names the condition under study among the points of a problem.
-const conditionName = "condition"
-
 // Freeze fixes the inlet of a problem at x, in air that follows the Mach number.
-func Freeze(problem *inlet.Problem, x []float64, air Air) (*Frozen, error) {
-	f := &Frozen{definition: problem.Definition(), x: x, air: air}
-	probe, err := f.at(Condition{Mach: f.definition.Points[0].Mach})
-	if err != nil {
-		return nil, err
-	}
-	for i, q := range probe.Quantities() {
-		if q.Point != conditionName {
-			continue
+// Settings are those of its traces.
+func Freeze(problem *inlet.Problem, x []float64, air Air, settings wave.Settings) *Frozen {
+	f := &Frozen{inlet: problem.Freeze(x), definition: problem.Definition(), air: air, settings: settings}
+	first := f.definition.Points[0].Name
+	for _, q := range problem.Quantities() {
+		if q.Point == first {
+			q.Point = ""
+			f.quantities = append(f.quantities, q)
 		}
-		if f.quantities == nil {
-			f.first = i
-		}
-		f.quantities = append(f.quantities, q)
 	}
-	return f, nil
+	return f
+}
+
+// With is the same inlet with other settings of its traces.
+func (f *Frozen) With(settings wave.Settings) *Frozen {
+	other := *f
+	other.settings = settings
+	return &other
 }
 
 // Quantities lists those of one condition.
@@ -44,37 +45,55 @@ func (f *Frozen) Quantities() []problems.Quantity { return f.quantities }
 // Point is a condition in the air it is met in.
 func (f *Frozen) Point(at Condition) (inlet.Point, error) {
 	p, t, err := f.air.At(f.definition.Gas, at.Mach)
-	return inlet.Point{Name: conditionName, Mach: at.Mach, Incidence: at.Incidence, Pressure: p, Temperature: t}, err
-}
-
-// at is the problem whose second point is the condition.
-func (f *Frozen) at(at Condition) (*inlet.Problem, error) {
-	point, err := f.Point(at)
-	if err != nil {
-		return nil, err
-	}
-	d := f.definition
-	d.Points = []inlet.Point{d.Points[0], point}
-	return inlet.New(d)
+	return inlet.Point{Name: "condition", Mach: at.Mach, Incidence: at.Incidence, Pressure: p, Temperature: t}, err
 }
 
 // At computes the inlet at one condition.
 func (f *Frozen) At(ctx context.Context, at Condition, dst *problems.Evaluation) (status, err error) {
-	flow, err := f.Flow(ctx, at)
+	point, err := f.Point(at)
 	if err != nil {
 		return nil, err
 	}
-	n := len(f.quantities)
-	copy(dst.Values, flow.Evaluation.Values[f.first:f.first+n])
-	copy(dst.Reasons, flow.Evaluation.Reasons[f.first:f.first+n])
-	return flow.Points[1].Err, nil
+	flow, err := f.inlet.At(ctx, point, f.settings)
+	if err != nil {
+		return nil, err
+	}
+	return take(flow, dst), nil
 }
 
-// Flow is the whole flow at one condition: the design point, then the condition.
-func (f *Frozen) Flow(ctx context.Context, at Condition) (*inlet.Flow, error) {
-	problem, err := f.at(at)
-	if err != nil {
-		return nil, err
+// take copies the values of a flow and returns its status.
+func take(flow *inlet.PointFlow, dst *problems.Evaluation) (status error) {
+	copy(dst.Values, flow.Evaluation.Values)
+	copy(dst.Reasons, flow.Evaluation.Reasons)
+	if flow.Err != nil && flow.Trace != nil && flow.Trace.Ending != nil {
+		return &TraceEnded{flow.Err, flow.Trace.Ending}
 	}
-	return problem.Flow(ctx, f.x)
+	return flow.Err
+}
+
+// TraceEnded is the status of a traced stream that ended early, with its place.
+type TraceEnded struct {
+	Status error
+	Ending *wave.Ending
+}
+
+func (e *TraceEnded) Error() string { return e.Status.Error() }
+
+func (e *TraceEnded) Unwrap() []error { return []error{e.Ending, e.Status} }
+
+// ductShown is how much of the duct behind the shoulder pictures show, throat
+// heights.
+const ductShown = 4
+
+// Waves traces the inlet at one condition through the throat and ductShown throat
+// heights of duct behind it, and returns the geometry it went through.
+func (f *Frozen) Waves(at Condition) (wave.Geometry, *wave.Trace, error) {
+	shape, err := f.inlet.Contour()
+	if err != nil {
+		return wave.Geometry{}, nil, err
+	}
+	g := f.inlet.Geometry()
+	g.Planes = append(g.Planes[:1:1], g.Planes[0]+ductShown*shape.Throat)
+	trace, err := wave.Run(f.definition.Gas, wave.FreeStream(at), g, f.settings)
+	return g, trace, err
 }

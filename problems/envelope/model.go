@@ -31,10 +31,10 @@ type Sample struct {
 	Exact  *problems.Evaluation
 }
 
-// sample evaluates the model at one condition.
-func (s *survey) sample(ctx context.Context, at Condition) (Sample, error) {
+// sample evaluates a model at one condition.
+func (s *survey) sample(ctx context.Context, model Model, at Condition) (Sample, error) {
 	exact := problems.NewEvaluation(len(s.quantities))
-	status, err := s.model.At(ctx, at, exact)
+	status, err := model.At(ctx, at, exact)
 	if err != nil {
 		return Sample{}, err
 	}

@@ -26,6 +26,9 @@ type Settings struct {
 	// Flatness is how far a chord of a boundary may leave it, in cells of the grid;
 	// default 0.02.
 	Flatness float64
+	// Boundaries is the model roots are sought in, cheaper than that of the grid and
+	// of the same quantities; nil takes the grid's.
+	Boundaries Model
 	// Jobs is how many conditions are computed side by side; it changes no result.
 	// Default the number of processors.
 	Jobs int
@@ -109,6 +112,7 @@ func (s *Survey) At(i, j int) *Sample { return &s.Samples[i*s.Settings.Incidence
 // survey is a map under way.
 type survey struct {
 	model       Model
+	rough       Model // of roots
 	quantities  []problems.Quantity
 	settings    Settings
 	step        Condition // of the grid
@@ -127,7 +131,7 @@ func Run(ctx context.Context, model Model, settings Settings) (*Survey, error) {
 	samples := make([]Sample, s.settings.MachPoints*s.settings.IncidencePoints)
 	err := s.each(ctx, "map", len(samples), func(i int) (err error) {
 		node := place{float64(i / s.settings.IncidencePoints), float64(i % s.settings.IncidencePoints)}
-		samples[i], err = s.sample(ctx, s.condition(node))
+		samples[i], err = s.sample(ctx, s.model, s.condition(node))
 		return err
 	})
 	if err != nil {
@@ -142,6 +146,9 @@ func Run(ctx context.Context, model Model, settings Settings) (*Survey, error) {
 
 func newSurvey(model Model, settings Settings) *survey {
 	s := &survey{model: model, quantities: model.Quantities(), settings: settings}
+	if s.rough = settings.Boundaries; s.rough == nil {
+		s.rough = model
+	}
 	s.step = Condition{
 		Mach:      (settings.HighMach - settings.LowMach) / float64(settings.MachPoints-1),
 		Incidence: (settings.HighIncidence - settings.LowIncidence) / float64(settings.IncidencePoints-1),

@@ -76,7 +76,7 @@ func TestBoundariesLieOnTheirCurves(t *testing.T) {
 			}
 		}
 	}
-	if kinds[envelope.RampShockDetaches] != 1 || kinds[envelope.OverSelfStart] != 1 || len(kinds) != 2 {
+	if kinds[envelope.RampShockDetaches] != 1 || kinds[envelope.OverSelfStart] != 1 || kinds[envelope.StreamEnds] != 1 || len(kinds) != 3 {
 		t.Errorf("lines by kind: %v", kinds)
 	}
 }

@@ -34,6 +34,9 @@ type LinePoint struct {
 	Note string // written beside the point; may be empty
 	// Mark rings the point.
 	Mark bool
+	// Gap breaks the line ahead of the point: between it and the one before there
+	// is no value.
+	Gap bool
 }
 
 // Level is a value drawn across the whole axes.
@@ -44,7 +47,7 @@ type Level struct {
 
 const (
 	mostLines      = 12
-	mostLinePoints = 200
+	mostLinePoints = 400
 )
 
 // InvalidLines lists everything that is wrong with a LineChart.

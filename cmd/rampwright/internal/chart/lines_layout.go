@@ -193,6 +193,9 @@ func (l *linesLayout) segments() []segment {
 	var list []segment
 	for _, line := range l.chart.Lines {
 		for i, p := range line.Points[1:] {
+			if p.Gap {
+				continue
+			}
 			before := line.Points[i]
 			list = append(list, segment{point{l.x.at(before.X), l.y.at(before.Y)}, point{l.x.at(p.X), l.y.at(p.Y)}})
 		}

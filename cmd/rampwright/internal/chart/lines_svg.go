@@ -15,7 +15,7 @@ import (
 //
 // The root states the mapping of the axes, data-x and data-y, each as "low high
 // from to": a value lies at from + (value - low)/(high - low) (to - from). Each
-// line is a polyline with data-name, each level a path with data-name; every
+// line is a polyline with data-name, one for each stretch between gaps, each level a path with data-name; every
 // name, note and tick is a group with data-name and data-box (left, top, width,
 // height).
 func WriteLineChart(w io.Writer, chart LineChart) error {
@@ -131,8 +131,15 @@ func (d linesSheet) line(l linesLayout, i int) {
 	for _, p := range line.Points {
 		places = append(places, point{l.x.at(p.X), l.y.at(p.Y)})
 	}
-	x, y := columns(places)
-	d.Polyline(x, y, append(s.attributes(), attribute("data-name", line.Name), `fill="none"`, `stroke-linejoin="round"`)...)
+	for from := 0; from < len(places); {
+		to := from + 1
+		for to < len(places) && !line.Points[to].Gap {
+			to++
+		}
+		x, y := columns(places[from:to])
+		d.Polyline(x, y, append(s.attributes(), attribute("data-name", line.Name), `fill="none"`, `stroke-linejoin="round"`)...)
+		from = to
+	}
 	for k, p := range line.Points {
 		d.Circle(places[k].x, places[k].y, s.width+1, attribute("fill", s.ink))
 		if p.Mark {

@@ -72,8 +72,8 @@ func value(axis [4]float64, at float64) float64 {
 var ladderPicture = LineChart{
 	Title: "recovery against ramps", XLabel: "ramps", YLabel: "recovery", WholeX: true, Low: 1, High: 4,
 	Lines: []Line{
-		{Name: "this brief", Lead: true, Points: []LinePoint{{2, 0.553, "0.55338", false}, {3, 0.656, "0.65591", true}, {4, 0.69, "0.69034", false}}},
-		{Name: "equal-strength limit", Points: []LinePoint{{1, 0.58, "", false}, {2, 0.74, "", false}, {3, 0.83, "", false}, {4, 0.889, "", false}}},
+		{Name: "this brief", Lead: true, Points: []LinePoint{{2, 0.553, "0.55338", false, false}, {3, 0.656, "0.65591", true, false}, {4, 0.69, "0.69034", false, false}}},
+		{Name: "equal-strength limit", Points: []LinePoint{{1, 0.58, "", false, false}, {2, 0.74, "", false, false}, {3, 0.83, "", false, false}, {4, 0.889, "", false, false}}},
 	},
 	Levels: []Level{{"standard recovery", 0.888}},
 }
@@ -154,7 +154,7 @@ func TestInvalidLines(t *testing.T) {
 	}
 	for _, want := range []string{
 		"range of x is 2 to 1", "16 lines", "line 0 has a name of 201", "line 0 has no point", "line 1: (1, 0)", "line 2: (0, NaN)",
-		"line 3 has 201 points", "level 0 has a name", "level 0 lies at +Inf",
+		"line 3 has 401 points", "level 0 has a name", "level 0 lies at +Inf",
 	} {
 		if !strings.Contains(err.Error(), want) {
 			t.Errorf("%q is not reported in: %v", want, err)

@@ -1,0 +1,67 @@
+package main
+
+import (
+	"fmt"
+	"os"
+	"path/filepath"
+)
+
+// filesFolder is a folder for the files of one command, which it may hold from an
+// earlier run; with others it is refused.
+type filesFolder struct {
+	dir   string // "" writes nothing
+	of    string // the command
+	ours  func(name string) bool
+	force bool
+}
+
+// check refuses a folder with files that are not ours.
+func (f filesFolder) check() error {
+	if f.dir == "" || f.force {
+		return nil
+	}
+	entries, err := os.ReadDir(f.dir)
+	if os.IsNotExist(err) {
+		return nil
+	}
+	if err != nil {
+		return &usageError{"cannot write there: " + err.Error(), "name a folder"}
+	}
+	for _, entry := range entries {
+		if !f.ours(entry.Name()) {
+			return &usageError{fmt.Sprintf("%s holds %s, which is no file of %s", f.dir, entry.Name(), f.of), "name another folder, or --force"}
+		}
+	}
+	return nil
+}
+
+// write writes the files, each whole or not at all, and removes those of an earlier
+// run that this one does not have.
+func (f filesFolder) write(files []file) error {
+	if err := os.MkdirAll(f.dir, 0o777); err != nil {
+		return err
+	}
+	fresh := map[string]bool{}
+	for _, each := range files {
+		fresh[each.name] = true
+		name := filepath.Join(f.dir, each.name)
+		if err := os.WriteFile(name+".part", each.data, 0o666); err != nil {
+			return err
+		}
+		if err := os.Rename(name+".part", name); err != nil {
+			return err
+		}
+	}
+	entries, err := os.ReadDir(f.dir)
+	if err != nil {
+		return err
+	}
+	for _, entry := range entries {
+		if f.ours(entry.Name()) && !fresh[entry.Name()] {
+			if err := os.Remove(filepath.Join(f.dir, entry.Name())); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}

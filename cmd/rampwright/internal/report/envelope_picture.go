@@ -1,0 +1,95 @@
+package report
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+
+	"rampwright/cmd/rampwright/internal/chart"
+	"rampwright/problems/envelope"
+)
+
+// Map draws map.svg: the states, the boundaries, and the flight points.
+func (d *EnvelopeDocument) Map() ([]byte, error) {
+	s := &d.study.Survey.Settings
+	m := chart.RegionMap{
+		Title:    d.Title + ": operating map",
+		Subtitle: []string{d.held()},
+		X:        d.machSpan(),
+		Y:        chart.Span{Label: "incidence, deg", Low: gridDegrees(s.LowIncidence), High: gridDegrees(s.HighIncidence)},
+		NX:       s.MachPoints, NY: s.IncidencePoints,
+		DotName: "every limit holds",
+	}
+	for state := range envelope.States {
+		m.Classes = append(m.Classes, state.String())
+	}
+	for j := range m.NY {
+		for i := range m.NX {
+			sample := d.study.Survey.At(i, j)
+			m.Cells, m.Dots = append(m.Cells, int(sample.State)), append(m.Dots, len(sample.Missed) == 0)
+		}
+	}
+	for _, line := range d.Boundary {
+		points := make([][2]float64, len(line.Points))
+		for i, p := range line.Points {
+			points[i] = [2]float64{float64(p[0]), float64(p[1])}
+		}
+		m.Lines = append(m.Lines, chart.RegionLine{Name: line.Name, Strong: line.Kind != string(envelope.LimitViolated), Points: points})
+	}
+	for _, p := range d.study.Definition.Points {
+		inside := p.Mach >= s.LowMach && p.Mach <= s.HighMach && p.Incidence >= s.LowIncidence && p.Incidence <= s.HighIncidence
+		if inside {
+			m.Places = append(m.Places, chart.Vertex{Name: p.Name, X: p.Mach, Y: degrees(p.Incidence)})
+		}
+	}
+	var out bytes.Buffer
+	err := chart.WriteRegionMap(&out, m)
+	return out.Bytes(), err
+}
+
+func (d *EnvelopeDocument) machSpan() chart.Span {
+	s := &d.study.Survey.Settings
+	return chart.Span{Label: "free-stream Mach number", Low: s.LowMach, High: s.HighMach}
+}
+
+// curvesShown is how many incidences a picture against Mach number has at most.
+const curvesShown = 5
+
+// Against draws a quantity against Mach number at a few incidences of the grid.
+func (d *EnvelopeDocument) Against(quantity, label string) ([]byte, error) {
+	c := chart.LineChart{
+		Title: d.Title + ": " + label, Subtitle: []string{d.held()},
+		XLabel: "free-stream Mach number", YLabel: label,
+		Low: d.study.Survey.Settings.LowMach, High: d.study.Survey.Settings.HighMach,
+	}
+	m := len(d.Grid.IncidenceDeg)
+	last := -1
+	for k := range min(m, curvesShown) {
+		j := k
+		if m > curvesShown {
+			j = int(math.Round(float64(k) / (curvesShown - 1) * float64(m-1)))
+		}
+		if j == last {
+			continue
+		}
+		last = j
+		line := chart.Line{Name: fmt.Sprintf("incidence %s deg", plain(float64(d.Grid.IncidenceDeg[j])))}
+		gap := false
+		for i := range d.Grid.Mach {
+			row := &d.Rows[i*m+j]
+			v := row.value(quantity)
+			if !finite(v) {
+				gap = true
+				continue
+			}
+			line.Points = append(line.Points, chart.LinePoint{X: float64(row.Mach), Y: v, Gap: gap && line.Points != nil})
+			gap = false
+		}
+		if line.Points != nil {
+			c.Lines = append(c.Lines, line)
+		}
+	}
+	var out bytes.Buffer
+	err := chart.WriteLineChart(&out, c)
+	return out.Bytes(), err
+}
