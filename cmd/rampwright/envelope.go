@@ -6,6 +6,7 @@ import (
 	"math"
 	"regexp"
 	"runtime"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -231,14 +232,15 @@ func parsePoints(text string) (n, m int, err error) {
 	return n, m, nil
 }
 
-// limitsAt are the limits at one flight point, the design point where none is named.
-func (s *study) limitsAt(point *string) ([]problems.Limit, error) {
+// limitsAt are the limits at one flight point, the design point where none is named,
+// and at other places.
+func (s *study) limitsAt(point *string, also ...string) ([]problems.Limit, error) {
 	if *point == "" {
 		*point = s.brief.Flight[0].Name
 	}
 	var list []problems.Limit
 	for _, limit := range s.limits {
-		if limit.Point == *point {
+		if limit.Point == *point || slices.Contains(also, limit.Point) {
 			list = append(list, limit)
 		}
 	}

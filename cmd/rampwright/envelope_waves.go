@@ -22,7 +22,7 @@ func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trac
 		Title:     title,
 		Subtitle:  []string{fmt.Sprintf("Mach %.4g, incidence %.3g deg: %s", at.Mach, at.Incidence*degree, status), wavesNote(trace)},
 		Incidence: at.Incidence,
-		Body:      wall(geometry.Body, end), CowlInner: wall(geometry.CowlInner, end),
+		Body:      wallTo(geometry.Body, end), CowlInner: wallTo(geometry.CowlInner, end),
 	}
 	lip := geometry.CowlInner[0]
 	length := math.Max(geometry.OuterLength, 0.1*lip.Y)
@@ -31,7 +31,7 @@ func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trac
 	if s := geometry.Shoulder; s > 0 {
 		view.Body[s].Name = "shoulder"
 	}
-	view.Waves = waves(trace, end)
+	view.Waves = fronts(trace, end)
 	for _, p := range trace.Captured.Streamline {
 		view.LipStreamline = append(view.LipStreamline, vertex("", p))
 	}
@@ -54,8 +54,8 @@ func wavesNote(trace *wave.Trace) string {
 // wallEnd is the x at which walls and waves are cut: the last plane.
 func wallEnd(geometry wave.Geometry) float64 { return geometry.Planes[len(geometry.Planes)-1] }
 
-// wall lists the points of a wall as far as the end.
-func wall(points []contour.Point, end float64) []chart.Vertex {
+// wallTo lists the points of a wall as far as the end.
+func wallTo(points []contour.Point, end float64) []chart.Vertex {
 	list := []chart.Vertex{vertex("", points[0])}
 	for i, p := range points[1:] {
 		before := points[i]
@@ -72,13 +72,13 @@ func wall(points []contour.Point, end float64) []chart.Vertex {
 // least jump of total pressure.
 const drawnJump = 0.01
 
-// waves lists the fronts of a trace worth drawing, cut at the end. The first front
+// fronts lists the fronts of a trace worth drawing, cut at the end. The first front
 // of each corner and of the lip carries its name.
-func waves(trace *wave.Trace, end float64) []chart.Wave {
+func fronts(trace *wave.Trace, end float64) []chart.Wave {
 	var list []chart.Wave
 	named := map[string]bool{}
 	for _, f := range trace.Fronts {
-		kind, name := waveKind(f)
+		kind, name := frontKind(f)
 		from, to := f.From, f.To
 		if !f.Duct && f.Kind != wave.Shock || from.X >= end || jump(trace, f) < drawnJump {
 			continue
@@ -106,8 +106,8 @@ func jump(trace *wave.Trace, f wave.Front) float64 {
 	return math.Abs(below.Pressure/above.Pressure - 1)
 }
 
-// waveKind is how a front is drawn, and its name if it starts on a wall.
-func waveKind(f wave.Front) (kind chart.WaveKind, name string) {
+// frontKind is how a front is drawn, and its name if it starts on a wall.
+func frontKind(f wave.Front) (kind chart.WaveKind, name string) {
 	switch {
 	case f.Kind == wave.Slip:
 		return chart.SlipLine, ""
@@ -115,9 +115,9 @@ func waveKind(f wave.Front) (kind chart.WaveKind, name string) {
 		return chart.Expansion, ""
 	case f.Source > 0:
 		return chart.RampShock, fmt.Sprintf("ramp %d shock", f.Source)
-	case f.Source == -1:
+	case f.Source == wave.SourceLip:
 		return chart.LipShock, "lip shock"
-	case f.Source == -2 || !f.Duct:
+	case f.Source == wave.SourceOuterCowl || !f.Duct:
 		return chart.CowlShock, ""
 	}
 	return chart.DuctShock, ""

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"slices"
 )
 
 // filesFolder is a folder for the files of one command, which it may hold from an
@@ -13,6 +14,11 @@ type filesFolder struct {
 	of    string // the command
 	ours  func(name string) bool
 	force bool
+}
+
+// oneOf tells the files of a list.
+func oneOf(names []string) func(string) bool {
+	return func(name string) bool { return slices.Contains(names, name) }
 }
 
 // check refuses a folder with files that are not ours.

@@ -123,6 +123,39 @@ type margin struct {
 	low, high float64
 }
 
+// sides turns limits into margins, one a side, of the quantities there are.
+func sides(quantities []problems.Quantity, limits []problems.Limit) []margin {
+	var list []margin
+	for _, limit := range limits {
+		for _, side := range [2][2]float64{{limit.Low, math.Inf(1)}, {math.Inf(-1), limit.High}} {
+			m := marginOf(quantities, limit.Quantity, side[0], side[1])
+			if len(m.indices) > 0 && !(math.IsInf(m.low, -1) && math.IsInf(m.high, 1)) {
+				list = append(list, m)
+			}
+		}
+	}
+	return list
+}
+
+// scale is what a violation is measured in: the bound, at least 1.
+func (m *margin) scale() float64 {
+	if math.IsInf(m.low, -1) {
+		return max(1, math.Abs(m.high))
+	}
+	return max(1, math.Abs(m.low))
+}
+
+// reason is why the margin of an evaluation is not known.
+func (m *margin) reason(e *problems.Evaluation) error {
+	for _, i := range m.indices {
+		var none *problems.NotApplicable
+		if e.Reasons[i] != nil && !errors.As(e.Reasons[i], &none) {
+			return e.Reasons[i]
+		}
+	}
+	return nil
+}
+
 // name states the bound: "throat_mach >= 2.3".
 func (m *margin) name() string {
 	switch {
@@ -154,8 +187,8 @@ func (m *margin) value(e *problems.Evaluation) float64 {
 }
 
 // rounding is the share of a bound by which a value may pass it and still count as
-// meeting it: a design stated to stand on a limit misses it in the last digit.
-const rounding = 1e-9
+// meeting it: a design that stands on a limit misses it by the rounding of a trace.
+const rounding = 1e-7
 
 // missed reports whether the limit does not hold: it fails, or a value it asks for
 // is missing.

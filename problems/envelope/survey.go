@@ -153,14 +153,7 @@ func newSurvey(model Model, settings Settings) *survey {
 		Mach:      (settings.HighMach - settings.LowMach) / float64(settings.MachPoints-1),
 		Incidence: (settings.HighIncidence - settings.LowIncidence) / float64(settings.IncidencePoints-1),
 	}
-	for _, limit := range settings.Limits {
-		for _, side := range [2][2]float64{{limit.Low, math.Inf(1)}, {math.Inf(-1), limit.High}} {
-			m := marginOf(s.quantities, limit.Quantity, side[0], side[1])
-			if len(m.indices) > 0 && !(math.IsInf(m.low, -1) && math.IsInf(m.high, 1)) {
-				s.limits = append(s.limits, m)
-			}
-		}
-	}
+	s.limits = sides(s.quantities, settings.Limits)
 	s.swallowed = marginOf(s.quantities, clearance, 0, math.Inf(1))
 	s.starting = marginOf(s.quantities, overStart, math.Inf(-1), 1)
 	return s

@@ -9,6 +9,7 @@ import (
 	"rampwright/problems/gas"
 	"rampwright/problems/ramp"
 	"rampwright/problems/shock"
+	"rampwright/problems/wave"
 )
 
 // closure is the frozen contour of a design: the ramp shocks of the
@@ -24,12 +25,15 @@ type closure struct {
 	lipWave float64 // beta of the lip shock as designed; 0 for an aligned cowl
 	height  float64 // capture height
 	err     error   // why the contour does not close, nil if it does
+	// moved are the walls of an inlet one part of which was turned on its hinge; nil
+	// as designed.
+	moved *wave.Geometry
 }
 
 // close builds the contour. Quantities of the geometry are missing with c.err
 // where it does not close.
 func (c *closure) close(r route, g gas.Perfect, d Design, captureHeight, incidence float64) {
-	c.Design, c.height, c.err, c.lipWave = d, captureHeight, nil, 0
+	c.Design, c.height, c.err, c.lipWave, c.moved = d, captureHeight, nil, 0, nil
 	n := d.Ramps
 	c.Corners, c.Angles = c.corners[:n], c.angles[:n]
 	c.CowlInner, c.CowlOuter = d.Cowl, d.Outer()

@@ -60,7 +60,7 @@ func heightAt(points []contour.Point, x float64) float64 {
 // shoulder is a ramp, the throat height the vertical one at the averaging plane.
 func (c *closure) take(o *Outline) {
 	n := o.ramps()
-	c.Design, c.err, c.lipWave = Design{}, nil, 0
+	c.Design, c.err, c.lipWave, c.moved = Design{}, nil, 0, nil
 	c.Corners, c.Angles = o.Body[:n], make([]float64, n)
 	for i := range n {
 		c.Angles[i] = heading(o.Body[i], o.Body[i+1])

@@ -26,14 +26,18 @@ func (a *analysis) beyondChain() bool {
 	case error(errInside), error(errCross), error(errFocusWave):
 		return true
 	}
-	return a.def.Outline != nil && a.shape.err == nil
+	return a.alwaysTraced() && a.shape.err == nil
 }
+
+// alwaysTraced reports whether no chain tells the flow: of a given outline, and of an
+// inlet with a part turned on its hinge.
+func (a *analysis) alwaysTraced() bool { return a.def.Outline != nil || a.shape.moved != nil }
 
 // follow traces the contour and takes every quantity the trace knows from it.
 func (a *analysis) follow(settings wave.Settings) {
 	t, err := a.tracing(settings)
 	if err != nil {
-		if a.def.Outline != nil { // of a design the status of the chain stands
+		if a.alwaysTraced() { // of a design the status of the chain stands
 			a.fail(&problems.Status{Phrase: "cannot be traced: " + err.Error()})
 		}
 		return

@@ -27,6 +27,7 @@ var strokes = [...]stroke{
 	CowlShock:     {"#45535f", 1.3, "5 3"},
 	Expansion:     {"#7a6200", 0.7, "2 2.5"},
 	DuctShock:     {"#005f9e", 1.2, "5 2"},
+	SlipLine:      {"#55616d", 0.9, "1.5 3"},
 }
 
 var streamlineStroke = stroke{"#00735a", 1.3, "12 3 2 3"}

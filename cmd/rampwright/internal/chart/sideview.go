@@ -30,6 +30,8 @@ const (
 	Expansion
 	// DuctShock is a shock that a crossing or a reflection made.
 	DuctShock
+	// SlipLine parts two streams of equal pressure and direction.
+	SlipLine
 )
 
 // String returns the word used in the key of the drawing.
@@ -40,7 +42,7 @@ func (k WaveKind) String() string {
 	return waveWords[k]
 }
 
-var waveWords = [...]string{"ramp shock", "lip shock", "terminal shock", "outer cowl shock", "expansion", "crossed or reflected shock"}
+var waveWords = [...]string{"ramp shock", "lip shock", "terminal shock", "outer cowl shock", "expansion", "crossed or reflected shock", "slip line"}
 
 // Wave is a straight front from (X1, Y1) to (X2, Y2), in metres. An empty name
 // draws no label.

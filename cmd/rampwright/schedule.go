@@ -1,0 +1,238 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"runtime"
+	"strconv"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/problems"
+	"rampwright/problems/envelope"
+	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
+)
+
+// scheduleFlags are the flags of `schedule` as typed.
+type scheduleFlags struct {
+	of        string
+	move      string
+	mach      string
+	incidence float64
+	points    int
+	limitsOf  string
+	dir       string
+}
+
+func (a *app) scheduleCommand() *cobra.Command {
+	var flags scheduleFlags
+	cmd := &cobra.Command{
+		Use: "schedule BRIEF", Short: "Schedule a movable ramp or cowl over Mach number: the angle that keeps the limits", Args: exactArgs(1),
+		Long: `Find, for each Mach number of a range, the angle of one movable part that keeps
+every limit and, of those, has the best aim; where none keeps them, the one that
+misses them least and by how much. The rest of the frozen geometry stays.
+
+--move cowl_angle_deg=2..9 turns the cowl about its lip, --move ramp_2_angle_deg=4..12
+turns ramp 2 and those behind it about its leading corner, between hinge stops.
+Every position is traced. Values the brief searches, ambient air and limits are
+those of envelope.`,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			study, err := read(cmd, args[0])
+			if err != nil {
+				return err
+			}
+			return a.schedule(study, flags)
+		},
+	}
+	set := cmd.Flags()
+	set.StringVar(&flags.of, "of", "", "take searched values from this result folder")
+	set.StringVar(&flags.move, "move", "", "the angle to schedule with its hinge stops, such as cowl_angle_deg=2..9, deg")
+	set.StringVar(&flags.mach, "mach", "", "range of Mach numbers, such as 4..6 (default that of the flight points)")
+	set.Float64Var(&flags.incidence, "incidence-deg", 0, "incidence, deg (default that of the design point)")
+	set.IntVar(&flags.points, "points", envelope.DefaultSchedulePoints, "Mach numbers")
+	set.StringVar(&flags.limitsOf, "limits-of", "", "flight point whose limits hold at every Mach number (default the design point)")
+	set.StringVarP(&flags.dir, "output", "o", "", "folder for schedule.json, schedule.csv and schedule.svg")
+	set.BoolVar(&a.json, "json", false, "print one JSON document")
+	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "Mach numbers side by side; never changes the result")
+	set.BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	set.BoolVar(&a.force, "force", false, "write into a folder that holds other files")
+	briefFlags(cmd)
+	cmd.PreRun = func(cmd *cobra.Command, args []string) {
+		if !cmd.Flags().Changed("incidence-deg") {
+			flags.incidence = math.NaN()
+		}
+	}
+	return cmd
+}
+
+// schedulePlan is a schedule to be found.
+type schedulePlan struct {
+	moving   *envelope.Moving
+	hinge    inlet.Hinge
+	settings envelope.ScheduleSettings
+	air      envelope.Air
+	limitsOf string
+}
+
+// scheduleFiles are the files of a schedule.
+var scheduleFiles = []string{"schedule.json", "schedule.csv", "schedule.svg"}
+
+// schedule finds a schedule and hands out what was asked for.
+func (a *app) schedule(study *study, flags scheduleFlags) error {
+	plan, err := a.schedulePlan(study, flags)
+	if err != nil {
+		return err
+	}
+	folder := filesFolder{dir: flags.dir, of: "schedule", ours: oneOf(scheduleFiles), force: a.force}
+	if err := folder.check(); err != nil {
+		return err
+	}
+	ctx, interruption := watch(0)
+	defer interruption.stop()
+	shown := a.showEvents()
+	plan.settings.Observe = shown.observe
+	found, err := envelope.Plan(ctx, plan.moving, plan.settings)
+	shown.end()
+	if err != nil {
+		return a.surveyFailed(err, interruption)
+	}
+	document := report.NewSchedule(study.head(0), report.ScheduleStudy{
+		Definition: study.problem.Definition(), Hinge: plan.hinge, Design: plan.moving.Angle(), Aim: study.brief.Aim,
+		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.moving.Quantities(), Schedule: found,
+	})
+	if flags.dir != "" {
+		picture, err := document.Picture()
+		if err != nil {
+			return err
+		}
+		if err := folder.write([]file{{"schedule.json", document.JSON()}, {"schedule.csv", document.CSV()}, {"schedule.svg", picture}}); err != nil {
+			return err
+		}
+		a.say("written: %s\n", flags.dir)
+	}
+	if err := a.print(document); err != nil {
+		return err
+	}
+	if document.Kept() == 0 {
+		return &endedWith{exitNotMet}
+	}
+	return nil
+}
+
+// schedulePlan turns the flags into a plan; everything wrong with them is reported at
+// once.
+func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, error) {
+	if study.problem == nil {
+		return nil, &usageError{"schedule moves a part of an inlet; this brief poses the analytic problem " + study.analyticName(), ""}
+	}
+	x, err := study.fixed("schedule", flags.of)
+	if err != nil {
+		return nil, err
+	}
+	plan := &schedulePlan{air: study.air(), limitsOf: flags.limitsOf}
+	s := &plan.settings
+	var wrong []error
+	note := func(err error) {
+		if err != nil {
+			wrong = append(wrong, err)
+		}
+	}
+	var low, high float64
+	plan.hinge, low, high, err = parseMove(flags.move)
+	note(err)
+	s.LowAngle, s.HighAngle = low/degree, high/degree
+	s.LowMach, s.HighMach, err = rangeOr("--mach", flags.mach, study.flownMach)
+	note(err)
+	s.Incidence = study.problem.Definition().Points[0].Incidence
+	if !math.IsNaN(flags.incidence) {
+		s.Incidence = flags.incidence / degree
+	}
+	s.Points, s.Jobs, s.Highest = flags.points, a.jobs, study.brief.Aim.Highest
+	s.Limits, err = study.limitsAt(&plan.limitsOf, problems.Geometry)
+	note(err)
+	if wrong == nil {
+		frozen := envelope.Freeze(study.problem, x, plan.air, wave.Settings{WithoutError: true})
+		if plan.moving, err = envelope.Hang(frozen, plan.hinge); err != nil {
+			note(err)
+		} else if s.Aim, err = aimOf(study.brief.Aim, plan.moving.Quantities()); err != nil {
+			note(err)
+		} else {
+			note(s.Validate())
+		}
+	}
+	if wrong != nil {
+		return nil, &usageError{strings.ReplaceAll(errors.Join(wrong...).Error(), "\n", "; "), "see rampwright schedule --help"}
+	}
+	return plan, nil
+}
+
+// parseMove reads NAME=LOW..HIGH.
+func parseMove(text string) (hinge inlet.Hinge, low, high float64, err error) {
+	if text == "" {
+		return hinge, 0, 0, errors.New("--move is missing: name the angle and its hinge stops, such as cowl_angle_deg=2..9")
+	}
+	name, stops, _ := strings.Cut(text, "=")
+	if name != hinge.Name() {
+		k, found := strings.CutPrefix(strings.TrimSuffix(name, "_angle_deg"), "ramp_")
+		hinge.Ramp, err = strconv.Atoi(k)
+		if !found || err != nil || hinge.Ramp < 1 || hinge.Name() != name {
+			return hinge, 0, 0, fmt.Errorf("--move %q: the angle is cowl_angle_deg or ramp_1_angle_deg, ramp_2_angle_deg ..", text)
+		}
+	}
+	low, high, err = rangeOr("--move "+name+"=", stops, func() (float64, float64) { return 0, 0 })
+	return hinge, low, high, err
+}
+
+// flownMach spans the Mach numbers of the flight points; of a single one a unit below.
+func (s *study) flownMach() (low, high float64) {
+	low, high = math.Inf(1), 0
+	for _, p := range s.problem.Definition().Points {
+		low, high = min(low, p.Mach), max(high, p.Mach)
+	}
+	if low == high {
+		low = max(low-1, envelope.LeastMach)
+	}
+	return low, high
+}
+
+// aimOf reads the aim of a brief at one condition, whatever points it names: its
+// first part, the least member of a group.
+func aimOf(aim problems.Aim, quantities []problems.Quantity) (func(*problems.Evaluation) float64, error) {
+	if len(aim.Parts) == 0 {
+		return nil, errors.New("the brief has no aim: of the positions that keep the limits none is the best")
+	}
+	part := aim.Parts[0]
+	indices := make([][]int, len(part.Reads))
+	for k, read := range part.Reads {
+		for i, q := range quantities {
+			if q.Name == read.Quantity && (read.Member == "" || q.Member == read.Member) {
+				indices[k] = append(indices[k], i)
+			}
+		}
+		if indices[k] == nil {
+			return nil, fmt.Errorf("the aim reads %s, which a single condition does not have", read.Quantity)
+		}
+	}
+	return func(e *problems.Evaluation) float64 {
+		values := make([]float64, len(indices))
+		for k, list := range indices {
+			values[k] = math.NaN()
+			for _, i := range list {
+				if v := e.Values[i]; !(values[k] <= v) && !math.IsNaN(v) {
+					values[k] = v
+				}
+			}
+			if math.IsNaN(values[k]) {
+				return math.NaN()
+			}
+		}
+		if part.Formula == nil {
+			return values[0]
+		}
+		return part.Formula(values)
+	}, nil
+}
