@@ -3,6 +3,8 @@ package envelope
 import (
 	"context"
 	"math"
+
+	"rampwright/problems"
 )
 
 // Kind says what a boundary separates; its text is the stable name of results.
@@ -29,14 +31,26 @@ type Line struct {
 	Margin   float64
 	Quantity string
 	Closed   bool
+
+	margin margin
+}
+
+// Value is the margin the line is the zero of, at an evaluation of the quantities
+// given; NaN where it is not known, and of a line without a margin.
+func (l *Line) Value(quantities []problems.Quantity, e *problems.Evaluation) float64 {
+	if l.Kind == StreamEnds {
+		return math.NaN()
+	}
+	m := marginOf(quantities, l.margin.quantity, l.margin.low, l.margin.high)
+	return m.value(e)
 }
 
 // boundary is one signed function of the map.
 type boundary struct {
-	kind     Kind
-	name     string
-	quantity string
-	value    func(*Sample) float64
+	kind   Kind
+	name   string
+	margin margin // none of StreamEnds
+	value  func(*Sample) float64
 }
 
 // fixedBoundaries are those every inlet has, whatever its limits.
@@ -63,7 +77,7 @@ func (s *survey) boundaries() []boundary {
 	add := func(kind Kind, name string, m margin) {
 		if key := m.name(); len(m.indices) > 0 && !known[key] {
 			known[key] = true
-			list = append(list, boundary{kind, name, m.quantity, func(x *Sample) float64 { return m.value(x.Exact) }})
+			list = append(list, boundary{kind, name, m, func(x *Sample) float64 { return m.value(x.Exact) }})
 		}
 	}
 	for _, b := range fixedBoundaries {
@@ -72,7 +86,7 @@ func (s *survey) boundaries() []boundary {
 	for _, m := range s.limits {
 		add(LimitViolated, m.name(), m)
 	}
-	list = append(list, boundary{StreamEnds, "stream ends ahead of the throat", "", func(x *Sample) float64 {
+	list = append(list, boundary{StreamEnds, "stream ends ahead of the throat", margin{}, func(x *Sample) float64 {
 		if x.Status != nil {
 			return -1
 		}
@@ -110,7 +124,7 @@ func (s *survey) trace(ctx context.Context, samples []Sample) ([]Line, error) {
 	for i, t := range tracers {
 		for _, p := range t.pieces {
 			if p.first {
-				lines = append(lines, Line{Kind: kinds[i].kind, Name: kinds[i].name, Quantity: kinds[i].quantity, Closed: p.closed})
+				lines = append(lines, Line{Kind: kinds[i].kind, Name: kinds[i].name, Quantity: kinds[i].margin.quantity, Closed: p.closed, margin: kinds[i].margin})
 			}
 			s.extend(&lines[len(lines)-1], p)
 		}

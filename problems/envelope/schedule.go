@@ -74,7 +74,7 @@ func (s ScheduleSettings) Validate() error {
 			faults = append(faults, &Invalid{fmt.Sprintf(format, args...)})
 		}
 	}
-	require(s.LowMach >= LeastMach && s.HighMach <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
+	require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
 	require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
 	require(math.Abs(s.Incidence/radian) <= MostIncidence, "incidence %.6g deg is not within %g deg", s.Incidence/radian, MostIncidence)
 	require(s.LowAngle < s.HighAngle, "hinge stops %.6g to %.6g deg have no room between them", s.LowAngle/radian, s.HighAngle/radian)

@@ -83,10 +83,10 @@ func (s Settings) Validate() error {
 			faults = append(faults, &Invalid{fmt.Sprintf(format, args...)})
 		}
 	}
-	require(s.LowMach >= LeastMach && s.HighMach <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
+	require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
 	require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
 	low, high := s.LowIncidence/radian, s.HighIncidence/radian
-	require(low >= -MostIncidence-1e-9 && high <= MostIncidence+1e-9, "incidences %.6g to %.6g deg are not within %g to %g deg", low, high, -MostIncidence, MostIncidence)
+	require(math.Max(math.Abs(low), math.Abs(high)) <= MostIncidence+1e-9, "incidences %.6g to %.6g deg are not within %g to %g deg", low, high, -MostIncidence, MostIncidence)
 	require(low < high, "the range of incidences %.6g to %.6g deg has no length", low, high)
 	require(s.MachPoints >= 2 && s.MachPoints <= MostPoints, "%d Mach numbers are not within 2 to %d", s.MachPoints, MostPoints)
 	require(s.IncidencePoints >= 2 && s.IncidencePoints <= MostPoints, "%d incidences are not within 2 to %d", s.IncidencePoints, MostPoints)

@@ -54,6 +54,9 @@ func (a *analysis) tracing(settings wave.Settings) (*wave.Trace, error) {
 
 // geometry is the contour as a trace takes it.
 func (c *closure) geometry(d *Definition) wave.Geometry {
+	if c.moved != nil {
+		return *c.moved
+	}
 	if d.Outline != nil {
 		return d.Outline.Geometry(d.CowlLength * c.height)
 	}
