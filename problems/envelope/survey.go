@@ -26,8 +26,8 @@ type Settings struct {
 	// Flatness is how far a chord of a boundary may leave it, in cells of the grid;
 	// default 0.02.
 	Flatness float64
-	// Boundaries is the model roots are sought in, cheaper than that of the grid and
-	// of the same quantities; nil takes the grid's.
+	// Boundaries is the model whose boundaries are traced, cheaper than that of the
+	// grid and of the same quantities; nil takes the grid's.
 	Boundaries Model
 	// Jobs is how many conditions are computed side by side; it changes no result.
 	// Default the number of processors.
@@ -112,7 +112,7 @@ func (s *Survey) At(i, j int) *Sample { return &s.Samples[i*s.Settings.Incidence
 // survey is a map under way.
 type survey struct {
 	model       Model
-	rough       Model // of roots
+	rough       Model // of boundaries
 	quantities  []problems.Quantity
 	settings    Settings
 	step        Condition // of the grid
@@ -128,20 +128,31 @@ func Run(ctx context.Context, model Model, settings Settings) (*Survey, error) {
 		return nil, err
 	}
 	s := newSurvey(model, settings.withDefaults())
-	samples := make([]Sample, s.settings.MachPoints*s.settings.IncidencePoints)
-	err := s.each(ctx, "map", len(samples), func(i int) (err error) {
-		node := place{float64(i / s.settings.IncidencePoints), float64(i % s.settings.IncidencePoints)}
-		samples[i], err = s.sample(ctx, s.model, s.condition(node))
-		return err
-	})
+	samples, err := s.grid(ctx, "map", s.model)
 	if err != nil {
 		return nil, err
 	}
-	lines, err := s.trace(ctx, samples)
+	nodes := samples
+	if settings.Boundaries != nil {
+		if nodes, err = s.grid(ctx, "map of boundaries", s.rough); err != nil {
+			return nil, err
+		}
+	}
+	lines, err := s.trace(ctx, nodes)
 	if err != nil {
 		return nil, err
 	}
 	return &Survey{Settings: s.settings, Samples: samples, Lines: lines, Refinements: int(s.evaluations.Load())}, nil
+}
+
+// grid evaluates a model at every point of the grid.
+func (s *survey) grid(ctx context.Context, phase string, model Model) ([]Sample, error) {
+	samples := make([]Sample, s.settings.MachPoints*s.settings.IncidencePoints)
+	return samples, s.each(ctx, phase, len(samples), func(i int) (err error) {
+		node := place{float64(i / s.settings.IncidencePoints), float64(i % s.settings.IncidencePoints)}
+		samples[i], err = s.sample(ctx, model, s.condition(node))
+		return err
+	})
 }
 
 func newSurvey(model Model, settings Settings) *survey {

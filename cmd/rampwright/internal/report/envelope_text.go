@@ -121,6 +121,7 @@ func (d *EnvelopeDocument) limits(p *page) {
 	for _, v := range shown {
 		t.columns = append(t.columns, column{head: plain(v) + " deg"})
 	}
+	t.columns = append(t.columns, column{head: "anywhere", drop: 1})
 	seen := map[string]bool{}
 	for _, line := range d.Boundary {
 		if seen[line.Kind+line.Name] {
@@ -131,10 +132,24 @@ func (d *EnvelopeDocument) limits(p *page) {
 		for _, v := range shown {
 			row = append(row, machText(d.crossing(line.Kind, line.Name, v)))
 		}
-		t.add(row...)
+		low, high := d.machsOf(line.Kind, line.Name)
+		t.add(append(row, fmt.Sprintf("%.2f .. %.2f", low, high))...)
 	}
 	p.table(t)
-	p.wrap(indent, fmt.Sprintf("Boundaries are roots to %g in Mach number, not read off the grid; one that enters and leaves between two neighbouring conditions is not seen.", float64(d.Tolerance.Mach)), indent)
+	p.wrap(indent, fmt.Sprintf("Boundaries are roots to %g in Mach number, not read off the grid, of traces coarser than those of the map where the inlet is traced; one that enters and leaves between two neighbouring conditions is not seen.", float64(d.Tolerance.Mach)), indent)
+}
+
+// machsOf is the range of Mach numbers that the lines of a boundary run through.
+func (d *EnvelopeDocument) machsOf(kind, name string) (low, high float64) {
+	low, high = math.Inf(1), math.Inf(-1)
+	for _, line := range d.Boundary {
+		if line.Kind == kind && line.Name == name {
+			for _, p := range line.Points {
+				low, high = min(low, float64(p[0])), max(high, float64(p[0]))
+			}
+		}
+	}
+	return low, high
 }
 
 // mostCrossings is how many Mach numbers one cell of the table holds.
