@@ -337,11 +337,11 @@ func (p *envelopePlan) files(document *report.EnvelopeDocument) ([]file, error) 
 		files = append(files, file{picture.name, data})
 	}
 	for i, at := range p.show {
-		data, err := p.waves(at)
+		whole, duct, err := p.waves(at)
 		if err != nil {
 			return nil, err
 		}
-		files = append(files, file{fmt.Sprintf("waves-%d.svg", i+1), data})
+		files = append(files, file{fmt.Sprintf("waves-%d.svg", i+1), whole}, file{fmt.Sprintf("duct-%d.svg", i+1), duct})
 	}
 	return files, nil
 }
@@ -352,7 +352,10 @@ func envelopeFile(name string) bool {
 	case "envelope.json", "envelope.csv", "boundary.csv", "map.svg", "capture.svg", "drag.svg":
 		return true
 	}
-	n, found := strings.CutPrefix(strings.TrimSuffix(name, ".svg"), "waves-")
-	k, err := strconv.Atoi(n)
-	return found && err == nil && k >= 1 && k <= mostShown
+	for k := range mostShown {
+		if name == fmt.Sprintf("waves-%d.svg", k+1) || name == fmt.Sprintf("duct-%d.svg", k+1) {
+			return true
+		}
+	}
+	return false
 }

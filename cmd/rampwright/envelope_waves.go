@@ -11,8 +11,30 @@ import (
 	"rampwright/problems/wave"
 )
 
-// wavesView draws every wave of a trace through its inlet.
-func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trace *wave.Trace) ([]byte, error) {
+// wavesViews draws every wave of a trace through its inlet: the whole, and the duct
+// from just ahead of the lip.
+func wavesViews(title string, at envelope.Condition, geometry wave.Geometry, trace *wave.Trace) (whole, duct []byte, err error) {
+	view := wavesView(title, at, geometry, trace)
+	if whole, err = sheetOf(view); err != nil {
+		return nil, nil, err
+	}
+	lip, end := geometry.CowlInner[0].X, wallEnd(geometry)
+	duct, err = sheetOf(cropped(view, lip-ductLead*(end-lip)))
+	return whole, duct, err
+}
+
+// ductLead is the part of the drawn duct's length shown ahead of the lip.
+const ductLead = 0.3
+
+func sheetOf(view chart.SideView) ([]byte, error) {
+	var out bytes.Buffer
+	if err := chart.WriteSideView(&out, view); err != nil {
+		return nil, err
+	}
+	return out.Bytes(), nil
+}
+
+func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trace *wave.Trace) chart.SideView {
 	end := wallEnd(geometry)
 	status := "attached"
 	if trace.Ending != nil {
@@ -28,18 +50,52 @@ func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trac
 	length := math.Max(geometry.OuterLength, 0.1*lip.Y)
 	view.CowlOuter = []chart.Vertex{vertex("", lip), vertex("", along(lip, geometry.OuterAngle, length/math.Cos(geometry.OuterAngle)))}
 	view.Body[0].Name, view.CowlInner[0].Name = "leading edge", "cowl lip"
-	if s := geometry.Shoulder; s > 0 {
+	if s := geometry.Shoulder; s > 0 && s < len(view.Body) {
 		view.Body[s].Name = "shoulder"
 	}
 	view.Waves = fronts(trace, end)
 	for _, p := range trace.Captured.Streamline {
 		view.LipStreamline = append(view.LipStreamline, vertex("", p))
 	}
-	var out bytes.Buffer
-	if err := chart.WriteSideView(&out, view); err != nil {
-		return nil, err
+	return view
+}
+
+// cropped is the part of a view from x on.
+func cropped(view chart.SideView, from float64) chart.SideView {
+	view.Body = croppedLine(view.Body, from)
+	view.LipStreamline = croppedLine(view.LipStreamline, from)
+	var kept []chart.Wave
+	for _, w := range view.Waves {
+		if w.X2 <= from {
+			continue
+		}
+		if w.X1 < from {
+			w.Y1 += (from - w.X1) / (w.X2 - w.X1) * (w.Y2 - w.Y1)
+			w.X1 = from
+		}
+		kept = append(kept, w)
 	}
-	return out.Bytes(), nil
+	view.Waves = kept
+	return view
+}
+
+// croppedLine is the part of a line from x on; nil where one point is left of it.
+func croppedLine(line []chart.Vertex, from float64) []chart.Vertex {
+	var kept []chart.Vertex
+	for i, p := range line {
+		if p.X < from {
+			continue
+		}
+		if i > 0 && kept == nil && p.X > from {
+			q := line[i-1]
+			kept = append(kept, chart.Vertex{X: from, Y: q.Y + (from-q.X)/(p.X-q.X)*(p.Y-q.Y)})
+		}
+		kept = append(kept, p)
+	}
+	if len(kept) < 2 {
+		return nil
+	}
+	return kept
 }
 
 // wavesNote says what of the trace is drawn and what it found.
@@ -124,10 +180,10 @@ func frontKind(f wave.Front) (kind chart.WaveKind, name string) {
 }
 
 // waves draws the inlet with every wave at one condition.
-func (p *envelopePlan) waves(at envelope.Condition) ([]byte, error) {
+func (p *envelopePlan) waves(at envelope.Condition) (whole, duct []byte, err error) {
 	geometry, trace, err := p.frozen.Waves(at)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	return wavesView(p.study.brief.Title, at, geometry, trace)
+	return wavesViews(p.study.brief.Title, at, geometry, trace)
 }

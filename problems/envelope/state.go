@@ -21,6 +21,8 @@ const (
 	OverStart
 	// Swallowed: attached, a ramp shock falls inside the lip.
 	Swallowed
+	// Unresolved: a trace spent its budget of fronts or events ahead of the throat.
+	Unresolved
 	// Ended: the stream does not reach the throat for a reason not named below.
 	Ended
 	// Pocket: the flow is subsonic behind a shock.
@@ -37,7 +39,7 @@ const (
 
 var stateNames = [States]string{
 	"attached", "over the self-start limit", "shocks inside the lip",
-	"flow ends", "subsonic pocket", "Mach reflection", "lip shock detached", "ramp shock detached",
+	"not resolved", "flow ends", "subsonic pocket", "Mach reflection", "lip shock detached", "ramp shock detached",
 }
 
 // String returns the phrase of legends.
@@ -102,15 +104,19 @@ func ending(status error) State {
 // tracedEnding names the state of a trace that ended early.
 func tracedEnding(end *wave.Ending) State {
 	switch end.Reason {
+	case wave.FrontBudget, wave.EventBudget:
+		return Unresolved
 	case wave.MachReflection:
 		return Reflection
 	case wave.SubsonicPocket:
 		return Pocket
 	case wave.Detached:
-		if end.Site == "lip" {
+		switch {
+		case end.Site == "lip":
 			return LipDetached
+		case strings.HasPrefix(end.Site, "body corner"):
+			return RampDetached
 		}
-		return RampDetached
 	}
 	return Ended
 }

@@ -9,7 +9,7 @@ type RegionMap struct {
 	Subtitle []string
 	X, Y     Span
 	NX, NY   int      // points of the grid along x and y, each the middle of its cell
-	Classes  []string // what a point may be, 1 to 8 of them
+	Classes  []string // what a point may be, 1 to 9 of them
 	Cells    []int    // the class of each point, row by row from the low end of y
 	// Dots marks the points for which DotName holds.
 	Dots    []bool
@@ -71,7 +71,7 @@ func (m RegionMap) Validate() error {
 
 // regionTints tell classes apart by lightness first, in the order of concern, so
 // that they survive a grey print and every colour deficiency.
-var regionTints = [...]string{"#fbf7e6", "#f3dfae", "#bcd6dc", "#dcb7a0", "#a795b4", "#8f7f6a", "#6f7c86", "#4b5660"}
+var regionTints = [...]string{"#fbf7e6", "#f3dfae", "#bcd6dc", "#e3e3e0", "#dcb7a0", "#a795b4", "#8f7f6a", "#6f7c86", "#4b5660"}
 
 // names lists the distinct names of the lines in their order, with the longest line
 // of each, which carries the label.

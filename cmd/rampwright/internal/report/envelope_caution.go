@@ -26,7 +26,7 @@ func (d *EnvelopeDocument) raise() []Caution {
 	if n := count(envelope.Swallowed); n > 0 {
 		add("shocks_inside", "At %d of %d conditions a ramp shock falls inside the lip: it strikes the cowl and reflects in the duct, and the boundary layer there may separate, which is not computed.", n, all)
 	}
-	if n := count(envelope.RampDetached) + count(envelope.LipDetached) + count(envelope.Reflection) + count(envelope.Pocket) + count(envelope.Ended); n > 0 {
+	if n := count(envelope.RampDetached) + count(envelope.LipDetached) + count(envelope.Reflection) + count(envelope.Pocket) + count(envelope.Ended) + count(envelope.Unresolved); n > 0 {
 		add("not_attached", "At %d of %d conditions the captured stream does not reach the throat as computed; what lies behind is not known.", n, all)
 	}
 	if t := d.hottestThroat(); t > hottest {

@@ -12,7 +12,7 @@ import (
 // stateLetters are the states on the map of letters; a capital keeps every limit.
 var stateLetters = [envelope.States]byte{
 	envelope.Attached: 'a', envelope.OverStart: 's', envelope.Swallowed: 'i',
-	envelope.Ended: 'x', envelope.Pocket: 'p', envelope.Reflection: 'm', envelope.LipDetached: 'c', envelope.RampDetached: 'd',
+	envelope.Unresolved: 'u', envelope.Ended: 'x', envelope.Pocket: 'p', envelope.Reflection: 'm', envelope.LipDetached: 'c', envelope.RampDetached: 'd',
 }
 
 // letter is that of a row.
@@ -80,7 +80,7 @@ func (d *EnvelopeDocument) letters(p *page) {
 	p.WriteByte('\n')
 	p.wrap(indent, strings.Join(legend, ", ")+fmt.Sprintf("; capital letters keep every limit (%d of %d conditions).", d.Within, len(d.Rows)), indent)
 	if every > 1 {
-		p.wrap(indent, fmt.Sprintf("Every %d. Mach number is shown.", every), indent)
+		p.wrap(indent, fmt.Sprintf("One Mach number in %d is shown.", every), indent)
 	}
 }
 

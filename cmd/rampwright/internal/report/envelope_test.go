@@ -1,0 +1,124 @@
+package report
+
+import (
+	"context"
+	"encoding/json"
+	"math"
+	"reflect"
+	"strings"
+	"testing"
+
+	"rampwright/problems"
+	"rampwright/problems/envelope"
+	"rampwright/problems/gas"
+	"rampwright/problems/inlet"
+)
+
+// ridge is a model whose recovery falls off Mach 5 and whose shock detaches below
+// Mach 3.5.
+type ridge struct{}
+
+func (ridge) Quantities() []problems.Quantity {
+	return []problems.Quantity{{Name: "recovery"}, {Name: "ramp_attachment_margin_deg", Member: "ramp 1"}}
+}
+
+func (ridge) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (status, err error) {
+	dst.Set(1, at.Mach-3.5)
+	if at.Mach < 3.5 {
+		detached := &problems.Detached{Shock: "ramp 1", Mach: at.Mach, By: 0.1}
+		dst.Miss(0, detached)
+		return detached, nil
+	}
+	dst.Set(0, 1-math.Abs(at.Mach-5)/10)
+	return nil, nil
+}
+
+func ridgeDocument(t *testing.T) *EnvelopeDocument {
+	t.Helper()
+	survey, err := envelope.Run(context.Background(), ridge{}, envelope.Settings{
+		LowMach: 3, HighMach: 6, LowIncidence: -2 * math.Pi / 180, HighIncidence: 2 * math.Pi / 180, MachPoints: 70, IncidencePoints: 3,
+		Limits: []problems.Limit{{Quantity: "recovery", Low: 0.95, High: math.Inf(1)}},
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return NewEnvelope(Head{Program: "p", Title: "An inlet", BriefHash: "h"}, EnvelopeStudy{
+		Definition: inlet.Definition{Gas: gas.Air, Points: []inlet.Point{{Name: "cruise", Mach: 5}}},
+		LimitsOf:   "cruise", Air: envelope.Air{Pressure: 2000, Temperature: 220}, Quantities: ridge{}.Quantities(), Survey: survey,
+	})
+}
+
+func TestEnvelopeDocument(t *testing.T) {
+	d := ridgeDocument(t)
+	var top struct {
+		Rows []struct {
+			Quantities, Missing map[string]any
+			LimitsMissed        []string `json:"limits_missed"`
+		}
+		Boundary []map[string]any
+	}
+	if err := json.Unmarshal(d.JSON(), &top); err != nil {
+		t.Fatal(err)
+	}
+	var keys map[string]json.RawMessage
+	if err := json.Unmarshal(d.JSON(), &keys); err != nil {
+		t.Fatal(err)
+	}
+	for _, key := range []string{"format", "program", "title", "brief_hash", "variables", "air", "limits_of", "grid", "states", "within_every_limit", "rows", "boundary", "boundary_tolerance", "cautions", "assumptions"} {
+		if _, ok := keys[key]; !ok {
+			t.Errorf("no key %s", key)
+		}
+		delete(keys, key)
+	}
+	for key := range keys {
+		t.Errorf("key %s is not among those held", key)
+	}
+	first := top.Rows[0]
+	if first.Quantities["recovery"] != nil || !strings.Contains(first.Missing["recovery"].(string), "ramp 1 detached") {
+		t.Errorf("a missing value: %v, %v", first.Quantities["recovery"], first.Missing["recovery"])
+	}
+	if !reflect.DeepEqual(first.LimitsMissed, []string{"recovery >= 0.95"}) {
+		t.Errorf("limits missed: %v", first.LimitsMissed)
+	}
+	for _, line := range top.Boundary {
+		for _, key := range []string{"kind", "name", "quantity", "margin", "closed", "points"} {
+			if _, ok := line[key]; !ok {
+				t.Errorf("a boundary has no %s", key)
+			}
+		}
+	}
+	if got := d.crossing("limit", "recovery >= 0.95", 0); len(got) != 2 || math.Abs(got[0]-4.5) > 1e-5 || math.Abs(got[1]-5.5) > 1e-5 {
+		t.Errorf("recovery 0.95 is crossed at Mach %v, want 4.5 and 5.5", got)
+	}
+}
+
+func TestEnvelopeText(t *testing.T) {
+	d := ridgeDocument(t)
+	for _, width := range []int{80, 100, 140} {
+		for _, line := range strings.Split(d.Text(width), "\n") {
+			if len(line) > width {
+				t.Errorf("width %d: %q has %d columns", width, line, len(line))
+			}
+		}
+	}
+	text := d.Text(80)
+	for _, part := range []string{"dddddd", "AAAA", "aaaa", "4.5000 5.5000", "One Mach number in 2 is shown", "Mach  3"} {
+		if !strings.Contains(text, part) {
+			t.Errorf("the text has no %q", part)
+		}
+	}
+	if rows := strings.Count(string(d.CSV()), "\n"); rows != 1+70*3 {
+		t.Errorf("%d lines of envelope.csv", rows)
+	}
+	if !strings.HasPrefix(string(d.BoundaryCSV()), "line,kind,name,mach,incidence_deg\n1,ramp_shock_detaches,") {
+		t.Errorf("boundary.csv begins with %.80q", d.BoundaryCSV())
+	}
+	picture, err := d.Map()
+	if err != nil || !strings.Contains(string(picture), `data-name="cruise"`) {
+		t.Errorf("map.svg: %v", err)
+	}
+	curve, err := d.Against("recovery", "recovery")
+	if err != nil || !strings.Contains(string(curve), "incidence -2 deg") {
+		t.Errorf("a curve: %v", err)
+	}
+}
