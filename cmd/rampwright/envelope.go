@@ -66,6 +66,10 @@ over the whole map.`,
 	return cmd
 }
 
+// mapTrace are the settings of traces on a map and in a schedule: the defaults,
+// written out because they are stated in the result.
+var mapTrace = wave.Settings{Wavelet: wave.DefaultWavelet, Threshold: wave.DefaultThreshold, WithoutError: true}
+
 // envelopePlan is a map to be computed.
 type envelopePlan struct {
 	study    *study
@@ -98,7 +102,8 @@ func (a *app) envelope(study *study, flags envelopeFlags) error {
 	}
 	document := report.NewEnvelope(study.head(0), report.EnvelopeStudy{
 		Definition: study.problem.Definition(), Variables: study.problem.Variables(), X: plan.x,
-		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.frozen.Quantities(), Survey: survey,
+		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.frozen.Quantities(),
+		Map: mapTrace, Boundaries: inlet.SearchTrace(), Survey: survey,
 	})
 	if flags.dir != "" {
 		files, err := plan.files(document)
@@ -167,7 +172,7 @@ func (a *app) envelopePlan(study *study, flags envelopeFlags) (*envelopePlan, er
 	if wrong != nil {
 		return nil, &usageError{strings.ReplaceAll(errors.Join(wrong...).Error(), "\n", "; "), "see rampwright envelope --help"}
 	}
-	plan.frozen = envelope.Freeze(study.problem, x, plan.air, wave.Settings{WithoutError: true})
+	plan.frozen = envelope.Freeze(study.problem, x, plan.air, mapTrace)
 	s.Boundaries = plan.frozen.With(inlet.SearchTrace())
 	return plan, nil
 }

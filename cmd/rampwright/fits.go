@@ -2,8 +2,6 @@ package main
 
 import (
 	"fmt"
-	"os"
-	"path/filepath"
 	"runtime"
 	"slices"
 	"strconv"
@@ -227,7 +225,8 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	if err != nil {
 		return err
 	}
-	if err := a.checkFitsFolder(dir); err != nil {
+	folder := filesFolder{dir: dir, of: "fits", ours: oneOf(fitsFiles), force: a.force}
+	if err := folder.check(); err != nil {
 		return err
 	}
 	ctx, interruption := watch(limit)
@@ -242,7 +241,11 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	}
 	document := report.NewFits(study.head(plan.seed), *result)
 	if dir != "" {
-		if err := writeFits(dir, document); err != nil {
+		picture, err := document.Picture()
+		if err != nil {
+			return err
+		}
+		if err := folder.write([]file{{"fits.json", document.JSON()}, {"fits.csv", document.CSV()}, {"fits.svg", picture}}); err != nil {
 			return err
 		}
 		a.say("written: %s\n", dir)
@@ -261,44 +264,3 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 
 // fitsFiles are the files of a study.
 var fitsFiles = []string{"fits.json", "fits.csv", "fits.svg"}
-
-// checkFitsFolder refuses a folder with files that are not ours.
-func (a *app) checkFitsFolder(dir string) error {
-	if dir == "" || a.force {
-		return nil
-	}
-	entries, err := os.ReadDir(dir)
-	if os.IsNotExist(err) {
-		return nil
-	}
-	if err != nil {
-		return &usageError{"cannot write there: " + err.Error(), "name a folder"}
-	}
-	for _, entry := range entries {
-		if !slices.Contains(fitsFiles, entry.Name()) {
-			return &usageError{fmt.Sprintf("%s holds %s, which is no file of fits", dir, entry.Name()), "name another folder, or --force"}
-		}
-	}
-	return nil
-}
-
-// writeFits writes the files of a study; each appears whole or not at all.
-func writeFits(dir string, document *report.FitsDocument) error {
-	picture, err := document.Picture()
-	if err != nil {
-		return err
-	}
-	if err := os.MkdirAll(dir, 0o777); err != nil {
-		return err
-	}
-	for i, data := range [][]byte{document.JSON(), document.CSV(), picture} {
-		name := filepath.Join(dir, fitsFiles[i])
-		if err := os.WriteFile(name+".part", data, 0o666); err != nil {
-			return err
-		}
-		if err := os.Rename(name+".part", name); err != nil {
-			return err
-		}
-	}
-	return nil
-}

@@ -14,7 +14,6 @@ import (
 	"rampwright/problems"
 	"rampwright/problems/envelope"
 	"rampwright/problems/inlet"
-	"rampwright/problems/wave"
 )
 
 // scheduleFlags are the flags of `schedule` as typed.
@@ -102,7 +101,7 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 	}
 	document := report.NewSchedule(study.head(0), report.ScheduleStudy{
 		Definition: study.problem.Definition(), Hinge: plan.hinge, Design: plan.moving.Angle(), Aim: study.brief.Aim,
-		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.moving.Quantities(), Schedule: found,
+		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.moving.Quantities(), Traces: mapTrace, Schedule: found,
 	})
 	if flags.dir != "" {
 		picture, err := document.Picture()
@@ -155,7 +154,7 @@ func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, er
 	s.Limits, err = study.limitsAt(&plan.limitsOf, problems.Geometry)
 	note(err)
 	if wrong == nil {
-		frozen := envelope.Freeze(study.problem, x, plan.air, wave.Settings{WithoutError: true})
+		frozen := envelope.Freeze(study.problem, x, plan.air, mapTrace)
 		if plan.moving, err = envelope.Hang(frozen, plan.hinge); err != nil {
 			note(err)
 		} else if s.Aim, err = aimOf(study.brief.Aim, plan.moving.Quantities()); err != nil {

@@ -89,12 +89,12 @@ func TestBoundaryPointsKeepTheirMargin(t *testing.T) {
 	}
 	margin := func(line envelope.Line, at envelope.Condition) float64 {
 		e := problems.NewEvaluation(len(frozen.Quantities()))
-		status, err := frozen.At(context.Background(), at, e)
+		outcome, err := frozen.At(context.Background(), at, e)
 		if err != nil {
 			t.Fatal(err)
 		}
 		if line.Kind == envelope.StreamEnds {
-			if status != nil {
+			if outcome.Status != nil {
 				return -1
 			}
 			return 1
@@ -161,9 +161,9 @@ func (plane) Quantities() []problems.Quantity { return discQuantities[:1] }
 
 func (p plane) margin(at envelope.Condition) float64 { return p.a*at.Mach + p.b*at.Incidence + p.c }
 
-func (p plane) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (status, err error) {
+func (p plane) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (envelope.Outcome, error) {
 	dst.Set(0, p.margin(at))
-	return nil, nil
+	return envelope.Outcome{}, nil
 }
 
 // TestLinesOfAPlane: the zero of a linear margin is one straight line from border to
@@ -263,5 +263,24 @@ func TestStatesOfEndings(t *testing.T) {
 		if got := survey.At(want.i, want.j); got.State != want.state {
 			t.Errorf("Mach %.4g, incidence %.3g deg: %s (%v), want %s", got.Mach, got.Incidence/degree, got.State, got.Status, want.state)
 		}
+	}
+}
+
+// TestACancelledRunEnds: a survey and a schedule end with the error of the context,
+// and keep nothing.
+func TestACancelledRunEnds(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	settings := discSettings()
+	settings.Jobs, settings.Observe = 2, func(e envelope.Event) {
+		if e.Done == 10 {
+			cancel()
+		}
+	}
+	if survey, err := envelope.Run(ctx, disc{}, settings); !errors.Is(err, context.Canceled) || survey != nil {
+		t.Errorf("survey %v, error %v", survey, err)
+	}
+	schedule, err := envelope.Plan(ctx, slope{func(float64) float64 { return 0 }, func(float64) float64 { return 1 }}, slopeSettings(1, 2))
+	if !errors.Is(err, context.Canceled) || schedule != nil {
+		t.Errorf("schedule %v, error %v", schedule, err)
 	}
 }

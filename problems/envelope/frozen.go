@@ -49,26 +49,26 @@ func (f *Frozen) Point(at Condition) (inlet.Point, error) {
 }
 
 // At computes the inlet at one condition.
-func (f *Frozen) At(ctx context.Context, at Condition, dst *problems.Evaluation) (status, err error) {
+func (f *Frozen) At(ctx context.Context, at Condition, dst *problems.Evaluation) (Outcome, error) {
 	point, err := f.Point(at)
 	if err != nil {
-		return nil, err
+		return Outcome{}, err
 	}
 	flow, err := f.inlet.At(ctx, point, f.settings)
 	if err != nil {
-		return nil, err
+		return Outcome{}, err
 	}
 	return take(flow, dst), nil
 }
 
-// take copies the values of a flow and returns its status.
-func take(flow *inlet.PointFlow, dst *problems.Evaluation) (status error) {
+// take copies the values of a flow and returns its outcome.
+func take(flow *inlet.PointFlow, dst *problems.Evaluation) Outcome {
 	copy(dst.Values, flow.Evaluation.Values)
 	copy(dst.Reasons, flow.Evaluation.Reasons)
 	if flow.Err != nil && flow.Trace != nil && flow.Trace.Ending != nil {
-		return &TraceEnded{flow.Err, flow.Trace.Ending}
+		return Outcome{&TraceEnded{flow.Err, flow.Trace.Ending}, flow.Traced}
 	}
-	return flow.Err
+	return Outcome{flow.Err, flow.Traced}
 }
 
 // TraceEnded is the status of a traced stream that ended early, with its place.

@@ -39,25 +39,25 @@ func (m *Moving) Angle() float64 {
 func (m *Moving) Quantities() []problems.Quantity { return m.quantities }
 
 // At computes the inlet with the part at an angle.
-func (m *Moving) At(ctx context.Context, angle float64, at Condition, dst *problems.Evaluation) (status, err error) {
+func (m *Moving) At(ctx context.Context, angle float64, at Condition, dst *problems.Evaluation) (Outcome, error) {
 	moved, err := m.frozen.inlet.Move(m.hinge, angle)
 	if err != nil {
-		return nil, err
+		return Outcome{}, err
 	}
 	point, err := m.frozen.Point(at)
 	if err != nil {
-		return nil, err
+		return Outcome{}, err
 	}
 	flow, err := moved.At(ctx, point, m.frozen.settings)
 	if err != nil {
-		return nil, err
+		return Outcome{}, err
 	}
-	status = take(flow, dst)
+	outcome := take(flow, dst)
 	n := len(m.frozen.quantities)
 	_, geometry := moved.OfGeometry()
 	copy(dst.Values[n:], geometry.Values)
 	copy(dst.Reasons[n:], geometry.Reasons)
-	return status, nil
+	return outcome, nil
 }
 
 // Waves traces the inlet with the part at an angle; see Frozen.Waves.

@@ -16,7 +16,7 @@ type Mover interface {
 	// Quantities lists what At fills, in order: of the condition, then of the geometry.
 	Quantities() []problems.Quantity
 	// At fills dst for the part at an angle, rad; see Model.
-	At(ctx context.Context, angle float64, at Condition, dst *problems.Evaluation) (status, err error)
+	At(ctx context.Context, angle float64, at Condition, dst *problems.Evaluation) (Outcome, error)
 }
 
 // ScheduleSettings choose a schedule: the angle of the part at each Mach number that
@@ -97,8 +97,8 @@ type Missed struct {
 
 // Position is the part at one angle.
 type Position struct {
-	Angle  float64 // rad
-	Status error   // why the captured stream does not reach the throat, nil where it does
+	Angle float64 // rad
+	Outcome
 	Aim    float64 // NaN where not known
 	Missed []Missed
 	Exact  *problems.Evaluation
@@ -222,7 +222,7 @@ func (s *search) position(angle float64) (Position, error) {
 	s.spent++
 	p := Position{Angle: angle, Exact: problems.NewEvaluation(len(s.quantities))}
 	var err error
-	if p.Status, err = s.mover.At(s.ctx, angle, s.at, p.Exact); err != nil {
+	if p.Outcome, err = s.mover.At(s.ctx, angle, s.at, p.Exact); err != nil {
 		return p, err
 	}
 	p.Aim = s.settings.Aim(p.Exact)

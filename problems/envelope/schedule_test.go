@@ -23,11 +23,11 @@ func (slope) Quantities() []problems.Quantity {
 	return []problems.Quantity{{Name: "recovery"}, {Name: "throat_mach"}}
 }
 
-func (s slope) At(_ context.Context, angle float64, at envelope.Condition, dst *problems.Evaluation) (status, err error) {
+func (s slope) At(_ context.Context, angle float64, at envelope.Condition, dst *problems.Evaluation) (envelope.Outcome, error) {
 	off := (angle - s.best(at.Mach)) / degree
 	dst.Set(0, 1-off*off)
 	dst.Set(1, (s.most(at.Mach)-angle)/degree)
-	return nil, nil
+	return envelope.Outcome{}, nil
 }
 
 func recoveryOf(e *problems.Evaluation) float64 { return e.Values[0] }

@@ -28,16 +28,16 @@ func discMargins(at envelope.Condition) (ramp, ratio float64) {
 	return at.Mach - 3.8 + 0.05*y, x*x + y*y/9
 }
 
-func (disc) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (status, err error) {
+func (disc) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (envelope.Outcome, error) {
 	ramp, ratio := discMargins(at)
 	dst.Set(0, ramp)
 	if ramp < 0 {
 		detached := &problems.Detached{Shock: "ramp 1", Mach: at.Mach, By: -ramp * degree}
 		dst.Miss(1, detached)
-		return detached, nil
+		return envelope.Outcome{Status: detached}, nil
 	}
 	dst.Set(1, ratio)
-	return nil, nil
+	return envelope.Outcome{}, nil
 }
 
 func discSettings() envelope.Settings {

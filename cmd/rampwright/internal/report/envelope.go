@@ -8,6 +8,7 @@ import (
 	"rampwright/problems"
 	"rampwright/problems/envelope"
 	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
 )
 
 // EnvelopeStudy is a finished map of one frozen inlet.
@@ -18,6 +19,8 @@ type EnvelopeStudy struct {
 	LimitsOf   string // the flight point whose limits hold over the map
 	Air        envelope.Air
 	Quantities []problems.Quantity
+	Map        wave.Settings // of its traces
+	Boundaries wave.Settings // of those the boundaries are taken from
 	Survey     *envelope.Survey
 }
 
@@ -31,6 +34,7 @@ type EnvelopeDocument struct {
 	Air       EnvelopeAir    `json:"air"`
 	LimitsOf  string         `json:"limits_of"`
 	Grid      EnvelopeGrid   `json:"grid"`
+	Traces    EnvelopeTraces `json:"traces"`
 	// States counts the rows by state, Within those that keep every limit.
 	States      Object[int]    `json:"states"`
 	Within      int            `json:"within_every_limit"`
@@ -52,6 +56,12 @@ type EnvelopeAir struct {
 	Missing            Object[string] `json:"missing,omitzero"`
 }
 
+// EnvelopeTraces are the resolutions of the traces, where the inlet is traced.
+type EnvelopeTraces struct {
+	Map      TraceSettings `json:"map"`
+	Boundary TraceSettings `json:"boundary"`
+}
+
 // EnvelopeGrid lists the conditions of the rows.
 type EnvelopeGrid struct {
 	Mach         []Number `json:"mach"`
@@ -65,6 +75,7 @@ type EnvelopeRow struct {
 	IncidenceDeg Number         `json:"incidence_deg"`
 	Status       string         `json:"status"`
 	State        string         `json:"state"`
+	Traced       bool           `json:"traced"` // wave by wave, not by the chain of straight shocks
 	Missed       []string       `json:"limits_missed"`
 	Quantities   Object[Number] `json:"quantities"`
 	Missing      Object[string] `json:"missing"`
@@ -97,7 +108,8 @@ func NewEnvelope(head Head, study EnvelopeStudy) *EnvelopeDocument {
 	d := &EnvelopeDocument{
 		Format: format, Program: head.Program, Title: head.Title, BriefHash: head.BriefHash,
 		Variables: Object[Number]{}, Air: newEnvelopeAir(study.Air), LimitsOf: study.LimitsOf,
-		Rows: []EnvelopeRow{}, Boundary: []EnvelopeLine{},
+		Traces: EnvelopeTraces{traceSettings(study.Map), traceSettings(study.Boundaries)},
+		Rows:   []EnvelopeRow{}, Boundary: []EnvelopeLine{},
 		Tolerance:   EnvelopeTrust{Number(s.Settings.Tolerance), Number(s.Settings.Tolerance), s.Refinements},
 		Assumptions: assumptions(study.Definition), study: study,
 	}
@@ -159,7 +171,7 @@ func (a *EnvelopeAir) text() string {
 
 func newEnvelopeRow(quantities []problems.Quantity, x *envelope.Sample) EnvelopeRow {
 	row := EnvelopeRow{
-		Mach: Number(x.Mach), IncidenceDeg: Number(gridDegrees(x.Incidence)), Status: attachedStatus, State: x.State.String(), Missed: x.Missed,
+		Mach: Number(x.Mach), IncidenceDeg: Number(gridDegrees(x.Incidence)), Status: attachedStatus, State: x.State.String(), Traced: x.Traced, Missed: x.Missed,
 		readings: readings(quantities, x.Exact), sample: x,
 	}
 	if x.Status != nil {

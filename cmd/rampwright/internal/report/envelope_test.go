@@ -22,15 +22,15 @@ func (ridge) Quantities() []problems.Quantity {
 	return []problems.Quantity{{Name: "recovery"}, {Name: "ramp_attachment_margin_deg", Member: "ramp 1"}}
 }
 
-func (ridge) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (status, err error) {
+func (ridge) At(_ context.Context, at envelope.Condition, dst *problems.Evaluation) (envelope.Outcome, error) {
 	dst.Set(1, at.Mach-3.5)
 	if at.Mach < 3.5 {
 		detached := &problems.Detached{Shock: "ramp 1", Mach: at.Mach, By: 0.1}
 		dst.Miss(0, detached)
-		return detached, nil
+		return envelope.Outcome{Status: detached}, nil
 	}
 	dst.Set(0, 1-math.Abs(at.Mach-5)/10)
-	return nil, nil
+	return envelope.Outcome{}, nil
 }
 
 func ridgeDocument(t *testing.T) *EnvelopeDocument {
@@ -64,7 +64,7 @@ func TestEnvelopeDocument(t *testing.T) {
 	if err := json.Unmarshal(d.JSON(), &keys); err != nil {
 		t.Fatal(err)
 	}
-	for _, key := range []string{"format", "program", "title", "brief_hash", "variables", "air", "limits_of", "grid", "states", "within_every_limit", "rows", "boundary", "boundary_tolerance", "cautions", "assumptions"} {
+	for _, key := range []string{"format", "program", "title", "brief_hash", "variables", "air", "limits_of", "grid", "traces", "states", "within_every_limit", "rows", "boundary", "boundary_tolerance", "cautions", "assumptions"} {
 		if _, ok := keys[key]; !ok {
 			t.Errorf("no key %s", key)
 		}

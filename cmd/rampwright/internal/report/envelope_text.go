@@ -79,9 +79,28 @@ func (d *EnvelopeDocument) letters(p *page) {
 	}
 	p.WriteByte('\n')
 	p.wrap(indent, strings.Join(legend, ", ")+fmt.Sprintf("; capital letters keep every limit (%d of %d conditions).", d.Within, len(d.Rows)), indent)
+	if n := d.traced(); n > 0 {
+		p.wrap(indent, fmt.Sprintf("%d conditions are traced wave by wave, %s; flow states the error bound of one.", n, d.Traces.Map.text()), indent)
+	}
 	if every > 1 {
 		p.wrap(indent, fmt.Sprintf("One Mach number in %d is shown.", every), indent)
 	}
+}
+
+// traced counts the conditions that are traced.
+func (d *EnvelopeDocument) traced() int {
+	n := 0
+	for i := range d.Rows {
+		if d.Rows[i].Traced {
+			n++
+		}
+	}
+	return n
+}
+
+// text names the resolution of a trace.
+func (s TraceSettings) text() string {
+	return fmt.Sprintf("expansion wavelets of %s deg, threshold %s", plain(float64(s.WaveletDeg)), plain(float64(s.Threshold)))
 }
 
 // machAxis writes Mach numbers below the map where they have room.
@@ -136,7 +155,11 @@ func (d *EnvelopeDocument) limits(p *page) {
 		t.add(append(row, fmt.Sprintf("%.2f .. %.2f", low, high))...)
 	}
 	p.table(t)
-	p.wrap(indent, fmt.Sprintf("Boundaries are roots to %g in Mach number, not read off the grid, of traces coarser than those of the map where the inlet is traced; one that enters and leaves between two neighbouring conditions is not seen.", float64(d.Tolerance.Mach)), indent)
+	note := fmt.Sprintf("Boundaries are roots to %g in Mach number, not read off the grid; one that enters and leaves between two neighbouring conditions is not seen.", float64(d.Tolerance.Mach))
+	if d.traced() > 0 {
+		note += " Where the inlet is traced they are those of " + d.Traces.Boundary.text() + "."
+	}
+	p.wrap(indent, note, indent)
 }
 
 // machsOf is the range of Mach numbers that the lines of a boundary run through.
@@ -192,7 +215,6 @@ func (d *EnvelopeDocument) along(p *page) {
 	for _, c := range alongColumns {
 		t.columns = append(t.columns, column{head: c.head, drop: c.drop})
 	}
-	missing := map[string]bool{}
 	for k := range min(n, alongRows) {
 		i := k
 		if n > alongRows {
@@ -204,27 +226,23 @@ func (d *EnvelopeDocument) along(p *page) {
 			cells = append(cells, significant(row.value(c.name)))
 		}
 		t.add(cells...)
-		if row.Status != attachedStatus && !missing[row.Status] {
-			missing[row.Status] = true
-			t.annotate("")
+		if row.Status != attachedStatus {
+			t.annotate(row.Status)
 		}
 	}
 	p.table(t)
-	if len(missing) > 0 {
-		p.wrap(indent, none+": not known, for the reason envelope.json gives beside each row.", indent)
-	}
 }
 
 // CSV writes envelope.csv: one row a condition with every quantity, empty where
 // it is missing.
 func (d *EnvelopeDocument) CSV() []byte {
-	header := []string{"mach", "incidence_deg", "state", "status"}
+	header := []string{"mach", "incidence_deg", "state", "status", "traced"}
 	for _, q := range d.Rows[0].Quantities {
 		header = append(header, q.Name)
 	}
 	rows := [][]string{header}
 	for _, row := range d.Rows {
-		cells := []string{shortest(float64(row.Mach)), shortest(float64(row.IncidenceDeg)), row.State, row.Status}
+		cells := []string{shortest(float64(row.Mach)), shortest(float64(row.IncidenceDeg)), row.State, row.Status, fmt.Sprint(row.Traced)}
 		for _, q := range row.Quantities {
 			cells = append(cells, shortest(float64(q.Value)))
 		}

@@ -10,6 +10,7 @@ import (
 	"rampwright/problems"
 	"rampwright/problems/envelope"
 	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
 )
 
 // ScheduleStudy is a finished schedule of a movable part.
@@ -21,6 +22,7 @@ type ScheduleStudy struct {
 	LimitsOf   string
 	Air        envelope.Air
 	Quantities []problems.Quantity
+	Traces     wave.Settings
 	Schedule   *envelope.Schedule
 }
 
@@ -37,6 +39,7 @@ type ScheduleDocument struct {
 	IncidenceDeg Number        `json:"incidence_deg"`
 	Air          EnvelopeAir   `json:"air"`
 	LimitsOf     string        `json:"limits_of"`
+	Traces       TraceSettings `json:"traces"`
 	Aim          LadderAim     `json:"aim"`
 	Rows         []ScheduleRow `json:"rows"`
 	Evaluations  int           `json:"evaluations"`
@@ -81,7 +84,7 @@ func NewSchedule(head Head, study ScheduleStudy) *ScheduleDocument {
 		Moved: study.Hinge.Name(), HingeModel: cowlModel, DesignDeg: Number(gridDegrees(study.Design)),
 		StopsDeg:     [2]Number{Number(gridDegrees(s.LowAngle)), Number(gridDegrees(s.HighAngle))},
 		IncidenceDeg: Number(gridDegrees(s.Incidence)), Air: newEnvelopeAir(study.Air), LimitsOf: study.LimitsOf,
-		Aim: LadderAim{study.Aim.Text, "every Mach number", study.Aim.Highest}, Rows: []ScheduleRow{},
+		Traces: traceSettings(study.Traces), Aim: LadderAim{study.Aim.Text, "every Mach number", study.Aim.Highest}, Rows: []ScheduleRow{},
 		Evaluations: study.Schedule.Evaluations, Assumptions: assumptions(study.Definition), study: study,
 	}
 	if k := study.Hinge.Ramp; k > 0 {
