@@ -24,6 +24,8 @@ type scheduleFlags struct {
 	incidence float64
 	points    int
 	limitsOf  string
+	highest   string
+	lowest    string
 	dir       string
 }
 
@@ -54,6 +56,8 @@ those of envelope.`,
 	set.Float64Var(&flags.incidence, "incidence-deg", 0, "incidence, deg (default that of the design point)")
 	set.IntVar(&flags.points, "points", envelope.DefaultSchedulePoints, "Mach numbers")
 	set.StringVar(&flags.limitsOf, "limits-of", "", "flight point whose limits hold at every Mach number (default the design point)")
+	set.StringVar(&flags.highest, "highest", "", "quantity to drive up, in place of the brief's aim")
+	set.StringVar(&flags.lowest, "lowest", "", "quantity to drive down, in place of the brief's aim")
 	set.StringVarP(&flags.dir, "output", "o", "", "folder for schedule.json, schedule.csv and schedule.svg")
 	set.BoolVar(&a.json, "json", false, "print one JSON document")
 	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "Mach numbers side by side; never changes the result")
@@ -73,6 +77,7 @@ type schedulePlan struct {
 	moving   *envelope.Moving
 	hinge    inlet.Hinge
 	settings envelope.ScheduleSettings
+	aim      problems.Aim
 	air      envelope.Air
 	limitsOf string
 }
@@ -100,7 +105,7 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 		return a.surveyFailed(err, interruption)
 	}
 	document := report.NewSchedule(study.head(0), report.ScheduleStudy{
-		Definition: study.problem.Definition(), Hinge: plan.hinge, Design: plan.moving.Angle(), Aim: study.brief.Aim,
+		Definition: study.problem.Definition(), Hinge: plan.hinge, Design: plan.moving.Angle(), Aim: plan.aim,
 		LimitsOf: plan.limitsOf, Air: plan.air, Quantities: plan.moving.Quantities(), Traces: mapTrace, Schedule: found,
 	})
 	if flags.dir != "" {
@@ -150,14 +155,16 @@ func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, er
 	if !math.IsNaN(flags.incidence) {
 		s.Incidence = flags.incidence / degree
 	}
-	s.Points, s.Jobs, s.Highest = flags.points, a.jobs, study.brief.Aim.Highest
+	plan.aim, err = study.aimOr(flags.highest, flags.lowest)
+	note(err)
+	s.Points, s.Jobs, s.Highest = flags.points, a.jobs, plan.aim.Highest
 	s.Limits, err = study.limitsAt(&plan.limitsOf, problems.Geometry)
 	note(err)
 	if wrong == nil {
 		frozen := envelope.Freeze(study.problem, x, plan.air, mapTrace)
 		if plan.moving, err = envelope.Hang(frozen, plan.hinge); err != nil {
 			note(err)
-		} else if s.Aim, err = aimOf(study.brief.Aim, plan.moving.Quantities()); err != nil {
+		} else if s.Aim, err = aimOf(plan.aim, plan.moving.Quantities()); err != nil {
 			note(err)
 		} else {
 			note(s.Validate())
@@ -198,12 +205,23 @@ func (s *study) flownMach() (low, high float64) {
 	return low, high
 }
 
-// aimOf reads the aim of a brief at one condition, whatever points it names: its
+// aimOr is the quantity given, or the aim of the brief.
+func (s *study) aimOr(highest, lowest string) (problems.Aim, error) {
+	switch {
+	case highest != "" && lowest != "":
+		return problems.Aim{}, errors.New("--highest and --lowest: keep one")
+	case highest+lowest != "":
+		name := highest + lowest
+		return problems.Aim{Highest: highest != "", Text: name, Parts: []problems.Part{{Reads: []problems.Read{{Quantity: name}}}}}, nil
+	case len(s.brief.Aim.Parts) == 0:
+		return problems.Aim{}, errors.New("the brief has no aim: of the positions that keep the limits none is the best; name a quantity with --highest or --lowest")
+	}
+	return s.brief.Aim, nil
+}
+
+// aimOf reads an aim at one condition, whatever points it names: its
 // first part, the least member of a group.
 func aimOf(aim problems.Aim, quantities []problems.Quantity) (func(*problems.Evaluation) float64, error) {
-	if len(aim.Parts) == 0 {
-		return nil, errors.New("the brief has no aim: of the positions that keep the limits none is the best")
-	}
 	part := aim.Parts[0]
 	indices := make([][]int, len(part.Reads))
 	for k, read := range part.Reads {

@@ -45,6 +45,7 @@ func WriteRegionMap(w io.Writer, m RegionMap) error {
 const (
 	regionHeight = 430.0 // of the frame
 	keyStep      = 20.0  // between rows of the key
+	ringRoom     = 6.0   // around a place
 	farBelow     = 400.0 // the frame: where names without room in it go
 )
 
@@ -134,7 +135,9 @@ func (d linesSheet) regionLabels(m RegionMap, p panel) []label {
 	// A name goes below the frame only where there is no room inside at all.
 	s := scene{zone: box{p.frame.x + 2, p.frame.y + 2, p.frame.w - 4, p.frame.h - 4}, low: p.frame.bottom() + farBelow}
 	for _, at := range m.Places {
-		add(label{name: at.Name, role: "place", ink: darkInk, anchors: []point{p.at(at.X, at.Y)}})
+		c := p.at(at.X, at.Y)
+		add(label{name: at.Name, role: "place", ink: darkInk, anchors: []point{c}})
+		s.taken = append(s.taken, box{c.x - ringRoom, c.y - ringRoom, 2 * ringRoom, 2 * ringRoom})
 	}
 	names, longest := m.names()
 	for k, name := range names {
