@@ -186,7 +186,7 @@ func parseMove(text string) (hinge inlet.Hinge, low, high float64, err error) {
 		k, found := strings.CutPrefix(strings.TrimSuffix(name, "_angle_deg"), "ramp_")
 		hinge.Ramp, err = strconv.Atoi(k)
 		if !found || err != nil || hinge.Ramp < 1 || hinge.Name() != name {
-			return hinge, 0, 0, fmt.Errorf("--move %q: the angle is cowl_angle_deg or ramp_1_angle_deg, ramp_2_angle_deg ..", text)
+			return hinge, 0, 0, fmt.Errorf("--move %q: the angle is cowl_angle_deg or ramp_1_angle_deg, ramp_2_angle_deg and so on", text)
 		}
 	}
 	low, high, err = rangeOr("--move "+name+"=", stops, func() (float64, float64) { return 0, 0 })
