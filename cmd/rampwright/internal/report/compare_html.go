@@ -103,53 +103,55 @@ func (s *Shape) outline(name string) chart.Outline {
 	return o
 }
 
-// sideTable has one row a name and one column a result.
-func (d *CompareDocument) sideTable(head string) *htmlTable {
-	t := &htmlTable{Head: heads(head)}
-	for i := range d.Results {
-		h := d.folderCell(i)
-		h.Number = true
-		t.Head = append(t.Head, h)
+// mostAcross is how many results stand beside each other on a sheet of A4.
+const mostAcross = 8
+
+// sideTables adds tables of one row a name and one column a result, as many as
+// the width takes.
+func (d *CompareDocument) sideTables(s *chapter, head string, rows int, name func(row int) string, value func(row, result int) cell) {
+	for first := 0; first < len(d.Results) && rows > 0; first += mostAcross {
+		end := min(first+mostAcross, len(d.Results))
+		t := &htmlTable{Head: heads(head)}
+		for i := first; i < end; i++ {
+			h := d.folderCell(i)
+			h.Number = true
+			t.Head = append(t.Head, h)
+		}
+		for k := range rows {
+			row := heads(name(k))
+			for i := first; i < end; i++ {
+				row = append(row, value(k, i))
+			}
+			t.Rows = append(t.Rows, row)
+		}
+		s.table(t)
 	}
-	return t
 }
 
 func (d *CompareDocument) variableChapter() chapter {
 	s := chapter{ID: "variables", Head: "Searched values"}
-	t := d.sideTable("searched value")
-	for _, name := range d.variableNames() {
-		row := heads(name)
-		for i := range d.Results {
-			value, ok := d.Results[i].Variables.Get(name)
-			if !ok {
-				row = append(row, cell{Text: none, Number: true})
-				continue
-			}
-			row = append(row, number(value, "compare", "results", i, "variables", name))
+	names := d.variableNames()
+	d.sideTables(&s, "searched value", len(names), func(k int) string { return names[k] }, func(k, i int) cell {
+		value, ok := d.Results[i].Variables.Get(names[k])
+		if !ok {
+			return cell{Text: none, Number: true}
 		}
-		t.Rows = append(t.Rows, row)
-	}
-	s.table(t)
+		return number(value, "compare", "results", i, "variables", names[k])
+	})
 	return s
 }
 
 func (d *CompareDocument) marginChapter() chapter {
 	s := chapter{ID: "margins", Head: "Margins"}
-	t := d.sideTable("limit")
-	for _, key := range d.limitKeys() {
-		row := heads(key.String())
-		for i := range d.Results {
-			k := d.Results[i].least(key)
-			if k < 0 {
-				row = append(row, cell{Text: d.Results[i].without(key), Number: true})
-				continue
-			}
-			row = append(row, number(d.Results[i].Limits[k].Margin, "compare", "results", i, "limits", k, "margin"))
+	keys := d.limitKeys()
+	d.sideTables(&s, "limit", len(keys), func(k int) string { return keys[k].String() }, func(k, i int) cell {
+		row := d.Results[i].least(keys[k])
+		if row < 0 {
+			return cell{Text: d.Results[i].without(keys[k]), Number: true}
 		}
-		t.Rows = append(t.Rows, row)
-	}
-	s.table(t)
-	if len(t.Rows) > 0 {
+		return number(d.Results[i].Limits[row].Margin, "compare", "results", i, "limits", row, "margin")
+	})
+	if len(keys) > 0 {
 		s.say(words("In the unit of the quantity, positive inside; of a group the least."))
 	}
 	return s

@@ -62,6 +62,8 @@ th,td{padding:3px 10px;text-align:left;border-bottom:1px solid var(--line);verti
 th{font-weight:normal}
 thead th.n{text-align:right}
 thead th{color:var(--soft);border-bottom:1.5px solid var(--ink);vertical-align:bottom}
+thead th.n{min-width:5.5em}
+thead th.n span{overflow-wrap:anywhere}
 tbody th{white-space:nowrap}
 td.n{text-align:right;white-space:nowrap}
 tbody tr:nth-child(even){background:var(--tint)}
@@ -72,16 +74,23 @@ figcaption{font-size:13px;color:var(--soft);max-width:84ch;padding-top:4px}
 .picture>svg{display:block;width:100%;height:auto;min-width:640px;max-width:1000px}
 .small{display:grid;grid-template-columns:repeat(auto-fill,minmax(290px,1fr));gap:14px}
 .small .picture>svg{min-width:0}
+#quantities>div{display:flex;flex-wrap:wrap;gap:0 30px;align-items:flex-start}
+#quantities table{min-width:0}
 footer{font-size:12.5px;color:var(--soft);padding-top:14px}
-@media (max-width:760px){
+@media screen and (max-width:760px){
 main{margin:0;border-width:0;outline:0;padding:16px 14px}
 header{grid-template-columns:1fr;gap:16px}
 section{grid-template-columns:minmax(0,1fr);gap:10px}
 h1{font-size:22px}
+table{font-size:12px}
+th,td{padding:3px 6px}
+tbody th{position:sticky;left:0;background:var(--sheet);white-space:normal;min-width:30vw;max-width:42vw}
+tbody tr:nth-child(even) th{background:var(--tint)}
 }
 @page{size:A4;margin:13mm}
 @media print{
-body{background:#fff;font-size:10.5pt}
+:root{--ground:#fff;--sheet:#fff}
+body{font-size:10.5pt}
 main{margin:0;border:0;outline:0;padding:0;max-width:none}
 section{display:block}
 h2{margin-bottom:8px}
@@ -90,15 +99,19 @@ header{grid-template-columns:1fr 84mm}
 .block{font-size:8pt}
 table{font-size:7.6pt;min-width:0}
 th,td{padding:1.5px 4px}
-.bar{width:38mm}
+thead th.n{min-width:4.4em}
+tbody th{white-space:normal}
+.bar{width:34mm}
 .wide,.picture{overflow:visible}
-.picture>svg{min-width:0}
-.small{grid-template-columns:1fr 1fr 1fr;gap:3mm}
+.picture>svg{min-width:0;max-width:none}
+.small{grid-template-columns:repeat(2,minmax(0,1fr));gap:3mm}
+#quantities>div{display:block}
 figure,tr,li{break-inside:avoid}
+p{break-inside:avoid;orphans:3}
 }
 `
 
-var pageTemplate = template.Must(template.New("page").Parse(`<!DOCTYPE html>
+var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"broken": broken}).Parse(`<!DOCTYPE html>
 <html lang="en">
 <head>
 <meta charset="utf-8" />
@@ -141,4 +154,12 @@ var pageTemplate = template.Must(template.New("page").Parse(`<!DOCTYPE html>
 {{end}}{{end}}</main>
 </body>
 </html>
-{{define "cell"}}{{if .Bar}}{{.Bar}}{{else if .Value}}<data value="{{.Value}}" data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{.Text}}</span>{{else}}{{.Text}}{{end}}{{end}}`))
+{{define "cell"}}{{if .Bar}}{{.Bar}}{{else if .Value}}<data value="{{.Value}}" data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{broken .Text}}</span>{{else}}{{broken .Text}}{{end}}{{end}}`))
+
+// broken is text in which a line may end behind each underscore and slash of a
+// name.
+func broken(text string) template.HTML {
+	return template.HTML(nameBreaks.Replace(template.HTMLEscapeString(text)))
+}
+
+var nameBreaks = strings.NewReplacer("_", "_<wbr />", "/", "/<wbr />")
