@@ -53,7 +53,7 @@ run that was cut short resumes from it.`,
 func (a *app) searchFlags(cmd *cobra.Command) {
 	cmd.Flags().IntVar(&a.jobs, "jobs", runtime.NumCPU(), "evaluations and fits side by side; never changes the result")
 	cmd.Flags().StringVar(&a.timeLimit, "time-limit", "", "stop with the best so far after this time, such as 90s or 10m")
-	cmd.Flags().BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	a.progressFlags(cmd)
 	cmd.Flags().BoolVar(&a.force, "force", false, "replace a result folder of another title")
 }
 

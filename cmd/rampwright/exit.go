@@ -70,6 +70,11 @@ func (a *app) finish(err error) int {
 		return exitDone
 	case errors.As(err, &ended):
 		return ended.code
+	case errors.As(err, &problems) && a.form == jsonLines:
+		for _, p := range problems {
+			a.complain(strings.TrimSpace(brief.Problems{p}.Format()), "")
+		}
+		return exitUsage
 	case errors.As(err, &problems):
 		fmt.Fprint(a.messages, problems.Format())
 		fmt.Fprintf(a.messages, "\n%s\n", count(len(problems), "problem"))
@@ -83,13 +88,6 @@ func (a *app) finish(err error) int {
 	}
 	a.complain(err.Error(), "")
 	return exitError
-}
-
-func (a *app) complain(message, hint string) {
-	fmt.Fprintf(a.messages, "rampwright: %s\n", message)
-	if hint != "" {
-		fmt.Fprintf(a.messages, "  hint: %s\n", hint)
-	}
 }
 
 // count returns "1 problem", "2 problems".

@@ -63,7 +63,7 @@ deviation. Limits of the brief play no part.`,
 	set.BoolVar(&a.json, "json", false, "print one JSON document")
 	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "fits side by side; changes no figure but the seconds")
 	set.StringVar(&a.timeLimit, "time-limit", "", "stop with the designs done so far after this time, such as 90s or 10m")
-	set.BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	a.progressFlags(cmd)
 	set.BoolVar(&a.force, "force", false, "write into a folder that holds other files")
 	briefFlags(cmd)
 	return cmd
@@ -231,7 +231,11 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	}
 	ctx, interruption := watch(limit)
 	defer interruption.stop()
-	result, err := runFits(ctx, plan, a.fitsProgress())
+	progress := a.progress()
+	result, err := runFits(ctx, plan, func(done, total int) {
+		progress.show(stage{phase: "fitting", done: done, total: total, unit: "design"})
+	})
+	progress.end()
 	if code := interruption.code.Load(); err != nil && code != 0 {
 		a.say("%v\n", err)
 		return &endedWith{int(code)}

@@ -39,20 +39,26 @@ const intervalPoints = 512
 // without them. The figures depend on the plan alone, not on its jobs; the
 // seconds do not. A context that ends first leaves the designs that were
 // finished; where there is none, the error is errNothingFitted.
-func runFits(ctx context.Context, plan *fitsPlan, progress *fitsProgress) (*report.FitsStudy, error) {
+//
+// What was fitted is told to observe, if it is not nil, from one goroutine.
+func runFits(ctx context.Context, plan *fitsPlan, observe func(done, total int)) (*report.FitsStudy, error) {
 	plans := []*fitsPlan{plan}
 	if plan.inert > 0 || plan.noise > 0 {
 		plain := *plan
 		plain.inert, plain.noise = 0, 0
 		plans = append(plans, &plain)
 	}
-	progress.begin(len(plans) * len(plan.counts) * plan.designs * len(plan.quantities))
-	defer progress.end()
+	done, total := 0, len(plans)*len(plan.counts)*plan.designs*len(plan.quantities)
+	advance := func() {
+		if done++; observe != nil {
+			observe(done, total)
+		}
+	}
 	study := &report.FitsStudy{Setup: plan.setup()}
 	for i, p := range plans {
 		run, err := newFitsRun(ctx, p)
 		if err == nil {
-			err = run.all(ctx, progress)
+			err = run.all(ctx, advance)
 		}
 		if err != nil && ctx.Err() == nil {
 			return nil, err
@@ -185,14 +191,14 @@ func (r *fitsRun) evaluate(ctx context.Context, points [][]float64) ([][]float64
 
 // all makes every design, then fits each quantity on each, few samples first.
 // Fits run side by side and fill their slot; the progress is told from here.
-func (r *fitsRun) all(ctx context.Context, progress *fitsProgress) error {
+func (r *fitsRun) all(ctx context.Context, advance func()) error {
 	for i := range r.cells {
 		if err := r.sample(ctx, &r.cells[i]); err != nil {
 			return err
 		}
 	}
 	total := len(r.cells) * len(r.quantities)
-	finished := make(chan int, total)
+	finished := make(chan struct{}, total)
 	var next atomic.Int64
 	var group sync.WaitGroup
 	for range r.jobs {
@@ -206,12 +212,13 @@ func (r *fitsRun) all(ctx context.Context, progress *fitsProgress) error {
 				if outcome := r.fit(ctx, cell, k); ctx.Err() == nil {
 					cell.done[k] = outcome
 				}
-				finished <- cell.count
+				finished <- struct{}{}
 			}
 		})
 	}
 	for range total {
-		progress.step(<-finished)
+		<-finished
+		advance()
 	}
 	group.Wait()
 	return nil

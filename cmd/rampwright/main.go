@@ -14,7 +14,7 @@ func main() {
 
 // run executes one command line and returns its exit code.
 func run(args []string, in io.Reader, out, messages io.Writer) int {
-	app := &app{in: in, out: out, messages: messages}
+	app := &app{in: in, out: out, messages: messages, form: autoProgress}
 	command := app.root()
 	command.SetArgs(args)
 	err := command.Execute()

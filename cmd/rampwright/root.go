@@ -21,6 +21,7 @@ type app struct {
 
 	json      bool
 	quiet     bool
+	form      progressForm
 	force     bool
 	jobs      int
 	timeLimit string
