@@ -59,7 +59,7 @@ deviation. Limits of the brief play no part.`,
 	set.IntVar(&flags.inert, "noise-inputs", 0, "inert inputs added to the problem")
 	set.Float64Var(&flags.noise, "noise", 0, "standard deviation of the noise added to the samples, in the unit of the quantity")
 	set.Float64Var(&flags.accuracy, "accuracy", 1e-3, "error asked for, as a fraction of the spread of the quantity")
-	set.StringVarP(&flags.dir, "output", "o", "", "folder for fits.json, fits.csv and fits.svg")
+	set.StringVarP(&flags.dir, "output", "o", "", "folder for fits.json, fits.csv and fits.svg, perhaps that of a design")
 	set.BoolVar(&a.json, "json", false, "print one JSON document")
 	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "fits side by side; changes no figure but the seconds")
 	set.StringVar(&a.timeLimit, "time-limit", "", "stop with the designs done so far after this time, such as 90s or 10m")

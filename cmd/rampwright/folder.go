@@ -5,10 +5,13 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+
+	"rampwright/cmd/rampwright/internal/runstore"
 )
 
-// filesFolder is a folder for the files of one command, which it may hold from an
-// earlier run; with others it is refused.
+// filesFolder is a folder for the files of one command: its own, which may hold
+// those of an earlier run, or the result folder of a design, beside its files. One
+// with other files is refused.
 type filesFolder struct {
 	dir   string // "" writes nothing
 	of    string // the command
@@ -24,6 +27,9 @@ func oneOf(names []string) func(string) bool {
 // check refuses a folder with files that are not ours.
 func (f filesFolder) check() error {
 	if f.dir == "" || f.force {
+		return nil
+	}
+	if _, err := runstore.ReadMark(f.dir); err == nil {
 		return nil
 	}
 	entries, err := os.ReadDir(f.dir)

@@ -13,7 +13,8 @@ import (
 
 var picturesDir = flag.String("pictures", "", "folder for screenshots and prints of the pages a browser opens, to be looked at")
 
-// pages writes the review pages of two starters and their comparison.
+// pages writes the review pages of two starters, one with a study, and their
+// comparison.
 func pages(t *testing.T) map[string]string {
 	t.Helper()
 	files := map[string]string{}
@@ -28,6 +29,15 @@ func pages(t *testing.T) map[string]string {
 		t.Fatalf("%+v", got)
 	}
 	files["compare"] = compared
+	veyricLadder().done(t, "ladder.json")
+	for _, name := range []string{"ladder.json", "ladder.svg"} {
+		if err := os.WriteFile(filepath.Join(filepath.Dir(files["veyric-6"]), name), veyricLadder().files[name], 0o600); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if got := command("report", filepath.Dir(files["veyric-6"]), "--quiet"); got.code != exitDone {
+		t.Fatalf("%+v", got)
+	}
 	return files
 }
 

@@ -6,6 +6,8 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
+	"strings"
 
 	"github.com/spf13/cobra"
 
@@ -18,28 +20,48 @@ const pageName = "report.html"
 
 func (a *app) reportCommand() *cobra.Command {
 	var file string
+	var with []string
 	cmd := &cobra.Command{
 		Use: "report DIR", Short: "Write the review page of a result folder", Args: exactArgs(1),
 		Long: `Write the review page of a design as one HTML file that stands alone: no
 script, nothing fetched. It is made of the files in the result folder, the same
-page as "design" puts there; by default it takes that page's place.`,
+page as "design" puts there; by default it takes that page's place.
+
+Further studies of the same brief become sections: ` + strings.Join(report.StudyNames(), ", ") + `, where
+DIR or a folder given by --with holds NAME.json, and NAME.svg beside it.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			if file == "" {
 				file = filepath.Join(args[0], pageName)
 			}
-			return a.report(args[0], file)
+			return a.report(args[0], with, file)
 		},
 	}
 	cmd.Flags().StringVarP(&file, "output", "o", "", "file of the page (default DIR/"+pageName+")")
+	cmd.Flags().StringArrayVar(&with, "with", nil, "folder of a further study to show as well; may be repeated")
 	cmd.Flags().BoolVar(&a.quiet, "quiet", false, "no message")
 	return cmd
 }
 
-// report writes the page of a folder.
-func (a *app) report(dir, file string) error {
+// report writes the page of a folder, with the studies in others.
+func (a *app) report(dir string, with []string, file string) error {
 	folder, err := resultFolder(dir)
 	if err != nil {
 		return err
+	}
+	for _, other := range with {
+		studies, err := studiesIn(other)
+		if err != nil {
+			return err
+		}
+		if studies == nil {
+			return &usageError{other + " holds no study", "a study writes " + strings.Join(report.StudyNames(), ".json, ") + ".json"}
+		}
+		for _, s := range studies {
+			if slices.ContainsFunc(folder.Studies, func(known report.StudyFile) bool { return known.Name == s.Name }) {
+				return &usageError{other + " holds one more " + s.Name + ".json", "a page shows one of each"}
+			}
+		}
+		folder.Studies = append(folder.Studies, studies...)
 	}
 	page, err := report.Page(*folder)
 	if err != nil {
@@ -75,7 +97,38 @@ func resultFolder(dir string) (*report.Folder, error) {
 			return nil, &usageError{"no finished design there: " + err.Error(), "rampwright design writes one"}
 		}
 	}
-	return folder, nil
+	var err error
+	folder.Studies, err = studiesIn(dir)
+	return folder, err
+}
+
+// studiesIn reads the studies a folder holds.
+func studiesIn(dir string) ([]report.StudyFile, error) {
+	var list []report.StudyFile
+	for _, name := range report.StudyNames() {
+		document, err := optionalFile(filepath.Join(dir, name+".json"))
+		if err != nil {
+			return nil, err
+		}
+		if document == nil {
+			continue
+		}
+		picture, err := optionalFile(filepath.Join(dir, name+".svg"))
+		if err != nil {
+			return nil, err
+		}
+		list = append(list, report.StudyFile{Name: name, Document: document, Picture: picture})
+	}
+	return list, nil
+}
+
+// optionalFile reads a file, nil where there is none.
+func optionalFile(path string) ([]byte, error) {
+	data, err := os.ReadFile(path)
+	if errors.Is(err, fs.ErrNotExist) {
+		return nil, nil
+	}
+	return data, err
 }
 
 // withPage adds the review of a finished design and its page to the files of the

@@ -84,6 +84,45 @@ func TestReportOfNoResult(t *testing.T) {
 	}
 }
 
+// A page shows the studies of its folder and of folders named beside it.
+func TestReportWithStudies(t *testing.T) {
+	dir, ladder, empty := designStarter(t, "veyric-6").folder(t), t.TempDir(), t.TempDir()
+	veyricLadder().done(t, "ladder.json")
+	for _, name := range []string{"ladder.json", "ladder.svg"} {
+		if err := os.WriteFile(filepath.Join(ladder, name), veyricLadder().files[name], 0o600); err != nil {
+			t.Fatal(err)
+		}
+	}
+	fits := command("fits", starterBrief("veyric-6"), "-o", dir, "--counts", "20,40", "--replicates", "2", "--test-points", "64", "--quiet")
+	if fits.code != exitDone {
+		t.Fatalf("%+v", fits)
+	}
+	page := filepath.Join(t.TempDir(), "page.html")
+	if got := command("report", dir, "--with", ladder, "-o", page, "--quiet"); got.code != exitDone {
+		t.Fatalf("%+v", got)
+	}
+	data, err := os.ReadFile(page)
+	if err != nil || readsAsXML(data) != nil {
+		t.Fatal(err, readsAsXML(data))
+	}
+	at := 0
+	for _, want := range []string{`<section id="ladder">`, "recovery against ramps", `<section id="fits">`, "Learning curves: ", `<section id="progress">`} {
+		next := bytes.Index(data, []byte(want))
+		if next < at {
+			t.Errorf("%s is out of order, or missing", want)
+		}
+		at = next
+	}
+	if bytes.Contains(data, []byte("Run for another brief")) || bytes.Contains(data, []byte("Not drawn")) {
+		t.Error("the studies are those of this brief, and their pictures drawings")
+	}
+	for _, c := range []struct{ with, want string }{{empty, "holds no study"}, {dir, "one more fits.json"}} {
+		if got := command("report", dir, "--with", c.with); got.code != exitUsage || !strings.Contains(got.messages, c.want) {
+			t.Errorf("--with %s: %+v", c.with, got)
+		}
+	}
+}
+
 // Results stand side by side as text, JSON and page.
 func TestCompareStarters(t *testing.T) {
 	var args []string

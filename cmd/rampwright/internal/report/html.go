@@ -2,8 +2,8 @@ package report
 
 import (
 	"encoding/json"
-
 	"fmt"
+	"slices"
 	"strings"
 )
 
@@ -13,6 +13,7 @@ type Folder struct {
 	Run      []byte // run.json
 	Review   []byte // review.json; nil in a folder written before there was one
 	SideView []byte // inlet.svg; nil where the contour does not close
+	Studies  []StudyFile
 }
 
 // RunRecord is run.json: what the result does not depend on.
@@ -45,6 +46,7 @@ type result struct {
 	run      RunRecord
 	review   *Review
 	sideView []byte
+	studies  []*studyPage
 }
 
 // readResult reads the files of a folder, or returns *DamagedFolder.
@@ -62,7 +64,9 @@ func readResult(f Folder) (*result, error) {
 		r.review = new(Review)
 		read("review.json", f.Review, r.review)
 	}
-	if found == nil {
+	var bad []string
+	r.studies, bad = readStudies(f.Studies)
+	if found = append(found, bad...); found == nil {
 		found = r.defects()
 	}
 	if found != nil {
@@ -116,10 +120,9 @@ func (r *result) sheet() *sheet {
 	status := quoted(r.Status, "result", "status")
 	return &sheet{
 		Title: []cell{quoted(r.Title, "result", "title")}, Status: &status, Answer: r.answerCells(), Facts: r.facts(),
-		Sections: []chapter{
+		Sections: slices.Concat([]chapter{
 			r.cautionSection(), r.designSection(), r.conflictSection(), r.sideViewSection(), r.marginSection(), r.stationSection(),
-			r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(), r.progressSection(),
-			r.assumptionSection(), r.provenanceSection(),
-		},
+			r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(),
+		}, r.studySections(), []chapter{r.progressSection(), r.assumptionSection(), r.provenanceSection()}),
 	}
 }

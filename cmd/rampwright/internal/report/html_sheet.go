@@ -31,6 +31,7 @@ type chapter struct {
 // block is exactly one of its parts.
 type block struct {
 	Paragraph []cell
+	Warning   []cell
 	List      [][]cell
 	Table     *htmlTable
 	Figures   []htmlFigure
@@ -57,6 +58,8 @@ type cell struct {
 	Value  string
 	Number bool          // it stands in a column of numbers
 	Bar    template.HTML // in place of text
+	Parts  []cell        // in place of text
+	Place  bool          // the text counts the rows of its table
 }
 
 // words is text of the page's own.
@@ -106,6 +109,9 @@ func columnHeads(left int, names ...string) []cell {
 }
 
 func (s *chapter) say(cells ...cell) { s.Blocks = append(s.Blocks, block{Paragraph: cells}) }
+
+// warn adds a sentence that a reader must not miss.
+func (s *chapter) warn(cells ...cell) { s.Blocks = append(s.Blocks, block{Warning: cells}) }
 
 func (s *chapter) list(items [][]cell) {
 	if len(items) > 0 {

@@ -55,6 +55,7 @@ p{margin:0 0 10px;max-width:78ch}
 ul{margin:0 0 10px;padding-left:20px;max-width:84ch}
 li{margin-bottom:6px}
 #cautions li{border-left:4px solid var(--alert);list-style:none;padding-left:12px;margin-left:-20px}
+.warning{border-left:4px solid var(--alert);padding-left:12px}
 .wide{overflow-x:auto;margin:0 0 16px}
 table{border-collapse:collapse;font-size:13px;min-width:50%}
 caption{text-align:left;font-weight:bold;padding:0 0 5px}
@@ -136,6 +137,7 @@ var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"br
 <h2>{{.Head}}</h2>
 <div>
 {{range .Blocks}}{{$small := .Small}}{{if .Paragraph}}<p>{{range .Paragraph}}{{template "cell" .}}{{end}}</p>
+{{end}}{{if .Warning}}<p class="warning">{{range .Warning}}{{template "cell" .}}{{end}}</p>
 {{end}}{{if .List}}<ul>
 {{range .List}}<li>{{range .}}{{template "cell" .}}{{end}}</li>
 {{end}}</ul>
@@ -154,7 +156,7 @@ var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"br
 {{end}}{{end}}</main>
 </body>
 </html>
-{{define "cell"}}{{if .Bar}}{{.Bar}}{{else if .Value}}<data value="{{.Value}}" data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{broken .Text}}</span>{{else}}{{broken .Text}}{{end}}{{end}}`))
+{{define "cell"}}{{if .Parts}}{{range .Parts}}{{template "cell" .}}{{end}}{{else if .Bar}}{{.Bar}}{{else if .Place}}<span class="place">{{.Text}}</span>{{else if .Value}}<data value="{{.Value}}" data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{broken .Text}}</span>{{else}}{{broken .Text}}{{end}}{{end}}`))
 
 // broken is text in which a line may end behind each underscore and slash of a
 // name.

@@ -63,6 +63,7 @@ func checkPage(t *testing.T, page []byte, documents map[string][]byte) (numbers 
 	}
 	var open []element
 	ids := map[string]bool{}
+	place := 0 // the row counted last
 	apart := 0 // depth within a drawing, style or title
 	for {
 		token, err := decoder.Token()
@@ -103,6 +104,12 @@ func checkPage(t *testing.T, page []byte, documents map[string][]byte) (numbers 
 			if e.name == "svg" || e.name == "style" || e.name == "head" {
 				apart--
 			}
+			if e.at["class"] == "place" {
+				if e.text != fmt.Sprintf("point %d", place+1) && e.text != "point 1" {
+					t.Errorf("%q follows point %d", e.text, place)
+				}
+				fmt.Sscanf(e.text, "point %d", &place)
+			}
 			if from := e.at["data-from"]; from != "" {
 				if e.name == "data" {
 					numbers++
@@ -115,7 +122,7 @@ func checkPage(t *testing.T, page []byte, documents map[string][]byte) (numbers 
 			}
 			e := &open[len(open)-1]
 			e.text += string(token)
-			if apart == 0 && e.at["data-from"] == "" && numeral.Match(token) {
+			if apart == 0 && e.at["data-from"] == "" && e.at["class"] != "place" && numeral.Match(token) {
 				t.Errorf("<%s> holds a number of no document: %q", e.name, token)
 			}
 		}
@@ -161,5 +168,9 @@ func checkQuotation(t *testing.T, sources map[string]any, from, value, text stri
 }
 
 func documents(f Folder) map[string][]byte {
-	return map[string][]byte{"result": f.Result, "run": f.Run, "review": f.Review}
+	list := map[string][]byte{"result": f.Result, "run": f.Run, "review": f.Review}
+	for _, s := range f.Studies {
+		list[s.Name] = s.Document
+	}
+	return list
 }

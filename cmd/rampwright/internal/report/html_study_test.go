@@ -1,0 +1,94 @@
+package report
+
+import (
+	"bytes"
+	"errors"
+	"strings"
+	"testing"
+)
+
+const somePicture = `<svg width="10" height="10" viewBox="0 0 10 10" role="img" aria-label="curve"><title>curve</title><defs><pattern id="hatch" width="4" height="4"></pattern></defs><rect width="4" height="4" fill="url(#hatch)"/></svg>`
+
+// studies are one of each a page has room for: three as their commands write
+// them, two plain ones.
+func studies(t *testing.T) []StudyFile {
+	t.Helper()
+	spread := `{"format": 1, "brief_hash": "abc", "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25,
+"quantities": [{"quantity": "recovery", "at": "cruise", "mean": 0.5, "p05": null, "affected": true, "of": {"a": 1}}, {"quantity": "length_m", "at": "geometry", "mean": 0.6, "p05": 0.1, "affected": false}], "empty": [], "numbers": [1, 2]}`
+	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "rows": [` + strings.Repeat(`{"mach": 4.5, "status": "attached"},`, mostRows+1) + `{"mach": 5, "status": "detached"}]}`
+	return []StudyFile{
+		{"ladder", NewLadder(head, ladderFixture(t)).JSON(), []byte(somePicture)},
+		{"trade", NewTrade(head, tradeFixture(t)).JSON(), nil},
+		{"fits", NewFits(head, fitsFixture(false)).JSON(), nil},
+		{"spread", []byte(spread), []byte(somePicture)},
+		{"envelope", []byte(envelope), nil},
+	}
+}
+
+// Every study has its section, whose numbers are those of its document.
+func TestPageShowsStudies(t *testing.T) {
+	f := folderOf(t, study(t))
+	f.Studies = studies(t)
+	page := pageOf(t, f)
+	with := checkPage(t, page, documents(f))
+	f.Studies = nil
+	if without := checkPage(t, pageOf(t, f), documents(f)); with < without+80 {
+		t.Errorf("%d numbers, %d without the studies", with, without)
+	}
+	at := 0
+	for _, name := range StudyNames() {
+		next := bytes.Index(page, []byte(`<section id="`+name+`">`))
+		if next < at {
+			t.Errorf("section %s is out of order, or missing", name)
+		}
+		at = next
+	}
+	for _, want := range []string{
+		"Run for another brief", "The run was cut short", "two thirds of 100 draws", ">Quantities<", "envelope.json has all",
+		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, "knee of the curve", "Number of ramps ", ">yes<", ">no<",
+	} {
+		if !bytes.Contains(page, []byte(want)) {
+			t.Errorf("the page does not hold %q", want)
+		}
+	}
+	if bytes.Contains(page, []byte("Not drawn")) || bytes.Contains(page, []byte(">Numbers<")) {
+		t.Error("a picture is not drawn, or plain numbers have a table")
+	}
+}
+
+func TestStudiesThatCannotBeRead(t *testing.T) {
+	good := folderOf(t, study(t))
+	for want, s := range map[string]StudyFile{
+		"ladder.json: ":                       {"ladder", []byte("{"), nil},
+		"trade.json has format 7":             {"trade", []byte(`{"format": 7}`), nil},
+		"a page has no room for other":        {"other", []byte(`{"format": 1}`), nil},
+		"spread.json: json: cannot unmarshal": {"spread", []byte(`[1]`), nil},
+		"there is more than one ladder.json":  {"ladder", []byte(`{"format": 1}`), nil},
+	} {
+		f := good
+		f.Studies = []StudyFile{{"ladder", []byte(`{"format": 1}`), nil}, s}
+		if want == "ladder.json: " {
+			f.Studies = f.Studies[1:]
+		}
+		var damaged *DamagedFolder
+		if _, err := Page(f); !errors.As(err, &damaged) || !strings.Contains(err.Error(), want) {
+			t.Errorf("%s: %v", want, err)
+		}
+	}
+}
+
+// A picture from a file is drawn only where it can do nothing else.
+func TestForeignPictures(t *testing.T) {
+	for _, c := range []string{
+		`<svg><script>alert(1)</script></svg>`, `<svg onload="x()"/>`, `<svg><a href="http://example.org"/></svg>`,
+		`<svg><rect fill="url(http://example.org/x)"/></svg>`, `<svg><image/></svg>`, `<svg><foreignObject/></svg>`,
+		`<svg><rect style="background:url(x)"/></svg>`, `<!DOCTYPE svg><svg/>`, `<svg/><svg/>`, `<p/>`, `<svg>`, ``, `plain`,
+	} {
+		if got := string(foreign("ladder", []byte(c))); !strings.Contains(got, "Not drawn: ladder.svg: ") || strings.Contains(got, "<svg") {
+			t.Errorf("%s became %s", c, got)
+		}
+	}
+	if got := string(foreign("ladder", []byte(somePicture))); got != strings.ReplaceAll(somePicture, "hatch", "ladder-hatch") {
+		t.Error(got)
+	}
+}
