@@ -123,9 +123,14 @@ func (a *app) design(study *study, dir string) (err error) {
 		}
 	}
 	document := report.NewDesign(study.head(settings.Seed), finished)
-	run := runRecord(began, a.jobs, counter)
-	if err := store(folder, study, document, &finished, run); err != nil {
+	files, err := resultFiles(study, document, &finished, runRecord(began, a.jobs, counter))
+	if err != nil {
 		return err
+	}
+	for _, f := range files {
+		if err := folder.WriteFile(f.name, f.data); err != nil {
+			return err
+		}
 	}
 	if err := folder.Commit(); err != nil {
 		return err
@@ -235,11 +240,11 @@ func runRecord(began time.Time, jobs int, counter *runstore.Counter) record {
 	}
 }
 
-// store writes the files of a result.
-func store(folder *runstore.Folder, study *study, document *report.DesignDocument, finished *report.Study, run record) error {
+// resultFiles are the files of a result.
+func resultFiles(study *study, document *report.DesignDocument, finished *report.Study, run record) ([]file, error) {
 	runJSON, err := json.MarshalIndent(run, "", "  ")
 	if err != nil {
-		return err
+		return nil, err
 	}
 	files := []file{
 		{"result.json", document.JSON()},
@@ -250,19 +255,11 @@ func store(folder *runstore.Folder, study *study, document *report.DesignDocumen
 	if finished.Flow != nil {
 		ofInlet, err := inletFiles(study, document, finished.Flow)
 		if err != nil {
-			return err
+			return nil, err
 		}
 		files = append(files, ofInlet...)
 	}
-	if files, err = withPage(files, study, finished); err != nil {
-		return err
-	}
-	for _, f := range files {
-		if err := folder.WriteFile(f.name, f.data); err != nil {
-			return err
-		}
-	}
-	return nil
+	return withPage(files, study, finished)
 }
 
 type file struct {

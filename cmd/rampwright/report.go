@@ -138,20 +138,28 @@ func withPage(files []file, study *study, finished *report.Study) ([]file, error
 	if err != nil {
 		return nil, err
 	}
-	folder := report.Folder{Review: review.JSON()}
+	files = append(files, file{"review.json", review.JSON()})
+	page, err := report.Page(folderOf(files))
+	if err != nil {
+		return nil, err
+	}
+	return append(files, file{pageName, page}), nil
+}
+
+// folderOf takes what a page needs from the files of a result.
+func folderOf(files []file) report.Folder {
+	var folder report.Folder
 	for _, f := range files {
 		switch f.name {
 		case "result.json":
 			folder.Result = f.data
 		case "run.json":
 			folder.Run = f.data
+		case "review.json":
+			folder.Review = f.data
 		case "inlet.svg":
 			folder.SideView = f.data
 		}
 	}
-	page, err := report.Page(folder)
-	if err != nil {
-		return nil, err
-	}
-	return append(files, file{"review.json", folder.Review}, file{pageName, page}), nil
+	return folder
 }
