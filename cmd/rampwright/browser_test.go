@@ -146,13 +146,15 @@ func (p *tab) look() *probed {
 }
 
 // tooWide lists what reaches beyond the right edge of a window that would then
-// have to be scrolled; nil where the contents fit.
+// have to be scrolled, and cells whose words leave them; empty where all fits.
 func (p *tab) tooWide() []string {
 	p.t.Helper()
 	var found []string
-	p.ask(`JSON.stringify(document.documentElement.scrollWidth <= window.innerWidth ? null :
-[...document.body.querySelectorAll('*')].filter(e => e.getBoundingClientRect().right > window.innerWidth + 0.5 && !e.closest('svg'))
-.map(e => e.tagName + ' ' + e.textContent.slice(0, 40)))`, &found)
+	p.ask(`JSON.stringify([
+...(document.documentElement.scrollWidth <= window.innerWidth ? [] : [...document.body.querySelectorAll('*')]
+  .filter(e => e.getBoundingClientRect().right > window.innerWidth + 0.5 && !e.closest('svg'))),
+...[...document.querySelectorAll('th, td, dt, dd')].filter(e => e.scrollWidth > e.clientWidth + 1),
+].map(e => e.tagName + ' ' + e.textContent.slice(0, 40)))`, &found)
 	return found
 }
 

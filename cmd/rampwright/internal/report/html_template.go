@@ -85,7 +85,8 @@ section{grid-template-columns:minmax(0,1fr);gap:10px}
 h1{font-size:22px}
 table{font-size:12px}
 th,td{padding:3px 6px}
-tbody th{position:sticky;left:0;background:var(--sheet);white-space:normal;min-width:30vw;max-width:42vw}
+tbody th{position:sticky;left:0;background:var(--sheet);white-space:normal;overflow-wrap:anywhere;min-width:30vw;max-width:42vw}
+tbody td:not(.n){min-width:6em}
 tbody tr:nth-child(even) th{background:var(--tint)}
 }
 @page{size:A4;margin:13mm}
