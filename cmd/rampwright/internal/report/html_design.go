@@ -175,7 +175,11 @@ func (r *result) candidateTable(s *chapter) {
 func (r *result) conflictSection() chapter {
 	s := chapter{ID: "conflicts", Head: "Why no design holds every limit"}
 	for i, c := range r.Conflicts {
-		s.say(words("These cannot be met together; with any one of them left out the others can:"))
+		sentence := "These cannot be met together; with any one of them left out the others can:"
+		if i > 0 {
+			sentence = "Nor can these:"
+		}
+		s.say(words("%s", sentence))
 		var items [][]cell
 		for k, m := range c.Members {
 			items = append(items, m.cells("result", "conflicts", i, "members", k))
@@ -187,7 +191,7 @@ func (r *result) conflictSection() chapter {
 		at := func(key string) []any { return []any{"relaxation", i, key} }
 		enough := number(l.Enough, "result", at("enough")...)
 		if !finite(float64(l.Enough)) {
-			enough = words("not enough alone")
+			enough = cell{Text: "not enough alone", Number: true}
 		}
 		t.Rows = append(t.Rows, []cell{
 			quoted(l.Quantity, "result", at("quantity")...), quoted(l.At, "result", at("at")...),

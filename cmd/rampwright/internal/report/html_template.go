@@ -77,6 +77,7 @@ figcaption{font-size:13px;color:var(--soft);max-width:84ch;padding-top:4px}
 .small .picture>svg{min-width:0}
 #quantities>div{display:flex;flex-wrap:wrap;gap:0 30px;align-items:flex-start}
 #quantities table{min-width:0}
+#quantities ul{flex-basis:100%}
 footer{font-size:12.5px;color:var(--soft);padding-top:14px}
 @media screen and (max-width:760px){
 main{margin:0;border-width:0;outline:0;padding:16px 14px}
