@@ -145,7 +145,7 @@ func goldenFiles(t *testing.T) []file {
 			t.Fatal(err)
 		}
 		files = append(files, file{made.name + ".json", made.document.JSON()}, file{made.name + ".csv", made.document.CSV()}, file{made.name + ".svg", picture})
-		folder.Studies = append(folder.Studies, report.StudyFile{Name: made.name, Document: made.document.JSON(), Picture: picture})
+		folder.Studies = append(folder.Studies, report.StudyFile{Name: made.name, Document: made.document.JSON(), Pictures: []report.StudyPicture{{Name: made.name, Data: picture}}})
 	}
 	page, err := report.Page(folder)
 	if err != nil {

@@ -28,7 +28,7 @@ script, nothing fetched. It is made of the files in the result folder, the same
 page as "design" puts there; by default it takes that page's place.
 
 Further studies of the same brief become sections: ` + strings.Join(report.StudyNames(), ", ") + `, where
-DIR or a folder given by --with holds NAME.json, and NAME.svg beside it.`,
+DIR or a folder given by --with holds NAME.json, with its pictures beside it.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			if file == "" {
 				file = filepath.Join(args[0], pageName)
@@ -113,11 +113,17 @@ func studiesIn(dir string) ([]report.StudyFile, error) {
 		if document == nil {
 			continue
 		}
-		picture, err := optionalFile(filepath.Join(dir, name+".svg"))
-		if err != nil {
-			return nil, err
+		s := report.StudyFile{Name: name, Document: document}
+		for _, picture := range report.StudyPictures(name) {
+			data, err := optionalFile(filepath.Join(dir, picture+".svg"))
+			if err != nil {
+				return nil, err
+			}
+			if data != nil {
+				s.Pictures = append(s.Pictures, report.StudyPicture{Name: picture, Data: data})
+			}
 		}
-		list = append(list, report.StudyFile{Name: name, Document: document, Picture: picture})
+		list = append(list, s)
 	}
 	return list, nil
 }

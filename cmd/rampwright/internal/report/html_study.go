@@ -4,32 +4,48 @@ import (
 	"encoding/json"
 	"fmt"
 	"slices"
-	"strings"
 )
 
 // StudyFile is the result of a further study of the same brief: the document a
-// command writes as NAME.json, and its picture NAME.svg if there is one.
+// command writes as NAME.json, and its pictures as far as there are any.
 type StudyFile struct {
 	Name     string
 	Document []byte
-	Picture  []byte
+	Pictures []StudyPicture
 }
 
-// studyPart is how a study is shown: its head, and the tables of its document. A
-// study without tables of its own has one for each list of plain objects.
+// StudyPicture is a picture with the name of its file, less .svg.
+type StudyPicture struct {
+	Name string
+	Data []byte
+}
+
+// studyPart is how a study is shown.
 type studyPart struct {
-	name   string
-	head   string
-	tables func(*chapter, *studyPage) error
+	name     string
+	head     string
+	pictures []string // names of its files; nil for the one of the study's name
+	tables   func(*chapter, *studyPage) error
 }
 
 // studyParts are the studies a page has room for, in its order.
 var studyParts = []studyPart{
-	{"envelope", "Envelope", plainTables},
-	{"spread", "Tolerances", plainTables},
-	{"ladder", "Ramp ladder", ladderTables},
-	{"trade", "Trade curve", tradeTables},
-	{"fits", "Learning curves", fitsTables},
+	{"envelope", "Envelope", []string{"map", "capture", "drag", "waves-1", "waves-2", "waves-3", "waves-4"}, plainTables(
+		plainList{of: "states"},
+		plainList{"boundary", []string{"name", "quantity", "closed"}},
+	)},
+	{"schedule", "Schedule", nil, plainTables(
+		plainList{"rows", []string{"mach", "angle_deg", "limits_kept", "at_stop", "low_deg", "high_deg", "aim", "status"}},
+	)},
+	{"spread", "Tolerances", nil, plainTables(
+		plainList{of: everything},
+		plainList{"per_limit", []string{"quantity", "at", "low", "high", "nominal_margin", "affected", "probability", "probability_error", "surrogate_probability"}},
+		plainList{of: "shock_inside_the_lip"}, plainList{of: "unanswered"},
+		plainList{"quantities", []string{"quantity", "at", "route", "nominal", "mean", "standard_deviation", "p05", "p50", "p95"}},
+	)},
+	{"ladder", "Ramp ladder", nil, ladderTables},
+	{"trade", "Trade curve", nil, tradeTables},
+	{"fits", "Learning curves", nil, fitsTables},
 }
 
 // StudyNames lists the studies a page has room for.
@@ -39,6 +55,17 @@ func StudyNames() []string {
 		names[i] = p.name
 	}
 	return names
+}
+
+// StudyPictures lists the pictures a study may have, by the names of their files
+// less .svg.
+func StudyPictures(study string) []string {
+	for _, p := range studyParts {
+		if p.name == study && p.pictures != nil {
+			return p.pictures
+		}
+	}
+	return []string{study}
 }
 
 // studyPage is a document read for the page: what all of them have, and the rest by
@@ -110,8 +137,8 @@ func (r *result) studySection(part studyPart, s *studyPage) chapter {
 		advice = append(advice, []cell{s.text(text, "advice", i)})
 	}
 	c.list(advice)
-	if s.Picture != nil {
-		c.figures(false, htmlFigure{Picture: foreign(s.Name, s.Picture)})
+	for _, p := range s.Pictures {
+		c.figures(false, htmlFigure{Picture: foreign(p.Name, p.Data)})
 	}
 	if err := part.tables(&c, s); err != nil {
 		c.warn(words("%s.json: %v", s.Name, err))
@@ -145,77 +172,4 @@ func (s *studyPage) caution(i int) []cell {
 		}
 	}
 	return append(list, words(": "), s.text(ofRows.Text, "cautions", i, "text"))
-}
-
-// mostRows bounds a table of a study on the page; its file has them all.
-const mostRows = 60
-
-// plainTables has a table for each list of objects, with a column for each plain
-// value of the first.
-func plainTables(c *chapter, s *studyPage) error {
-	for _, f := range s.fields {
-		var rows []Object[json.RawMessage]
-		if f.Name == "cautions" || json.Unmarshal(f.Value, &rows) != nil || len(rows) == 0 {
-			continue
-		}
-		t := &htmlTable{Caption: heads(inWords(f.Name))}
-		for _, column := range rows[0] {
-			if value, ok := s.plain(column.Value); ok {
-				t.Head = append(t.Head, cell{Text: column.Name, Number: value.Number})
-			}
-		}
-		for i, row := range rows[:min(len(rows), mostRows)] {
-			var cells []cell
-			for _, h := range t.Head {
-				raw, _ := row.Get(h.Text)
-				value, _ := s.plain(raw, f.Name, i, h.Text)
-				cells = append(cells, value)
-			}
-			t.Rows = append(t.Rows, cells)
-		}
-		if len(t.Head) > 0 {
-			c.table(t)
-			c.cutOff(s, len(rows))
-		}
-	}
-	return nil
-}
-
-// plain is the cell of a value that is no list or object.
-func (s *studyPage) plain(raw json.RawMessage, path ...any) (cell, bool) {
-	var v any
-	if json.Unmarshal(raw, &v) != nil {
-		return cell{}, false
-	}
-	switch v := v.(type) {
-	case nil:
-		return cell{Text: none, Number: true}, true
-	case float64:
-		return number(Number(v), s.Name, path...), true
-	case string:
-		return s.text(v, path...), true
-	case bool:
-		return words("%s", yesNo(v)), true
-	}
-	return cell{}, false
-}
-
-func yesNo(v bool) string {
-	if v {
-		return "yes"
-	}
-	return "no"
-}
-
-// inWords is a key as a caption.
-func inWords(key string) string {
-	text := strings.ReplaceAll(key, "_", " ")
-	return strings.ToUpper(text[:1]) + text[1:]
-}
-
-// cutOff says that a table does not show every row.
-func (c *chapter) cutOff(s *studyPage, rows int) {
-	if rows > mostRows {
-		c.say(words("The first rows; %s.json has all.", s.Name))
-	}
 }

@@ -12,7 +12,8 @@ func ladderTables(c *chapter, s *studyPage) error {
 	if err := json.Unmarshal(s.Document, &d); err != nil {
 		return err
 	}
-	t := &htmlTable{Head: columnHeads(2, "ramps", "status", "aim", "predicted", "gain", "equal-strength limit")}
+	t := &htmlTable{Head: columnHeads(0, "ramps", "status", "aim", "predicted", "gain", "equal-strength limit")}
+	t.Head[1].Number = false
 	angles := designTable("ramps")
 	var reasons [][]cell
 	for i := range d.Rows {
@@ -156,6 +157,9 @@ func (t *designs) names() []string {
 func (t *designs) table(caption string) *htmlTable {
 	names := t.names()
 	out := &htmlTable{Caption: heads(caption), Head: columnHeads(1, append([]string{t.head}, names...)...)}
+	if len(t.rows) > 0 {
+		out.Head[0].Number = t.rows[0].name.Number
+	}
 	for _, r := range t.rows {
 		row := []cell{r.name}
 		for _, name := range names {

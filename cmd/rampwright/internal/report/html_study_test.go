@@ -10,18 +10,28 @@ import (
 const somePicture = `<svg width="10" height="10" viewBox="0 0 10 10" role="img" aria-label="curve"><title>curve</title><defs><pattern id="hatch" width="4" height="4"></pattern></defs><rect width="4" height="4" fill="url(#hatch)"/></svg>`
 
 // studies are one of each a page has room for: three as their commands write
-// them, two plain ones.
+// them, plain ones.
 func studies(t *testing.T) []StudyFile {
 	t.Helper()
-	spread := `{"format": 1, "brief_hash": "abc", "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25,
-"quantities": [{"quantity": "recovery", "at": "cruise", "mean": 0.5, "p05": null, "affected": true, "of": {"a": 1}}, {"quantity": "length_m", "at": "geometry", "mean": 0.6, "p05": 0.1, "affected": false}], "empty": [], "numbers": [1, 2]}`
-	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "rows": [` + strings.Repeat(`{"mach": 4.5, "status": "attached"},`, mostRows+1) + `{"mach": 5, "status": "detached"}]}`
+	picture := func(names ...string) (list []StudyPicture) {
+		for _, name := range names {
+			list = append(list, StudyPicture{name, []byte(somePicture)})
+		}
+		return list
+	}
+	spread := `{"format": 1, "brief_hash": "abc", "seed": 4, "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25, "empty": [],
+"quantities": [{"quantity": "recovery", "at": "cruise", "mean": 0.5, "p05": null, "of": {"a": 1}}, {"quantity": "length_m", "at": "geometry", "mean": 0.6, "p05": 0.1}],
+"per_limit": [{"quantity": "length_m", "affected": true, "unheard": 3}, {"quantity": "recovery", "affected": false}], "unanswered": [], "shock_inside_the_lip": [{"at": "cruise", "share": 0.66}]}`
+	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "states": {"regular": 40, "flow ends": 3}, "boundary": [` +
+		strings.Repeat(`{"name": "a", "quantity": "b", "closed": true},`, mostRows+1) + `{"name": "last", "points": [[1, 2]]}]}`
+	schedule := `{"format": 1, "brief_hash": "abc", "rows": [{"mach": 4.5, "angle_deg": 3.25, "limits_kept": true, "limits_missed": []}]}`
 	return []StudyFile{
-		{"ladder", NewLadder(head, ladderFixture(t)).JSON(), []byte(somePicture)},
+		{"ladder", NewLadder(head, ladderFixture(t)).JSON(), picture("ladder")},
 		{"trade", NewTrade(head, tradeFixture(t)).JSON(), nil},
 		{"fits", NewFits(head, fitsFixture(false)).JSON(), nil},
-		{"spread", []byte(spread), []byte(somePicture)},
-		{"envelope", []byte(envelope), nil},
+		{"spread", []byte(spread), picture("spread")},
+		{"envelope", []byte(envelope), picture("map", "waves-1")},
+		{"schedule", []byte(schedule), nil},
 	}
 }
 
@@ -44,15 +54,17 @@ func TestPageShowsStudies(t *testing.T) {
 		at = next
 	}
 	for _, want := range []string{
-		"Run for another brief", "The run was cut short", "two thirds of 100 draws", ">Quantities<", "envelope.json has all",
-		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, "knee of the curve", "Number of ramps ", ">yes<", ">no<",
+		"Run for another brief", "The run was cut short", "two thirds of 100 draws", ">Quantities<", ">States<", ">Shock inside the lip<", "envelope.json has all",
+		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, `id="map-hatch"`, `id="waves-1-hatch"`, "pass_<wbr />probability", "knee of the curve", "Number of ramps ", ">40<", ">4.5000<", ">yes<", ">no<",
 	} {
 		if !bytes.Contains(page, []byte(want)) {
 			t.Errorf("the page does not hold %q", want)
 		}
 	}
-	if bytes.Contains(page, []byte("Not drawn")) || bytes.Contains(page, []byte(">Numbers<")) {
-		t.Error("a picture is not drawn, or plain numbers have a table")
+	for _, not := range []string{"Not drawn", ">Unanswered<", "unheard", ">last<"} {
+		if bytes.Contains(page, []byte(not)) {
+			t.Errorf("the page holds %q", not)
+		}
 	}
 }
 

@@ -66,7 +66,8 @@ thead th{color:var(--soft);border-bottom:1.5px solid var(--ink);vertical-align:b
 thead th.n{min-width:5.5em}
 thead th.n span{overflow-wrap:anywhere}
 tbody th{white-space:nowrap}
-td.n{text-align:right;white-space:nowrap}
+td.n,th.n{text-align:right}
+td.n{white-space:nowrap}
 tbody tr:nth-child(even){background:var(--tint)}
 .bar{display:block;width:240px;height:auto}
 figure{margin:0 0 16px}
@@ -145,9 +146,9 @@ var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"br
 {{end}}</ul>
 {{end}}{{with .Table}}<div class="wide"><table>
 {{if .Caption}}<caption>{{range .Caption}}{{template "cell" .}}{{end}}</caption>
-{{end}}<thead><tr>{{range .Head}}<th scope="col"{{if .Number}} class="n"{{end}}>{{template "cell" .}}</th>{{end}}</tr></thead>
+{{end}}<thead><tr>{{range .Head}}{{if or .Text .Bar}}<th scope="col"{{if .Number}} class="n"{{end}}>{{template "cell" .}}</th>{{else}}<td></td>{{end}}{{end}}</tr></thead>
 <tbody>
-{{range .Rows}}<tr>{{range $i, $c := .}}{{if $i}}<td{{if $c.Number}} class="n"{{end}}>{{template "cell" $c}}</td>{{else}}<th scope="row">{{template "cell" $c}}</th>{{end}}{{end}}</tr>
+{{range .Rows}}<tr>{{range $i, $c := .}}{{if $i}}<td{{if $c.Number}} class="n"{{end}}>{{template "cell" $c}}</td>{{else}}<th scope="row"{{if $c.Number}} class="n"{{end}}>{{template "cell" $c}}</th>{{end}}{{end}}</tr>
 {{end}}</tbody>
 </table></div>
 {{end}}{{if .Figures}}<div class="{{if $small}}small{{else}}broad{{end}}">
