@@ -68,10 +68,11 @@ func StudyPictures(study string) []string {
 	return []string{study}
 }
 
-// studyPage is a document read for the page: what all of them have, and the rest by
-// name.
+// studyPage is a document read for the page: what all of them have, and the
+// rest by name.
 type studyPage struct {
-	StudyFile
+	StudyFile `json:"-"`
+
 	Format    int               `json:"format"`
 	BriefHash string            `json:"brief_hash"`
 	Status    string            `json:"status"`

@@ -19,7 +19,7 @@ func studies(t *testing.T) []StudyFile {
 		}
 		return list
 	}
-	spread := `{"format": 1, "brief_hash": "abc", "seed": 4, "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25, "empty": [],
+	spread := `{"format": 1, "brief_hash": "abc", "seed": 4, "name": "no study's", "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25, "empty": [],
 "quantities": [{"quantity": "recovery", "at": "cruise", "mean": 0.5, "p05": null, "of": {"a": 1}}, {"quantity": "length_m", "at": "geometry", "mean": 0.6, "p05": 0.1}],
 "per_limit": [{"quantity": "length_m", "affected": true, "unheard": 3}, {"quantity": "recovery", "affected": false}], "unanswered": [], "shock_inside_the_lip": [{"at": "cruise", "share": 0.66}]}`
 	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "states": {"regular": 40, "flow ends": 3}, "boundary": [` +
