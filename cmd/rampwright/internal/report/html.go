@@ -122,7 +122,7 @@ func (r *result) sheet() *sheet {
 		Title: []cell{quoted(r.Title, "result", "title")}, Status: &status, Answer: r.answerCells(), Facts: r.facts(),
 		Sections: slices.Concat([]chapter{
 			r.cautionSection(), r.designSection(), r.conflictSection(), r.sideViewSection(), r.marginSection(), r.stationSection(),
-			r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(),
+			r.traceSection(), r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(),
 		}, r.studySections(), []chapter{r.progressSection(), r.assumptionSection(), r.provenanceSection()}),
 	}
 }

@@ -1,0 +1,31 @@
+package report
+
+import (
+	"bytes"
+	"encoding/json"
+	"errors"
+	"testing"
+)
+
+// The page tells what the traces of the flight points say, numbers from their
+// document, and where one ends.
+func TestPageShowsTraces(t *testing.T) {
+	f := folderOf(t, study(t))
+	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
+	var design, traced map[string]json.RawMessage
+	if err := errors.Join(json.Unmarshal(f.Result, &design), json.Unmarshal(NewFlow(head, problem, flow).JSON(), &traced)); err != nil {
+		t.Fatal(err)
+	}
+	design["points"] = traced["points"]
+	f.Result = compact(design)
+	page := pageOf(t, f)
+	checkPage(t, page, documents(f))
+	for _, want := range []string{`<section id="waves">`, "every quantity of the stream", "comparison with the chain", " ends ahead of the throat: "} {
+		if !bytes.Contains(page, []byte(want)) {
+			t.Errorf("the page does not hold %q", want)
+		}
+	}
+	if bytes.Contains(pageOf(t, folderOf(t, study(t))), []byte(`<section id="waves">`)) {
+		t.Error("a design without traces has the section")
+	}
+}
