@@ -10,7 +10,6 @@ import (
 	"strconv"
 	"strings"
 
-	"github.com/schollz/progressbar/v3"
 	"github.com/spf13/cobra"
 
 	"rampwright/cmd/rampwright/internal/report"
@@ -60,7 +59,7 @@ over the whole map.`,
 	set.StringVarP(&flags.dir, "output", "o", "", "folder for tables and pictures")
 	set.BoolVar(&a.json, "json", false, "print one JSON document")
 	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "conditions side by side; never changes the result")
-	set.BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	a.progressFlags(cmd)
 	set.BoolVar(&a.force, "force", false, "write into a folder that holds other files")
 	briefFlags(cmd)
 	return cmd
@@ -93,8 +92,8 @@ func (a *app) envelope(study *study, flags envelopeFlags) error {
 	}
 	ctx, interruption := watch(0)
 	defer interruption.stop()
-	shown := a.showEvents()
-	plan.settings.Observe = shown.observe
+	shown := a.progress()
+	plan.settings.Observe = shown.showing("condition")
 	survey, err := envelope.Run(ctx, plan.frozen, plan.settings)
 	shown.end()
 	if err != nil {
@@ -286,42 +285,11 @@ func (s *study) shown(texts []string) ([]envelope.Condition, error) {
 // mostShown is how many conditions are drawn.
 const mostShown = 12
 
-// eventBar shows the phases of a survey: a bar a phase on a terminal, a line when it
-// ends elsewhere, nothing when quiet.
-type eventBar struct {
-	app  *app
-	bar  *progressbar.ProgressBar
-	last envelope.Event
-}
-
-func (a *app) showEvents() *eventBar { return &eventBar{app: a} }
-
-func (b *eventBar) observe(e envelope.Event) {
-	if b.app.quiet {
-		return
+// showing returns an observer of the phases of a survey.
+func (p *progress) showing(unit string) func(envelope.Event) {
+	return func(e envelope.Event) {
+		p.show(stage{phase: e.Phase, done: e.Done, total: e.Total, unit: unit})
 	}
-	if b.last.Phase != e.Phase {
-		b.end()
-		if terminal(b.app.messages) {
-			b.bar = b.app.bar(e.Total)
-			b.bar.Describe(e.Phase)
-		}
-	}
-	b.last = e
-	if b.bar != nil {
-		_ = b.bar.Set(e.Done) // a bar that cannot be drawn stops nothing
-	}
-}
-
-// end closes the phase under way.
-func (b *eventBar) end() {
-	switch {
-	case b.bar != nil:
-		_ = b.bar.Finish()
-	case b.last.Phase != "" && !b.app.quiet:
-		b.app.say("%s: %d\n", b.last.Phase, b.last.Done)
-	}
-	b.bar, b.last = nil, envelope.Event{}
 }
 
 // files are the tables and pictures of a map.

@@ -64,6 +64,9 @@ func (p *progress) show(s stage) {
 		return
 	}
 	if p.last.phase != s.phase {
+		if s.done < p.last.done { // counted anew
+			p.began = p.now()
+		}
 		p.close()
 	}
 	p.last = s

@@ -61,7 +61,7 @@ those of envelope.`,
 	set.StringVarP(&flags.dir, "output", "o", "", "folder for schedule.json, schedule.csv and schedule.svg")
 	set.BoolVar(&a.json, "json", false, "print one JSON document")
 	set.IntVar(&a.jobs, "jobs", runtime.NumCPU(), "Mach numbers side by side; never changes the result")
-	set.BoolVar(&a.quiet, "quiet", false, "no progress messages")
+	a.progressFlags(cmd)
 	set.BoolVar(&a.force, "force", false, "write into a folder that holds other files")
 	briefFlags(cmd)
 	cmd.PreRun = func(cmd *cobra.Command, args []string) {
@@ -97,8 +97,8 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 	}
 	ctx, interruption := watch(0)
 	defer interruption.stop()
-	shown := a.showEvents()
-	plan.settings.Observe = shown.observe
+	shown := a.progress()
+	plan.settings.Observe = shown.showing("Mach number")
 	found, err := envelope.Plan(ctx, plan.moving, plan.settings)
 	shown.end()
 	if err != nil {
