@@ -1,0 +1,133 @@
+package robust
+
+import (
+	"context"
+	"math"
+	"slices"
+	"testing"
+
+	"rampwright/problems"
+)
+
+// highestUnder is the largest x with x <= High of every limit on y, x >= Low of
+// every one on z.
+func highestUnder(_ context.Context, limits []problems.Limit, _ []float64) (Found, error) {
+	low, high := math.Inf(-1), math.Inf(1)
+	for _, l := range limits {
+		low, high = math.Max(low, l.Low), math.Min(high, l.High)
+	}
+	return Found{X: []float64{high}, Feasible: low <= high, Aim: high}, nil
+}
+
+func shiftedBy(deviation float64) *plain {
+	return &plain{scatter: scattered(deviation), quantities: named("y", "fixed"), value: func(x, e []float64, dst *problems.Evaluation) {
+		dst.Set(0, x[0]+e[0])
+		dst.Set(1, x[0])
+	}}
+}
+
+func backOff(t *testing.T, goal Goal, search Search) *Backoff {
+	t.Helper()
+	b, err := BackOff(context.Background(), goal, Settings{Jobs: 2}, search)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return b
+}
+
+// x + e at most 1: the answer is 1 less the quantile of e at the probability aimed
+// at; the margin is what that costs.
+func TestBackOffOfALinearLimit(t *testing.T) {
+	const deviation = 0.1
+	for _, confidence := range []float64{0.9, 0.95, 0.99} {
+		b := backOff(t, Goal{
+			Problem: shiftedBy(deviation), Limits: []problems.Limit{atMost("y", 1), atMost("fixed", 2)}, Confidence: confidence, Highest: true,
+			Nominal: Found{X: []float64{1}, Feasible: true, Aim: 1},
+		}, highestUnder)
+		chosen := b.Rounds[b.Chosen]
+		p := aimed(confidence, b.Draws)
+		sampling := math.Sqrt(p*(1-p)/float64(b.Draws)) / (math.Exp(-Quantile(p)*Quantile(p)/2) / math.Sqrt(2*math.Pi))
+		near(t, "x", chosen.X[0], 1-deviation*Quantile(p), 4*deviation*sampling)
+		if !b.Met || b.Limits[0].Pass < confidence || b.Joint.Pass < confidence {
+			t.Errorf("confidence %v is not met: %+v", confidence, b.Limits)
+		}
+		near(t, "nominal", b.NominalLimits[0].Pass, 0.5, 4*b.NominalLimits[0].Error)
+		if b.Limits[1].Affected || b.ShiftsOfChosen[1].High != 0 {
+			t.Errorf("a limit nothing moves was moved: %+v", b.ShiftsOfChosen[1])
+		}
+		near(t, "margin", b.ShiftsOfChosen[0].High, 1-chosen.X[0], 1e-12)
+	}
+}
+
+// A limit with two sides shares what may fail between them.
+func TestBackOffBetweenTwoSides(t *testing.T) {
+	limit := problems.Limit{Quantity: "y", Point: "here", Low: 0, High: 0.36}
+	b := backOff(t, Goal{
+		Problem: shiftedBy(0.1), Limits: []problems.Limit{limit}, Confidence: 0.9, Highest: true,
+		Nominal: Found{X: []float64{0.36}, Feasible: true, Aim: 0.36},
+	}, highestUnder)
+	if !b.Met || b.Limits[0].Pass < 0.9 {
+		t.Errorf("not met: %+v, %s", b.Limits, b.Why)
+	}
+	x := b.Rounds[b.Chosen].X[0]
+	near(t, "probability between the sides", Phi((0.36-x)/0.1)-Phi(-x/0.1), aimed(0.9, b.Draws), 0.02)
+}
+
+// The deviation grows with the design, so that the first margins are not the last.
+func TestBackOffFollowsTheDesign(t *testing.T) {
+	p := &plain{scatter: scattered(0.1), quantities: named("y"), value: func(x, e []float64, dst *problems.Evaluation) {
+		dst.Set(0, x[0]*(1+e[0]))
+	}}
+	b := backOff(t, Goal{Problem: p, Limits: []problems.Limit{atMost("y", 2)}, Confidence: 0.95, Highest: true,
+		Nominal: Found{X: []float64{2}, Feasible: true, Aim: 2}}, highestUnder)
+	near(t, "x", b.Rounds[b.Chosen].X[0], 2/(1+0.1*Quantile(b.Aimed)), 0.01)
+	if !b.Met || len(b.Rounds) < 3 {
+		t.Errorf("met %v after %d rounds", b.Met, len(b.Rounds))
+	}
+}
+
+func TestBackOffThatCannotBe(t *testing.T) {
+	goal := Goal{Problem: shiftedBy(0.1), Limits: []problems.Limit{atMost("y", 1), atLeast("fixed", 0.95)}, Confidence: 0.95, Highest: true,
+		Nominal: Found{X: []float64{1}, Feasible: true, Aim: 1}}
+	b := backOff(t, goal, highestUnder)
+	if b.Met || !b.NothingHolds || b.Chosen != 0 || b.Why == "" {
+		t.Errorf("margins no design holds: %+v", b)
+	}
+	goal.Limits = []problems.Limit{{Quantity: "y", Point: "here", Low: 0.9, High: 1}}
+	asked := 0
+	b = backOff(t, goal, func(ctx context.Context, limits []problems.Limit, near []float64) (Found, error) {
+		asked++
+		return highestUnder(ctx, limits, near)
+	})
+	if b.Met || !b.NothingHolds || asked != 0 {
+		t.Errorf("sides nearer than the scatter: met %v, %d searches, %s", b.Met, asked, b.Why)
+	}
+}
+
+// Draws without an answer count against a limit even where no margin helps.
+func TestBackOffWithHoles(t *testing.T) {
+	p := &plain{scatter: scattered(1), quantities: named("y"), value: func(x, e []float64, dst *problems.Evaluation) {
+		if dst.Set(0, x[0]); e[0] > x[0]+0.6 {
+			dst.Miss(0, errNone)
+		}
+	}}
+	b := backOff(t, Goal{Problem: p, Limits: []problems.Limit{atMost("y", 2)}, Confidence: 0.99, Highest: true,
+		Nominal: Found{X: []float64{0}, Feasible: true}}, func(context.Context, []problems.Limit, []float64) (Found, error) {
+		return Found{X: []float64{2}, Feasible: true, Aim: 2}, nil
+	})
+	if !b.Met || b.Chosen == 0 || !slices.ContainsFunc(b.NominalLimits, func(p Probability) bool { return p.Unanswered > 2000 }) {
+		t.Errorf("met %v, round %d, nominal %+v", b.Met, b.Chosen, b.NominalLimits)
+	}
+}
+
+func TestDrawsEnoughForTheConfidence(t *testing.T) {
+	for _, c := range []float64{0.5, 0.95, 0.999, 0.9999} {
+		n := drawsOf(c, loopDraws)
+		if n < loopDraws || float64(n)*(1-c) < tailDraws*0.999 {
+			t.Errorf("confidence %v: %d draws", c, n)
+		}
+		if p := aimed(c, n); p < c || p > (1+c)/2 {
+			t.Errorf("confidence %v aims at %v", c, p)
+		}
+	}
+}

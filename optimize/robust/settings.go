@@ -1,0 +1,67 @@
+package robust
+
+import (
+	"errors"
+	"fmt"
+)
+
+// Settings steer a study of tolerances. The zero value asks for the defaults.
+type Settings struct {
+	Draws    int   // exact draws; default 10000
+	Replaced int   // base draws of the sensitivity, each costing one more for every input; default 1000
+	Samples  int   // exact samples the surrogates are fitted to; default 30 an input
+	Seed     int64 // of every random choice; default 1
+	Jobs     int   // evaluations and fits run side by side; default 1. No result depends on it
+}
+
+const (
+	defaultDraws    = 10000
+	defaultReplaced = 1000
+	samplesAnInput  = 30
+	mostDraws       = 1_000_000 // 10^6 draws of 100 quantities fill 0.8 GB
+)
+
+// WithDefaults fills the zero fields for a problem of n uncertain inputs.
+func (s Settings) WithDefaults(n int) Settings {
+	if s.Draws == 0 {
+		s.Draws = defaultDraws
+	}
+	if s.Replaced == 0 {
+		s.Replaced = min(defaultReplaced, s.Draws/2)
+	}
+	if s.Samples == 0 {
+		s.Samples = samplesAnInput * n
+	}
+	if s.Seed == 0 {
+		s.Seed = 1
+	}
+	if s.Jobs == 0 {
+		s.Jobs = 1
+	}
+	return s
+}
+
+// Validate reports every setting out of range for a problem of n uncertain
+// inputs.
+func (s Settings) Validate(n int) error {
+	var wrong []error
+	if s.Draws < LeastDraws || s.Draws > mostDraws {
+		wrong = append(wrong, fmt.Errorf("draws %d: allowed %d to %d", s.Draws, LeastDraws, mostDraws))
+	}
+	if most := s.Draws / 2; s.Replaced < 2 || s.Replaced > most {
+		wrong = append(wrong, fmt.Errorf("base draws of the sensitivity %d: allowed 2 to half the draws, %d", s.Replaced, most))
+	}
+	if least := n + 2; s.Samples < least {
+		wrong = append(wrong, fmt.Errorf("samples %d: a fit in %d inputs needs at least %d", s.Samples, n, least))
+	}
+	if s.Jobs < 1 {
+		wrong = append(wrong, fmt.Errorf("jobs %d: at least one", s.Jobs))
+	}
+	return errors.Join(wrong...)
+}
+
+// LeastDraws is the least number of draws: fewer say nothing of a 5th percentile.
+const LeastDraws = 100
+
+// ErrNothingScatters is the answer to a problem without uncertain inputs.
+var ErrNothingScatters = errors.New("no input has a tolerance")
