@@ -60,19 +60,6 @@ func (c Condition) point() inlet.Point {
 	}
 }
 
-// Tolerance is the scatter of a built inlet: standard deviations of normal
-// distributions truncated at 4 of them, and the share that shall keep every
-// limit.
-type Tolerance struct {
-	RampAngleDeg float64 `json:"ramp_angle_deg"`
-	Mach         float64 `json:"mach"`
-	IncidenceDeg float64 `json:"incidence_deg"`
-	Confidence   float64 `json:"confidence"`
-}
-
-// Any reports whether anything scatters.
-func (t Tolerance) Any() bool { return t.RampAngleDeg > 0 || t.Mach > 0 || t.IncidenceDeg > 0 }
-
 // Effort is what a search may spend.
 type Effort struct {
 	Samples   int     `json:"samples"`

@@ -48,7 +48,7 @@ func TestValuesOfTheSoundBrief(t *testing.T) {
 	if d.ShockOnLip != inlet.Fixed(6) || d.LipSetback != inlet.Fixed(0) {
 		t.Errorf("shock on lip %+v, setback %+v", d.ShockOnLip, d.LipSetback)
 	}
-	if b.Effort != (Effort{60, 40, 1, 1e-3}) || b.Tolerance != (Tolerance{0.1, 0.03, 0.5, 0.95}) || !b.Tolerance.Any() {
+	if b.Effort != (Effort{60, 40, 1, 1e-3}) || b.Tolerance != (Tolerance{RampAngleDeg: 0.1, Mach: 0.03, IncidenceDeg: 0.5, Confidence: 0.95}) || !b.Tolerance.Any() {
 		t.Errorf("effort %+v, tolerance %+v", b.Effort, b.Tolerance)
 	}
 	if b.Flight[0].Weight != 1 || b.Flight[1].Weight != 0 {
@@ -56,6 +56,25 @@ func TestValuesOfTheSoundBrief(t *testing.T) {
 	}
 	if b.Searched() != 4 {
 		t.Errorf("%d searched values, want 4", b.Searched())
+	}
+}
+
+// Without a confidence tolerances do not bear on a design; the searchable settings
+// take a number or a range.
+func TestToleranceAndSearchableSettings(t *testing.T) {
+	b := read(t, edited(t, ", confidence: 0.95", ", cowl_angle_deg: 0.05, lip_setback: 0.002", "cowl_wedge_deg: 4",
+		"cowl_wedge_deg: 4\n  lip_setback: {from: 0, to: 0.1}"), Overrides{"shock_on_lip_mach": "6..6.5"})
+	if b.Tolerance != (Tolerance{0.1, 0.05, 0.002, 0.03, 0.5, 0}) || b.Tolerance.Deviations() != (inlet.Tolerances{RampAngle: 0.1, CowlAngle: 0.05, LipSetback: 0.002, Mach: 0.03, Incidence: 0.5}) {
+		t.Errorf("tolerance %+v", b.Tolerance)
+	}
+	if d := b.Definition; d.LipSetback != inlet.Between(0, 0.1) || d.ShockOnLip != inlet.Between(6, 6.5) || b.Searched() != 6 {
+		t.Errorf("setback %+v, shock on lip %+v, %d searched", d.LipSetback, d.ShockOnLip, b.Searched())
+	}
+	if again := read(t, string(b.ResolvedYAML()), nil); again.Tolerance != b.Tolerance {
+		t.Errorf("read back: %+v", again.Tolerance)
+	}
+	if none := read(t, edited(t, "tolerance: {ramp_angle_deg: 0.1, mach: 0.03, incidence_deg: 0.5, confidence: 0.95}\n", ""), nil); none.Tolerance.Any() || none.Tolerance.Confidence != 0 {
+		t.Errorf("without the section: %+v", none.Tolerance)
 	}
 }
 

@@ -177,7 +177,10 @@ var brokenBriefs = []broken{
 	{"limit quoted none", "at_least: 780", "at_least: 'none'", "^'none'", "at_least is not a plain decimal", "", ""},
 
 	{"tolerance", "mach: 0.03", "mach: 3", "mach: ^3,", "mach is out of range", "0 to 1", ""},
-	{"confidence", "confidence: 0.95", "confidence: 1", "confidence: ^1", "confidence is out of range", "0.5 to 0.9999", ""},
+	{"confidence", "confidence: 0.95", "confidence: 1", "confidence: ^1", "confidence is out of range", "0.5 to 0.999", ""},
+	{"confidence of nothing", "ramp_angle_deg: 0.1, mach: 0.03, incidence_deg: 0.5, ", "", "confidence: ^0.95", "a confidence needs a tolerance", "", "standard deviation"},
+	{"scatter out of supersonic flow", "mach: 0.03", "mach: 0.9", "mach: ^0.9,", "the flow must stay supersonic", "below 0.875", ""},
+	{"scatter of the lip", "mach: 0.03", "lip_setback: 0.2", "lip_setback: ^0.2", "lip_setback is out of range", "0 to 0.1", ""},
 	{"samples", "samples: 60", "samples: 1", "samples: ^1", "samples is out of range", "2 to 100000", ""},
 	{"agreement", "agreement: 1e-3", "agreement: 0", "agreement: ^0", "agreement is out of range", "", ""},
 }

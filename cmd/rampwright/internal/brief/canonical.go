@@ -58,12 +58,6 @@ func (b *Brief) writeFlight(w *bytes.Buffer) {
 	fmt.Fprintf(w, "gas: {model: %s, ratio_of_specific_heats: %s}\n", perfect, exactNumber(b.Definition.Gas.Gamma))
 }
 
-func (b *Brief) writeTolerance(w *bytes.Buffer) {
-	t := b.Tolerance
-	fmt.Fprintf(w, "tolerance: {ramp_angle_deg: %s, mach: %s, incidence_deg: %s, confidence: %s}\n",
-		exactNumber(t.RampAngleDeg), exactNumber(t.Mach), exactNumber(t.IncidenceDeg), exactNumber(t.Confidence))
-}
-
 func (b *Brief) writeInlet(w *bytes.Buffer) {
 	d := b.Definition
 	if d.Outline != nil {

@@ -122,9 +122,11 @@ var keys = []Key{
 	{Section: limits, Name: "at", Form: Points, Default: "the first point", Meaning: "where it holds; the last row that names a point counts there"},
 
 	{Section: tolerance, Name: "ramp_angle_deg", Form: Number, Unit: "deg", Low: 0, High: 2, Default: "0", Meaning: "standard deviation of each ramp angle"},
-	{Section: tolerance, Name: "mach", Form: Number, Low: 0, High: 1, Default: "0", Meaning: "standard deviation of the flight Mach number"},
-	{Section: tolerance, Name: "incidence_deg", Form: Number, Unit: "deg", Low: 0, High: 5, Default: "0", Meaning: "standard deviation of the incidence"},
-	{Section: tolerance, Name: "confidence", Form: Number, Low: 0.5, High: 0.9999, Default: "0.95", Flag: true, Meaning: "share of built inlets that shall keep every limit"},
+	{Section: tolerance, Name: "cowl_angle_deg", Form: Number, Unit: "deg", Low: 0, High: 2, Default: "0", Meaning: "standard deviation of the cowl angle, inner and outer surface together"},
+	{Section: tolerance, Name: "lip_setback", Form: Number, Low: 0, High: 0.1, Default: "0", Meaning: "standard deviation of the place of the lip along x, fraction of capture height"},
+	{Section: tolerance, Name: "mach", Form: Number, Low: 0, High: 1, Default: "0", Meaning: "standard deviation of the flight Mach number, common to all points"},
+	{Section: tolerance, Name: "incidence_deg", Form: Number, Unit: "deg", Low: 0, High: 5, Default: "0", Meaning: "standard deviation of the incidence, common to all points"},
+	{Section: tolerance, Name: "confidence", Form: Number, Low: 0.5, High: 0.999, Flag: true, Meaning: "least probability with which design holds each limit; without it tolerances do not bear on the design"},
 
 	{Section: effort, Name: "samples", Form: Whole, Low: 2, High: 100000, Default: "15 per searched value", Flag: true, Meaning: "exact evaluations of the first design of experiments"},
 	{Section: effort, Name: "infill", Form: Whole, Low: 1, High: 100000, Default: "10 per searched value", Flag: true, Meaning: "exact evaluations chosen by the search"},

@@ -109,7 +109,8 @@ func drawBrief(t *rapid.T) string {
 		}
 	}
 	w.WriteString(pick("defaults", "", "defaults: false\n"))
-	w.WriteString(pick("tolerance", "", "tolerance: {mach: "+number("sigma", 0, 1)+"}\n"))
+	w.WriteString(pick("tolerance", "", "tolerance: {mach: "+number("sigma", 0, 0.12)+"}\n",
+		"tolerance: {cowl_angle_deg: "+number("cowl off", 0.01, 2)+", lip_setback: "+number("lip off", 0, 0.1)+", confidence: "+number("confidence", 0.5, 0.999)+"}\n"))
 	w.WriteString(pick("effort", "", "effort: {seed: 9007199254740991, agreement: "+number("agreement", 1e-8, 0.1)+"}\n"))
 	return w.String()
 }

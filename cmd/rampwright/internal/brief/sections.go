@@ -151,21 +151,6 @@ func bounds(s inlet.Setting) (low, high float64) {
 	return s.Value, s.Value
 }
 
-// readTolerance reads the scatter of the built inlet.
-func (r *reader) readTolerance(root *node) {
-	part := r.child(root, tolerance)
-	number := func(name string) float64 {
-		k := known(tolerance, name)
-		return r.number(part, k, k.Path())
-	}
-	r.brief.Tolerance = Tolerance{
-		RampAngleDeg: number("ramp_angle_deg"),
-		Mach:         number("mach"),
-		IncidenceDeg: number("incidence_deg"),
-		Confidence:   number("confidence"),
-	}
-}
-
 // readEffort reads what the search may spend.
 func (r *reader) readEffort(root *node) {
 	part := r.child(root, effort)
