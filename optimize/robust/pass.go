@@ -66,6 +66,34 @@ func (l *limited) judge(row []float64) verdict {
 	return worst
 }
 
+// margin is the least margin of the limit in one row of draws, in the quantity's
+// unit: NaN where a member has no value, +Inf where none applies.
+func (l *limited) margin(row []float64) float64 {
+	least := math.Inf(1)
+	for i := range l.rows {
+		switch v := row[l.rows[i].Index]; {
+		case math.IsNaN(v):
+			return v
+		case !math.IsInf(v, 1):
+			least = math.Min(least, l.rows[i].Margin(v))
+		}
+	}
+	return least
+}
+
+// margins describes the margin of each limit over draws.
+func margins(limits []limited, rows [][]float64, nominal []float64) []Summary {
+	list := make([]Summary, len(limits))
+	for i := range limits {
+		values := make([]float64, len(rows))
+		for k, row := range rows {
+			values[k] = limits[i].margin(row)
+		}
+		list[i] = summarise(values, limits[i].margin(nominal))
+	}
+	return list
+}
+
 // affected reports whether some draw moves a quantity of the limit from its value
 // as drawn.
 func (l *limited) affected(rows [][]float64, nominal []float64) bool {

@@ -36,11 +36,16 @@ type Study struct {
 	Fitted []Summary
 	Fits   []Fit
 
-	Limits       []Probability // by the exact model
-	Joint        Probability
-	FittedLimits []Probability // by the surrogates, which have an answer everywhere
-	FittedJoint  Probability
-	Evaluations  int // exact, of all purposes
+	Limits        []Probability // by the exact model
+	Joint         Probability
+	Margins       []Summary     // of each limit, by the exact model
+	FittedLimits  []Probability // by the surrogates, which have an answer everywhere
+	FittedJoint   Probability
+	FittedMargins []Summary
+	// Reliability is the nearest way to break each limit, on the surrogates; nil for
+	// a limit nothing moves, or where none was found.
+	Reliability []*Reliability
+	Evaluations int // exact, of all purposes
 }
 
 // Run studies the tolerances of a design. The error reports a task or setting
@@ -65,6 +70,7 @@ func Run(ctx context.Context, task Task, settings Settings) (*Study, error) {
 		return nil, err
 	}
 	s.Limits, s.Joint = passes(limits, s.Draws.Values, s.Nominal)
+	s.Margins = margins(limits, s.Draws.Values, s.Nominal)
 	if err := s.analyse(ctx, b); err != nil {
 		return nil, err
 	}
@@ -118,6 +124,11 @@ func (s *Study) fit(ctx context.Context, b *built, quantities []int, limits []li
 	}
 	rows := predict(s.Fits, s.Draws.Deviates, quantities, s.Nominal, s.Settings.Jobs)
 	s.FittedLimits, s.FittedJoint = passes(limits, rows, s.Nominal)
+	s.FittedMargins = margins(limits, rows, s.Nominal)
+	s.Reliability = make([]*Reliability, len(limits))
+	for i := range limits {
+		s.Reliability[i] = reliability(&limits[i], s.Fits, len(b.scatter))
+	}
 	s.Fitted = make([]Summary, len(s.Responses))
 	for i := range s.Responses {
 		response := &s.Responses[i]
@@ -149,5 +160,6 @@ func (s *Study) Share(holds func(values []float64) bool) float64 {
 	return float64(n) / float64(len(s.Draws.Values))
 }
 
-// fits reports whether a response has a surrogate of every member that is drawn.
+// HasFit reports whether every member of a response that the draws move has a
+// surrogate.
 func (s *Study) HasFit(response int) bool { return !math.IsNaN(s.Fitted[response].Mean) }

@@ -59,6 +59,12 @@ func TestLinearCase(t *testing.T) {
 	near(t, "mean by the surrogate", s.Fitted[0].Mean, y.Mean, 1e-9)
 	near(t, "deviation by the surrogate", s.Fitted[0].Deviation, y.Deviation, 1e-9)
 	near(t, "probability by the surrogate", s.FittedLimits[0].Pass, s.Limits[0].Pass, 2e-4)
+	near(t, "reliability index", s.Reliability[0].Beta, (bound-3)/math.Sqrt(1.65), 1e-6)
+	near(t, "median margin", s.Margins[0].P50, bound-y.P50, 1e-12)
+	near(t, "median margin by the surrogate", s.FittedMargins[0].P50, bound-y.P50, 1e-9)
+	if s.Reliability[1] != nil {
+		t.Errorf("a limit nothing moves is broken at %+v", s.Reliability[1])
+	}
 	if len(s.Fits) != 1 || s.Fits[0].Quantity != 0 {
 		t.Errorf("fits %+v, want one of the quantity that moves", s.Fits)
 	}

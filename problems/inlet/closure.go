@@ -23,6 +23,7 @@ type closure struct {
 	corners [ramp.MaxRamps]contour.Point
 	angles  [ramp.MaxRamps]float64
 	lipWave float64 // beta of the lip shock as designed; 0 for an aligned cowl
+	wall    float64 // angle of the body behind the shoulder: parallel to the cowl as drawn
 	height  float64 // capture height
 	err     error   // why the contour does not close, nil if it does
 	// moved are the walls of an inlet one part of which was turned on its hinge; nil
@@ -36,7 +37,7 @@ func (c *closure) close(r route, g gas.Perfect, d Design, captureHeight, inciden
 	c.Design, c.height, c.err, c.lipWave, c.moved = d, captureHeight, nil, 0, nil
 	n := d.Ramps
 	c.Corners, c.Angles = c.corners[:n], c.angles[:n]
-	c.CowlInner, c.CowlOuter = d.Cowl, d.Outer()
+	c.CowlInner, c.CowlOuter, c.wall = d.Cowl, d.Outer(), d.Cowl
 	sum := 0.0
 	for i := range n {
 		sum += d.Turning[i]
@@ -107,9 +108,9 @@ func (c *closure) lastRamp() contour.Line {
 // cowlLine is the line of the inner cowl surface.
 func (c *closure) cowlLine() contour.Line { return contour.Line{Through: c.Lip, Angle: c.CowlInner} }
 
-// throatWall is the line of the body behind the shoulder, parallel to the cowl.
+// throatWall is the line of the body behind the shoulder.
 func (c *closure) throatWall() contour.Line {
-	return contour.Line{Through: c.Shoulder, Angle: c.CowlInner}
+	return contour.Line{Through: c.Shoulder, Angle: c.wall}
 }
 
 // internalContraction is the height of the stream ahead of the lip, normal to

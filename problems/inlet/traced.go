@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"rampwright/problems"
+	"rampwright/problems/contour"
 	"rampwright/problems/shock"
 	"rampwright/problems/wave"
 )
@@ -26,7 +27,8 @@ func (a *analysis) beyondChain() bool {
 	case error(errInside), error(errCross), error(errFocusWave):
 		return true
 	}
-	return a.alwaysTraced() && a.shape.err == nil
+	// Only a built inlet has a contour whose cowl turns away from the flow.
+	return a.shape.err == nil && (a.alwaysTraced() || a.throatErr == error(errLipOff))
 }
 
 // alwaysTraced reports whether no chain tells the flow: of a given outline, and of an
@@ -60,7 +62,13 @@ func (c *closure) geometry(d *Definition) wave.Geometry {
 	if d.Outline != nil {
 		return d.Outline.Geometry(d.CowlLength * c.height)
 	}
-	return wave.FromContour(&c.Inlet, d.CowlLength*c.height)
+	g := wave.FromContour(&c.Inlet, d.CowlLength*c.height)
+	if c.wall != c.CowlInner { // the cowl of a built inlet has turned by itself
+		length := contour.Distance(c.Lip, c.Shoulder)
+		sin, cos := math.Sincos(c.wall)
+		g.Body[len(g.Body)-1] = contour.Point{X: c.Shoulder.X + length*cos, Y: c.Shoulder.Y + length*sin}
+	}
+	return g
 }
 
 // fail leaves every number of the captured stream missing for one reason.
