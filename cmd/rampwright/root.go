@@ -59,7 +59,7 @@ Exit codes:
 	})
 	root.AddCommand(
 		a.designCommand(), a.flowCommand(), a.checkCommand(), a.fitsCommand(), a.newCommand(),
-		a.ladderCommand(), a.tradeCommand(), a.envelopeCommand(), a.scheduleCommand(),
+		a.ladderCommand(), a.tradeCommand(), a.envelopeCommand(), a.scheduleCommand(), a.spreadCommand(),
 		a.reportCommand(), a.compareCommand(), a.quantitiesCommand(), a.schemaCommand(), a.versionCommand(),
 	)
 	root.SetHelpCommand(&cobra.Command{

@@ -123,7 +123,7 @@ func passes(limits []limited, rows [][]float64, nominal []float64) (each []Proba
 			counts[v]++
 			together[k] = together[k] && v == held
 		}
-		each[i] = newProbability(counts[held], len(rows))
+		each[i] = NewProbability(counts[held], len(rows))
 		each[i].Limit, each[i].Unanswered, each[i].Affected = l.Limit, counts[unanswered], l.affected(rows, nominal)
 		if !each[i].Affected {
 			each[i].Error = 0
@@ -137,18 +137,18 @@ func passes(limits []limited, rows [][]float64, nominal []float64) (each []Proba
 		}
 	}
 	affected := joint.Affected
-	joint = newProbability(all, len(rows))
+	joint = NewProbability(all, len(rows))
 	joint.Affected = affected
 	return each, joint
 }
 
-// newProbability is a share of n draws with its standard error,
+// NewProbability is a share of n draws with its standard error,
 //
 //	sqrt(p (1 - p)/n) with (k + 1/2)/(n + 1) for p,
 //
 // the mean of Jeffreys' posterior (Brown, Cai & DasGupta 2001, from memory), which
 // is not zero where no draw failed.
-func newProbability(k, n int) Probability {
+func NewProbability(k, n int) Probability {
 	p := (float64(k) + 0.5) / (float64(n) + 1)
 	return Probability{Pass: float64(k) / float64(n), Error: math.Sqrt(p * (1 - p) / float64(n))}
 }

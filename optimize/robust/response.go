@@ -28,9 +28,9 @@ func Responses(quantities []problems.Quantity) []Response {
 	return list
 }
 
-// value reads a response off one row of draws: the least member of those with a
+// Value reads a response off one row of draws: the least member of those with a
 // value, NaN where none has one, +Inf where none applies.
-func (r *Response) value(row []float64) float64 {
+func (r *Response) Value(row []float64) float64 {
 	least, missing := math.Inf(1), false
 	for _, i := range r.Members {
 		if math.IsNaN(row[i]) {
@@ -49,7 +49,7 @@ func (r *Response) value(row []float64) float64 {
 func (r *Response) column(rows [][]float64) []float64 {
 	values := make([]float64, len(rows))
 	for i, row := range rows {
-		values[i] = r.value(row)
+		values[i] = r.Value(row)
 	}
 	return values
 }

@@ -36,12 +36,13 @@ type Study struct {
 	Fitted []Summary
 	Fits   []Fit
 
-	Limits        []Probability // by the exact model
-	Joint         Probability
-	Margins       []Summary     // of each limit, by the exact model
-	FittedLimits  []Probability // by the surrogates, which have an answer everywhere
-	FittedJoint   Probability
-	FittedMargins []Summary
+	Limits         []Probability // by the exact model
+	Joint          Probability
+	Margins        []Summary     // of each limit, by the exact model
+	NominalMargins []float64     // as drawn
+	FittedLimits   []Probability // by the surrogates, which have an answer everywhere
+	FittedJoint    Probability
+	FittedMargins  []Summary
 	// Reliability is the nearest way to break each limit, on the surrogates; nil for
 	// a limit nothing moves, or where none was found.
 	Reliability []*Reliability
@@ -71,6 +72,9 @@ func Run(ctx context.Context, task Task, settings Settings) (*Study, error) {
 	}
 	s.Limits, s.Joint = passes(limits, s.Draws.Values, s.Nominal)
 	s.Margins = margins(limits, s.Draws.Values, s.Nominal)
+	for i := range limits {
+		s.NominalMargins = append(s.NominalMargins, limits[i].margin(s.Nominal))
+	}
 	if err := s.analyse(ctx, b); err != nil {
 		return nil, err
 	}
@@ -105,7 +109,7 @@ func (s *Study) analyse(ctx context.Context, b *built) error {
 	share(s.Settings.Jobs, len(s.Responses), func() func(i int) {
 		return func(i int) {
 			response := &s.Responses[i]
-			s.Exact[i] = summarise(response.column(s.Draws.Values), response.value(s.Nominal))
+			s.Exact[i] = summarise(response.column(s.Draws.Values), response.Value(s.Nominal))
 			s.Sensitivity[i] = r.indices(response)
 		}
 	})
@@ -132,7 +136,7 @@ func (s *Study) fit(ctx context.Context, b *built, quantities []int, limits []li
 	s.Fitted = make([]Summary, len(s.Responses))
 	for i := range s.Responses {
 		response := &s.Responses[i]
-		s.Fitted[i] = summarise(response.column(rows), response.value(s.Nominal))
+		s.Fitted[i] = summarise(response.column(rows), response.Value(s.Nominal))
 	}
 	return nil
 }
@@ -149,15 +153,15 @@ func needed(limits []limited, more []int) []int {
 	return slices.Compact(list)
 }
 
-// Share returns the share of draws a test holds for.
-func (s *Study) Share(holds func(values []float64) bool) float64 {
+// Share returns how often a test of the values holds over the draws.
+func (s *Study) Share(holds func(values []float64) bool) Probability {
 	n := 0
 	for _, row := range s.Draws.Values {
 		if holds(row) {
 			n++
 		}
 	}
-	return float64(n) / float64(len(s.Draws.Values))
+	return NewProbability(n, len(s.Draws.Values))
 }
 
 // HasFit reports whether every member of a response that the draws move has a

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"sync"
 
 	"rampwright/problems"
@@ -108,30 +109,60 @@ func (b *Built) EvaluateBuilt(ctx context.Context, x, given []float64, dst *prob
 	if err := ctx.Err(); err != nil {
 		return err
 	}
-	var off offsets
-	for i, slot := range b.slots {
-		off[slot] = given[i]
-	}
 	w := b.pool.Get().(*builtWork)
 	defer b.pool.Put(w)
-	b.freeze(&w.workspace, first{}, x)
 	dst.Bounds = nil
-	if w.shape.err == nil && b.definition.Outline == nil {
-		w.shape.build(&off)
-		w.design = w.shape.Design
-	}
+	off := b.offset(w, x, given)
 	next := 0
 	for i := range b.definition.Points {
-		w.flown = b.definition.Points[i]
-		w.flown.Mach += off[offMach]
-		w.flown.Incidence += off[offIncidence] * radian
-		w.flow.point = &w.flown
+		w.fly(b.definition.Points[i], &off)
 		w.flow.fly(BuiltTrace())
 		next = b.read(&w.flow, dst, next, i)
 	}
 	b.read(&w.flow, dst, next, -1)
 	w.flow.trace = nil
 	return nil
+}
+
+// StraightClearance stores, for each flight point, the least lip clearance of the
+// ramp shocks as built and flown when each runs on straight, in capture heights:
+// negative where one falls inside the lip, NaN where not every ramp shock is
+// attached. A trace may find that shocks merge on the way and pass outside.
+func (b *Built) StraightClearance(x, given, dst []float64) {
+	w := b.pool.Get().(*builtWork)
+	defer b.pool.Put(w)
+	off := b.offset(w, x, given)
+	for i := range dst {
+		w.fly(b.definition.Points[i], &off)
+		w.flow.marchRamps()
+		w.flow.placeLip()
+		dst[i] = math.NaN()
+		if w.flow.rampErr == nil && w.shape.err == nil {
+			dst[i] = slices.Min(w.flow.clearance[:w.design.Ramps])
+		}
+	}
+}
+
+// offset shapes the contour of the design at x with the offsets given, one an input.
+func (b *Built) offset(w *builtWork, x, given []float64) offsets {
+	var off offsets
+	for i, slot := range b.slots {
+		off[slot] = given[i]
+	}
+	b.freeze(&w.workspace, first{}, x)
+	if w.shape.err == nil && b.definition.Outline == nil {
+		w.shape.build(&off)
+		w.design = w.shape.Design
+	}
+	return off
+}
+
+// fly sets the flight point with what it is off by.
+func (w *builtWork) fly(point Point, off *offsets) {
+	w.flown = point
+	w.flown.Mach += off[offMach]
+	w.flown.Incidence += off[offIncidence] * radian
+	w.flow.point = &w.flown
 }
 
 // BuiltTrace are the settings of the traces of a built inlet: wavelets of 4 deg, a

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"math/rand/v2"
 	"slices"
 	"strings"
 	"testing"
@@ -164,6 +165,13 @@ func TestBuiltDrawWithShocksInside(t *testing.T) {
 	if v := built.value("only", "lip_clearance/ramp 1 shock"); !(v < 0) {
 		t.Errorf("clearance %v, want it inside", v)
 	}
+	var straight [1]float64
+	builtOf(t, d, Tolerances{Mach: 0.03}).StraightClearance(nil, []float64{0.06}, straight[:])
+	a := flowAt(t, d.at(6.06, 0), first{}, 0)
+	within(t, "clearance of straight shocks", straight[0], slices.Min(a.clearance[:3]), 1e-12)
+	if !(straight[0] < 0) {
+		t.Errorf("straight shocks clear the lip by %v", straight[0])
+	}
 	within(t, "capture", built.value("only", "capture"), 1, 0.01)
 	within(t, "recovery", built.value("only", "recovery"), evaluate(t, d).value("only", "recovery"), 0.05)
 }
@@ -209,6 +217,23 @@ func benchmarkBuilt(b *testing.B, mach float64) {
 	dst := problems.NewEvaluation(len(built.Quantities()))
 	b.ReportAllocs()
 	for b.Loop() {
+		if err := built.EvaluateBuilt(context.Background(), nil, off, dst); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+// Draws as a study makes them: half of them and more are traced.
+func BenchmarkEvaluateBuiltDraws(b *testing.B) {
+	built := builtOf(b, veyric().at(6, 0), Tolerances{RampAngle: 0.1, Mach: 0.03, Incidence: 0.5})
+	source := rand.New(rand.NewPCG(1, 2))
+	off := make([]float64, len(built.Scatter()))
+	dst := problems.NewEvaluation(len(built.Quantities()))
+	b.ReportAllocs()
+	for b.Loop() {
+		for i, s := range built.Scatter() {
+			off[i] = s.Deviation * source.NormFloat64()
+		}
 		if err := built.EvaluateBuilt(context.Background(), nil, off, dst); err != nil {
 			b.Fatal(err)
 		}
