@@ -114,8 +114,17 @@ func (a *app) design(study *study, dir string) (err error) {
 		return a.cutShort(err, interruption)
 	}
 	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
-	if err := a.afterwards(ctx, study, settings, &finished); err != nil && ctx.Err() == nil {
+	searched, err := a.withConfidence(ctx, study, cached, settings, &finished)
+	if err != nil {
+		return err
+	}
+	if err := a.afterwards(ctx, searched, settings, &finished); err != nil && ctx.Err() == nil {
 		return err // a search that was cut short is left out, and the document says so
+	}
+	if result = finished.Result; searched != study {
+		if err := judgeAsAsked(study, result); err != nil {
+			return err
+		}
 	}
 	if study.problem != nil {
 		if finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), result.Best.X); err != nil {

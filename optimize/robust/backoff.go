@@ -40,6 +40,9 @@ type Round struct {
 	Least  float64 // the least probability of a limit
 }
 
+// Asked lists the limits the design of a round was searched with.
+func (r *Round) Asked() []problems.Limit { return applied(r.Shifts) }
+
 // Backoff is a design searched with a confidence.
 type Backoff struct {
 	Confidence float64
@@ -64,7 +67,7 @@ type Backoff struct {
 
 const (
 	loopDraws    = 4000
-	mostRounds   = 8
+	mostRounds   = 10
 	tailDraws    = 20   // draws expected beyond the confidence
 	shiftsAtRest = 2e-2 // relative change of every shift that ends the loop
 )
@@ -90,7 +93,9 @@ func aimed(confidence float64, draws int) float64 {
 //	s = g(x) - g_a(x),  g_a the (1 - aimed) quantile of g over the draws,
 //
 // at least 0, and the next search keeps g(x) >= bound + s. Every round uses the
-// same draws. A draw without an answer counts as the worst value. It ends when
+// same draws. A draw without an answer counts as the worst value; where more draws
+// than may fail have none, no margin follows from them, and those sides the design
+// stands on grow by a quarter each round to lead it away (our rule). It ends when
 // every limit holds as aimed and the shifts are at rest; the best design that holds
 // them is then judged, with the nominal one, over fresh draws. A search that finds
 // nothing ends it as well.
@@ -154,9 +159,14 @@ func (o *Backoff) judge(ctx context.Context, b *built, r *Round, limits []limite
 	r.Least = least(r.Limits)
 	o.Rounds = append(o.Rounds, *r)
 	shifts := unshifted(limits)
+	allowed := int((1 - o.Aimed) * float64(o.Draws))
 	for i := range limits {
-		if r.Limits[i].Affected {
-			limits[i].shift(&shifts[i], draws.Values, nominal, 1-o.Aimed)
+		if !r.Limits[i].Affected {
+			continue
+		}
+		limits[i].shift(&shifts[i], draws.Values, nominal, 1-o.Aimed)
+		if r.Limits[i].Unanswered > allowed {
+			limits[i].grow(&shifts[i], &r.Shifts[i], nominal)
 		}
 	}
 	return shifts, nil

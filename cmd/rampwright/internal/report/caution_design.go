@@ -22,12 +22,13 @@ const (
 // first, how the search ended next, then flow, margins, limits and surrogates.
 func (s *Study) cautions() []Caution {
 	var list, flow []Caution
+	list = append(list, s.confidenceCautions()...)
 	if s.Problem != nil {
 		flow = append(exactCautions(s.Problem, s.Flow), s.noMargin()...)
 		flow = append(flow, s.liftedDefaults()...)
 	}
 	if len(flow) > 0 && flow[0].Rule == "terminal_mach" {
-		list, flow = flow[:1:1], flow[1:]
+		list, flow = append(list, flow[0]), flow[1:]
 	}
 	list = append(list, s.endingCautions()...)
 	list = append(list, flow...)

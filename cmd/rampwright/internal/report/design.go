@@ -21,6 +21,9 @@ type Study struct {
 	Rounded   *optimize.Rounded     // nearest design in tenths of a degree; nil when not looked for
 	Plays     []optimize.Play       // of the variables at a loss of PlayLoss; nil when not measured
 	Flow      *inlet.Flow           // exact flow of Result.Best; nil where the problem is no inlet
+	// Confidence sets Result.Best beside the design that knows no tolerances; nil
+	// where none was asked for.
+	Confidence *Confidence
 }
 
 // DesignDocument is a design with its evidence.
@@ -43,8 +46,9 @@ type DesignDocument struct {
 	Play        []Play      `json:"play"`
 	Notes       []string    `json:"notes"`
 	History     []Step      `json:"history"`
-	Inlet       *Shape      `json:"inlet"`  // null where the problem is no inlet
-	Points      []Point     `json:"points"` // stations; quantities are in Best
+	Inlet       *Shape      `json:"inlet"`                // null where the problem is no inlet
+	Points      []Point     `json:"points"`               // stations; quantities are in Best
+	Confidence  *Confidence `json:"confidence,omitempty"` // where the brief asks for one
 	Cautions    []Caution   `json:"cautions"`
 	Assumptions []string    `json:"assumptions"`
 
@@ -174,6 +178,7 @@ func NewDesign(head Head, study Study) *DesignDocument {
 	}
 	d.Best = study.best(d.readings)
 	d.ExactSearch = study.exactSearch()
+	d.Confidence = study.Confidence
 	d.Cautions = study.cautions()
 	if result.Best.Assessment.Feasible {
 		d.Notes = study.notes()

@@ -21,6 +21,7 @@ func (d *DesignDocument) Text(width int) string {
 	p.WriteByte('\n')
 	d.variables(p)
 	d.yardstick(p)
+	d.confidence(p)
 	d.nearby(p)
 	d.explained(p)
 	d.margins(p)

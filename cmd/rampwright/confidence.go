@@ -1,0 +1,154 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+
+	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/constraints"
+	"rampwright/optimize"
+	"rampwright/optimize/robust"
+	"rampwright/problems"
+)
+
+// backOff is the search of a design that holds each limit with the confidence of a
+// brief, from the best design under the limits as they stand.
+type backOff struct {
+	app      *app
+	study    *study
+	problem  problems.Problem // behind the ledger
+	settings optimize.Settings
+	nominal  *optimize.Result
+	results  []*optimize.Result // by round
+}
+
+// withConfidence replaces the result of a finished design by the backed-off one and
+// describes both. It returns the study whose limits are those the new result was
+// searched with; a brief without a confidence is left as it is.
+func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Problem, settings optimize.Settings, finished *report.Study) (*study, error) {
+	confidence := of.brief.Tolerance.Confidence
+	result := finished.Result
+	if confidence == 0 || !result.Best.Assessment.Feasible || ctx.Err() != nil {
+		return of, nil
+	}
+	built, err := of.problem.Built(of.brief.Tolerance.Deviations())
+	if err != nil {
+		return nil, err
+	}
+	b := &backOff{app: a, study: of, problem: cached, settings: settings, nominal: result, results: []*optimize.Result{result}}
+	goal := robust.Goal{
+		Problem: built, Limits: of.limits, Confidence: confidence, Highest: of.brief.Aim.Highest,
+		Nominal: robust.Found{X: result.Best.X, Feasible: true, Aim: result.Best.AimExact},
+	}
+	a.say("confidence %g: drawing the design that knows no tolerances\n", confidence)
+	answer, err := robust.BackOff(ctx, goal, robust.Settings{Seed: settings.Seed, Jobs: a.jobs}, b.search)
+	switch {
+	case ctx.Err() != nil:
+		finished.Confidence = &report.Confidence{Confidence: report.Number(confidence), Why: "the search was ended before a design was backed off: the one below knows no tolerances"}
+		finished.Result.Status = cutStatus(ctx)
+		return of, nil
+	case err != nil:
+		return nil, err
+	}
+	finished.Result = b.results[answer.Chosen]
+	finished.Confidence = b.describe(answer)
+	if !answer.Met && finished.Result.Status == optimize.Verified {
+		finished.Result.Status = optimize.NotVerified
+	}
+	shifted := *of
+	shifted.limits = answer.Rounds[answer.Chosen].Asked()
+	return &shifted, nil
+}
+
+// cutStatus is the status of a search whose context has ended.
+func cutStatus(ctx context.Context) optimize.Status {
+	if errors.Is(context.Cause(ctx), context.DeadlineExceeded) {
+		return optimize.Stopped
+	}
+	return optimize.Interrupted
+}
+
+// search answers one round: a design of its own, from that of the round before.
+func (b *backOff) search(ctx context.Context, limits []problems.Limit, near []float64) (robust.Found, error) {
+	b.app.say("confidence, round %d: searching with the margins the draws ask for\n", len(b.results))
+	task := optimize.Task{Problem: b.problem, Limits: limits, Aim: b.study.brief.Aim, Starts: [][]float64{near}}
+	progress := b.app.progress()
+	result, err := optimize.Design(ctx, task, b.settings, progress.observe)
+	progress.end()
+	if err != nil {
+		return robust.Found{}, err
+	}
+	if ctx.Err() != nil {
+		return robust.Found{}, ctx.Err()
+	}
+	best := &result.Best
+	if best.Assessment.Feasible {
+		b.results = append(b.results, result)
+	}
+	return robust.Found{X: best.X, Feasible: best.Assessment.Feasible, Aim: best.AimExact}, nil
+}
+
+// describe sets the nominal and the backed-off design side by side, with what each
+// margin costs.
+func (b *backOff) describe(answer *robust.Backoff) *report.Confidence {
+	chosen := b.results[answer.Chosen]
+	out := &report.Confidence{
+		Confidence: report.Number(answer.Confidence), Aimed: report.Number(answer.Aimed), Met: answer.Met, Why: answer.Why,
+		Rounds: len(answer.Rounds), DrawsARound: answer.Draws, Draws: answer.Checked,
+		Nominal:   b.side(b.nominal, answer.NominalJoint),
+		BackedOff: b.side(chosen, answer.Joint),
+	}
+	for i := range answer.Limits {
+		p, was, shift := &answer.Limits[i], &answer.NominalLimits[i], &answer.Rounds[answer.Chosen].Shifts[i]
+		if p.Limit.Kind == problems.Hard && p.Pass == 1 && was.Pass == 1 {
+			continue
+		}
+		l := report.ConfidentLimit{
+			Quantity: p.Limit.Quantity, At: p.Limit.Point, Affected: p.Affected || was.Affected,
+			Nominal: share(*was), BackedOff: share(*p), Unanswered: p.Unanswered,
+			LowMargin: report.Number(shift.Low), HighMargin: report.Number(shift.High),
+			Price: report.Number(priceOf(chosen, p.Limit)),
+		}
+		l.Bounds(p.Limit.Low, p.Limit.High)
+		l.Cost = l.Price * (l.LowMargin + l.HighMargin)
+		out.Limits = append(out.Limits, l)
+	}
+	return out
+}
+
+func (b *backOff) side(r *optimize.Result, joint robust.Probability) report.ConfidentDesign {
+	variables := report.Object[report.Number]{}
+	for i, v := range b.problem.Variables() {
+		variables = append(variables, report.Field[report.Number]{Name: v.Name, Value: report.Number(r.Best.X[i])})
+	}
+	return report.ConfidentDesign{Variables: variables, Aim: report.Number(r.Best.AimExact), Joint: share(joint)}
+}
+
+// priceOf sums the prices of the rows of a limit.
+func priceOf(r *optimize.Result, limit problems.Limit) float64 {
+	sum := 0.0
+	for i := range r.Best.Assessment.Checks {
+		c := &r.Best.Assessment.Checks[i]
+		if c.Quantity.Name == limit.Quantity && c.Quantity.Point == limit.Point && c.Kind == limit.Kind {
+			sum += c.Price
+		}
+	}
+	return sum
+}
+
+// judgeAsAsked judges a backed-off result on the limits of the brief, which its
+// search had moved.
+func judgeAsAsked(of *study, result *optimize.Result) error {
+	rows, err := constraints.Rows(of.model.Quantities(), of.limits)
+	if err != nil {
+		return fmt.Errorf("limits of the brief: %w", err)
+	}
+	result.Rows = rows
+	result.Best.Assessment = constraints.Assess(rows, result.Best.Exact)
+	for i := range result.Candidates {
+		c := &result.Candidates[i]
+		c.Assessment = constraints.Assess(rows, c.Exact)
+	}
+	return nil
+}

@@ -1,0 +1,176 @@
+package report
+
+import (
+	"fmt"
+	"strings"
+)
+
+// Confidence sets the design that knows no tolerances beside the one that holds
+// each limit with the confidence asked for.
+type Confidence struct {
+	Confidence  Number           `json:"confidence"`
+	Met         bool             `json:"met"`
+	Why         string           `json:"why"`   // how the search ended
+	Aimed       Number           `json:"aimed"` // probability aimed at over the draws of a round
+	Rounds      int              `json:"rounds"`
+	DrawsARound int              `json:"draws_a_round"`
+	Draws       int              `json:"draws"` // fresh ones, on which both designs are judged
+	Nominal     ConfidentDesign  `json:"nominal"`
+	BackedOff   ConfidentDesign  `json:"backed_off"`
+	Limits      []ConfidentLimit `json:"limits"`
+}
+
+// ConfidentDesign is one of the two designs.
+type ConfidentDesign struct {
+	Variables Object[Number] `json:"variables"`
+	Aim       Number         `json:"aim"`
+	Joint     SpreadShare    `json:"pass_probability"` // of all limits at once
+}
+
+// ConfidentLimit is how often a limit holds for both designs, the margin the second
+// was searched with, and what that costs.
+type ConfidentLimit struct {
+	Quantity   string      `json:"quantity"`
+	At         string      `json:"at"`
+	Low        Number      `json:"low"`
+	High       Number      `json:"high"`
+	Affected   bool        `json:"affected"`
+	Nominal    SpreadShare `json:"nominal"`
+	BackedOff  SpreadShare `json:"backed_off"`
+	Unanswered int         `json:"unanswered"`
+	LowMargin  Number      `json:"low_margin"`  // by which the lower side was moved up
+	HighMargin Number      `json:"high_margin"` // by which the upper side was moved down
+	Price      Number      `json:"price"`       // of the aim for each unit of margin
+	Cost       Number      `json:"cost"`        // price times margin
+
+	low, high float64
+}
+
+// Bounds sets the sides of the limit, infinite where absent.
+func (l *ConfidentLimit) Bounds(low, high float64) {
+	l.low, l.high = low, high
+	l.Low, l.High = oneSided(low), oneSided(high)
+}
+
+// weakest is the limit of the backed-off design that holds most rarely; nil without
+// any that moves.
+func (c *Confidence) weakest() *ConfidentLimit {
+	var weakest *ConfidentLimit
+	for i := range c.Limits {
+		if l := &c.Limits[i]; l.Affected && (weakest == nil || l.BackedOff.Share < weakest.BackedOff.Share) {
+			weakest = l
+		}
+	}
+	return weakest
+}
+
+// confidenceCautions say where the confidence is not reached.
+func (s *Study) confidenceCautions() []Caution {
+	c := s.Confidence
+	if c == nil || c.Met {
+		return nil
+	}
+	text := fmt.Sprintf("The confidence of %g %% asked for each limit is not reached: %s.", 100*float64(c.Confidence), c.Why)
+	if weakest := c.weakest(); weakest != nil {
+		text += fmt.Sprintf(" Over fresh draws %s holds in %s %%.", aimPhrase(weakest.Quantity, weakest.At), sharePercent(weakest.BackedOff.Share))
+	}
+	return []Caution{{"confidence", "", text}}
+}
+
+// confidence writes both designs and what the margins cost.
+func (d *DesignDocument) confidence(p *page) {
+	c := d.Confidence
+	if c == nil {
+		return
+	}
+	p.heading(fmt.Sprintf("Confidence: each limit in %g %% of the inlets built and flown", 100*float64(c.Confidence)))
+	if c.Rounds == 0 {
+		p.wrap("", sentenceCase(c.Why)+".", "")
+		return
+	}
+	p.wrap("", d.confidenceAnswer(), "")
+	p.WriteByte('\n')
+	d.bothDesigns(p)
+	d.marginCosts(p)
+	p.WriteByte('\n')
+	p.wrap(indent, fmt.Sprintf("Holds: per cent of %d fresh draws of the exact model, standard error %s at most. Margin: by how much the search kept inside, from %d draws a round in %d rounds that aimed at %.4g %%. Cost: margin times price, in %s, to first order.",
+		c.Draws, percentError(c.largestError()), c.DrawsARound, c.Rounds, 100*float64(c.Aimed), d.aimUnit()), indent)
+}
+
+func (c *Confidence) largestError() Number {
+	most := max(c.Nominal.Joint.Error, c.BackedOff.Joint.Error)
+	for i := range c.Limits {
+		most = max(most, c.Limits[i].Nominal.Error, c.Limits[i].BackedOff.Error)
+	}
+	return most
+}
+
+func (d *DesignDocument) aimUnit() string {
+	if what := d.Best.Aim.Text; !strings.ContainsAny(what, " +-*/^(@") {
+		return what
+	}
+	return "the aim"
+}
+
+// confidenceAnswer is what the confidence costs, in a sentence.
+func (d *DesignDocument) confidenceAnswer() string {
+	c := d.Confidence
+	word := "Met"
+	if !c.Met {
+		word = "Not met (" + c.Why + ")"
+	}
+	text := fmt.Sprintf("%s: %s of %s instead of %s for the design that knows no tolerances. All limits together hold in %s %% instead of %s %%.",
+		word, d.aimName(), significant(float64(c.BackedOff.Aim)), significant(float64(c.Nominal.Aim)), sharePercent(c.BackedOff.Joint.Share), sharePercent(c.Nominal.Joint.Share))
+	for _, v := range c.BackedOff.Variables {
+		if v.Name == "lip_setback" {
+			text += fmt.Sprintf(" The lip setback chosen is %s capture heights.", significant(float64(v.Value)))
+		}
+	}
+	return text
+}
+
+// bothDesigns sets the searched values side by side.
+func (d *DesignDocument) bothDesigns(p *page) {
+	c := d.Confidence
+	t := &table{columns: []column{{head: "searched"}, {head: "nominal"}, {head: "backed off"}}}
+	for i, v := range c.Nominal.Variables {
+		t.add(v.Name, significant(float64(v.Value)), significant(float64(c.BackedOff.Variables[i].Value)))
+	}
+	p.table(t)
+	p.WriteByte('\n')
+}
+
+// marginCosts writes how often each limit holds for both designs, and its margin.
+func (d *DesignDocument) marginCosts(p *page) {
+	t := &table{columns: []column{{head: "limit"}, {head: "bound"}, {head: "nominal\nholds"}, {head: "backed off\nholds"}, {head: "margin"}, {head: "cost"}}}
+	at := ""
+	for i := range d.Confidence.Limits {
+		l := &d.Confidence.Limits[i]
+		if l.At != at {
+			at = l.At
+			t.section(at)
+		}
+		if !l.Affected {
+			t.add(l.Quantity, bounds(l.low, l.high), "not", "affected", "", "")
+			continue
+		}
+		cost := ""
+		if l.Cost > 0 {
+			cost = significant(float64(l.Cost))
+		}
+		t.add(l.Quantity, bounds(l.low, l.high), sharePercent(l.Nominal.Share), sharePercent(l.BackedOff.Share), l.marginText(), cost)
+	}
+	p.table(t)
+}
+
+// marginText is the margin of the sides that have one.
+func (l *ConfidentLimit) marginText() string {
+	var parts []string
+	if finite(float64(l.Low)) {
+		parts = append(parts, fmt.Sprintf("%.3g", float64(l.LowMargin)))
+	}
+	if finite(float64(l.High)) {
+		parts = append(parts, fmt.Sprintf("%.3g", float64(l.HighMargin)))
+	}
+	return strings.Join(parts, "; ")
+}
