@@ -56,9 +56,11 @@ func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Pro
 	if !answer.Met && finished.Result.Status == optimize.Verified {
 		finished.Result.Status = optimize.NotVerified
 	}
-	shifted := *of
-	shifted.limits = answer.Rounds[answer.Chosen].Asked()
-	return &shifted, nil
+	round := &answer.Rounds[answer.Chosen]
+	searched := *of
+	guarded, guard := round.Cut.Guard(of.model)
+	searched.model, searched.limits = guarded, append(guard, round.Asked()...)
+	return &searched, nil
 }
 
 // cutStatus is the status of a search whose context has ended.
@@ -70,9 +72,10 @@ func cutStatus(ctx context.Context) optimize.Status {
 }
 
 // search answers one round: a design of its own, from that of the round before.
-func (b *backOff) search(ctx context.Context, limits []problems.Limit, near []float64) (robust.Found, error) {
+func (b *backOff) search(ctx context.Context, q robust.Question) (robust.Found, error) {
 	b.app.say("confidence, round %d: searching with the margins the draws ask for\n", len(b.results))
-	task := optimize.Task{Problem: b.problem, Limits: limits, Aim: b.study.brief.Aim, Starts: [][]float64{near}}
+	problem, guard := q.Cut.Guard(b.problem)
+	task := optimize.Task{Problem: problem, Limits: append(guard, q.Limits...), Aim: b.study.brief.Aim, Starts: [][]float64{q.Near}}
 	progress := b.app.progress()
 	result, err := optimize.Design(ctx, task, b.settings, progress.observe)
 	progress.end()
@@ -101,7 +104,7 @@ func (b *backOff) describe(answer *robust.Backoff) *report.Confidence {
 	}
 	for i := range answer.Limits {
 		p, was, shift := &answer.Limits[i], &answer.NominalLimits[i], &answer.Rounds[answer.Chosen].Shifts[i]
-		if p.Limit.Kind == problems.Hard && p.Pass == 1 && was.Pass == 1 {
+		if p.Limit.Kind == problems.Hard && (p.Pass == 1 && was.Pass == 1 || outdone(p.Limit, answer.Limits)) {
 			continue
 		}
 		l := report.ConfidentLimit{
@@ -138,17 +141,38 @@ func priceOf(r *optimize.Result, limit problems.Limit) float64 {
 }
 
 // judgeAsAsked judges a backed-off result on the limits of the brief, which its
-// search had moved.
+// search had moved, and drops the quantity it had added.
 func judgeAsAsked(of *study, result *optimize.Result) error {
 	rows, err := constraints.Rows(of.model.Quantities(), of.limits)
 	if err != nil {
 		return fmt.Errorf("limits of the brief: %w", err)
 	}
+	width := len(of.model.Quantities())
 	result.Rows = rows
-	result.Best.Assessment = constraints.Assess(rows, result.Best.Exact)
-	for i := range result.Candidates {
-		c := &result.Candidates[i]
-		c.Assessment = constraints.Assess(rows, c.Exact)
+	for i := range result.Samples {
+		trim(result.Samples[i].Evaluation, width)
 	}
+	for i := range result.Candidates {
+		judgeAnew(&result.Candidates[i], rows, width)
+	}
+	judgeAnew(&result.Best, rows, width)
 	return nil
+}
+
+func judgeAnew(c *optimize.Candidate, rows []constraints.Row, width int) {
+	trim(c.Exact, width)
+	trim(c.Second, width)
+	c.Predicted = c.Predicted[:min(width, len(c.Predicted))]
+	c.Assessment = constraints.Assess(rows, c.Exact)
+}
+
+// trim drops the values behind the first.
+func trim(e *problems.Evaluation, width int) {
+	if e == nil || len(e.Values) <= width {
+		return
+	}
+	e.Values, e.Reasons = e.Values[:width], e.Reasons[:width]
+	if e.Bounds != nil {
+		e.Bounds = e.Bounds[:width]
+	}
 }

@@ -1,6 +1,7 @@
 package robust
 
 import (
+	"cmp"
 	"context"
 	"fmt"
 	"math"
@@ -10,9 +11,17 @@ import (
 	"rampwright/surrogate/doe"
 )
 
-// Search finds the best design under limits; near is the design of the round
-// before. An answer that is not feasible holds the limits nowhere that was found.
-type Search func(ctx context.Context, limits []problems.Limit, near []float64) (Found, error)
+// Question asks for the best design of a round: under limits, and within the cut
+// where there is one, from the design of the round before.
+type Question struct {
+	Limits []problems.Limit
+	Cut    *Cut // nil where draws have answers
+	Near   []float64
+}
+
+// Search answers a question. An answer that is not feasible holds the limits
+// nowhere that was found.
+type Search func(ctx context.Context, q Question) (Found, error)
 
 // Found is the answer of a search.
 type Found struct {
@@ -35,6 +44,7 @@ type Goal struct {
 type Round struct {
 	Found
 	Shifts []Shift
+	Cut    *Cut // it was searched within; nil without
 	Limits []Probability
 	Joint  Probability
 	Least  float64 // the least probability of a limit
@@ -55,19 +65,19 @@ type Backoff struct {
 	Met bool
 	// Verified and Nominal are the chosen and the nominal design over Checked fresh
 	// draws that no round has seen.
-	Checked        int
-	Limits         []Probability
-	Joint          Probability
-	NominalLimits  []Probability
-	NominalJoint   Probability
-	Why            string // how it ended
-	NothingHolds   bool   // the last search found no design that holds the shifted limits
-	ShiftsOfChosen []Shift
+	Checked       int
+	Limits        []Probability
+	Joint         Probability
+	NominalLimits []Probability
+	NominalJoint  Probability
+	Why           string // how it ended
+	NothingHolds  bool   // the last search found no design that holds the shifted limits
 }
 
 const (
-	loopDraws    = 4000
-	mostRounds   = 10
+	loopDraws    = 2000
+	mostRounds   = 8
+	enoughHeld   = 2    // rounds that hold as aimed at
 	tailDraws    = 20   // draws expected beyond the confidence
 	shiftsAtRest = 2e-2 // relative change of every shift that ends the loop
 )
@@ -93,9 +103,9 @@ func aimed(confidence float64, draws int) float64 {
 //	s = g(x) - g_a(x),  g_a the (1 - aimed) quantile of g over the draws,
 //
 // at least 0, and the next search keeps g(x) >= bound + s. Every round uses the
-// same draws. A draw without an answer counts as the worst value; where more draws
-// than may fail have none, no margin follows from them, and those sides the design
-// stands on grow by a quarter each round to lead it away (our rule). It ends when
+// same draws. A draw without an answer counts as the worst value, or is left out
+// where more have none than may fail: from the first round with more than half as
+// many on, a cut keeps the search where draws have answers (our rule). It ends when
 // every limit holds as aimed and the shifts are at rest; the best design that holds
 // them is then judged, with the nominal one, over fresh draws. A search that finds
 // nothing ends it as well.
@@ -117,19 +127,14 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 	deviates := drawn(out.Draws, len(b.scatter), doe.Stream(settings.Seed, "back-off draws"))
 	next := Round{Found: goal.Nominal, Shifts: unshifted(limits)}
 	for {
-		shifts, err := out.judge(ctx, b, &next, limits, deviates, settings.Jobs)
+		ask, err := out.judge(ctx, b, &next, limits, deviates, settings.Jobs)
 		if err != nil {
 			return nil, err
 		}
-		if out.ended(shifts) {
+		if out.ended(ask.shifts) || out.crossed(ask.shifts) {
 			break
 		}
-		asked := applied(shifts)
-		if crossed := slices.IndexFunc(asked, func(l problems.Limit) bool { return l.Low > l.High }); crossed >= 0 {
-			out.NothingHolds, out.Why = true, fmt.Sprintf("tolerances scatter %s at %s wider than its limits are apart", asked[crossed].Quantity, asked[crossed].Point)
-			break
-		}
-		found, err := search(ctx, asked, next.X)
+		found, err := search(ctx, Question{applied(ask.shifts), ask.cut, next.X})
 		if err != nil {
 			return nil, err
 		}
@@ -137,39 +142,43 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 			out.NothingHolds, out.Why = true, "no design was found that holds the limits with the margins they need"
 			break
 		}
-		next = Round{Found: found, Shifts: shifts}
+		next = Round{Found: found, Shifts: ask.shifts, Cut: ask.cut}
 	}
 	return out, out.verify(ctx, goal, b, limits, settings)
 }
 
-// judge draws at the design of a round, keeps the round, and returns the shifts its
-// draws ask for.
-func (o *Backoff) judge(ctx context.Context, b *built, r *Round, limits []limited, deviates [][]float64, jobs int) ([]Shift, error) {
+// asked is what the draws of a round ask the next search for.
+type asked struct {
+	shifts []Shift
+	cut    *Cut
+}
+
+// judge draws at the design of a round, keeps the round, and returns what its draws
+// ask for.
+func (o *Backoff) judge(ctx context.Context, b *built, r *Round, limits []limited, deviates [][]float64, jobs int) (asked, error) {
 	b.x = r.X
 	asDrawn, err := b.evaluate(ctx, [][]float64{make([]float64, len(b.scatter))}, 1)
 	if err != nil {
-		return nil, err
+		return asked{}, err
 	}
 	draws, err := b.evaluate(ctx, deviates, jobs)
 	if err != nil {
-		return nil, err
+		return asked{}, err
 	}
 	nominal := asDrawn.Values[0]
 	r.Limits, r.Joint = passes(limits, draws.Values, nominal)
 	r.Least = least(r.Limits)
 	o.Rounds = append(o.Rounds, *r)
-	shifts := unshifted(limits)
-	allowed := int((1 - o.Aimed) * float64(o.Draws))
+	ask := asked{shifts: unshifted(limits)}
 	for i := range limits {
-		if !r.Limits[i].Affected {
-			continue
-		}
-		limits[i].shift(&shifts[i], draws.Values, nominal, 1-o.Aimed)
-		if r.Limits[i].Unanswered > allowed {
-			limits[i].grow(&shifts[i], &r.Shifts[i], nominal)
+		if r.Limits[i].Affected {
+			limits[i].shift(&ask.shifts[i], draws.Values, nominal, 1-o.Aimed)
 		}
 	}
-	return shifts, nil
+	if share := unansweredShare(limits, draws.Values); r.Cut != nil || share > cutAllowed*(1-o.Aimed) {
+		ask.cut, err = b.cutAt(ctx, r.X, share, limits, deviates, 1-o.Aimed, jobs)
+	}
+	return ask, err
 }
 
 // least is the least probability of the limits, 1 without any.
@@ -187,12 +196,37 @@ func (o *Backoff) ended(shifts []Shift) bool {
 	switch {
 	case last.Least >= o.Aimed && atRest(last.Shifts, shifts):
 		o.Why = "every limit holds as aimed at, and the margins no longer move"
+	case o.heldRounds() >= enoughHeld:
+		o.Why = "every limit holds as aimed at in several rounds; the margins still move"
 	case len(o.Rounds) > mostRounds:
 		o.Why = fmt.Sprintf("the margins still move after %d rounds", mostRounds)
 	default:
 		return false
 	}
 	return true
+}
+
+// heldRounds counts the rounds that hold as aimed at.
+func (o *Backoff) heldRounds() int {
+	n := 0
+	for i := range o.Rounds {
+		if o.Rounds[i].Least >= o.Aimed {
+			n++
+		}
+	}
+	return n
+}
+
+// crossed reports whether the margins asked for leave nothing between the sides of a
+// limit.
+func (o *Backoff) crossed(shifts []Shift) bool {
+	for _, l := range applied(shifts) {
+		if l.Low > l.High {
+			o.NothingHolds, o.Why = true, fmt.Sprintf("tolerances scatter %s at %s wider than its limits are apart", l.Quantity, l.Point)
+			return true
+		}
+	}
+	return false
 }
 
 // atRest reports whether the sides that were shifted have come to rest.
@@ -207,21 +241,27 @@ func atRest(before, after []Shift) bool {
 	return true
 }
 
-// verify chooses among the rounds and judges the chosen and the nominal design over
-// fresh draws.
+// verify judges the nominal design over fresh draws, and the rounds in the order of
+// preference until one holds each limit with the confidence; else the first stands.
 func (o *Backoff) verify(ctx context.Context, goal Goal, b *built, limits []limited, settings Settings) error {
-	o.choose(goal.Highest)
-	chosen := &o.Rounds[o.Chosen]
-	o.ShiftsOfChosen = chosen.Shifts
 	deviates := drawn(o.Checked, len(b.scatter), doe.Stream(settings.Seed, drawsStream))
 	var err error
 	if o.NominalLimits, o.NominalJoint, err = fresh(ctx, b, goal.Nominal.X, limits, deviates, settings.Jobs); err != nil {
 		return err
 	}
-	if o.Limits, o.Joint, err = fresh(ctx, b, chosen.X, limits, deviates, settings.Jobs); err != nil {
-		return err
+	for k, round := range o.preference(goal.Highest) {
+		each, joint, err := fresh(ctx, b, o.Rounds[round].X, limits, deviates, settings.Jobs)
+		if err != nil {
+			return err
+		}
+		met := least(each) >= o.Confidence
+		if k == 0 || met {
+			o.Chosen, o.Limits, o.Joint, o.Met = round, each, joint, met
+		}
+		if met || o.Rounds[round].Least < o.Aimed {
+			break
+		}
 	}
-	o.Met = least(o.Limits) >= o.Confidence
 	return nil
 }
 
@@ -235,18 +275,27 @@ func fresh(ctx context.Context, b *built, x []float64, limits []limited, deviate
 	return each, joint, nil
 }
 
-// choose takes the best design among the rounds that hold as aimed, else the one
-// whose weakest limit holds most often.
-func (o *Backoff) choose(highest bool) {
-	best := 0
-	for i := 1; i < len(o.Rounds); i++ {
-		a, b := &o.Rounds[i], &o.Rounds[best]
+// preference orders the rounds: those that hold as aimed at by their aim, then the
+// others by how often their weakest limit holds.
+func (o *Backoff) preference(highest bool) []int {
+	order := make([]int, len(o.Rounds))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(i, j int) int {
+		a, b := &o.Rounds[i], &o.Rounds[j]
 		holds, held := a.Least >= o.Aimed, b.Least >= o.Aimed
 		switch {
-		case holds && !held, !holds && !held && a.Least > b.Least,
-			holds && held && a.Aim != b.Aim && (a.Aim > b.Aim) == highest:
-			best = i
+		case holds != held && holds:
+			return -1
+		case holds != held:
+			return 1
+		case !holds:
+			return cmp.Compare(b.Least, a.Least)
+		case highest:
+			return cmp.Compare(b.Aim, a.Aim)
 		}
-	}
-	o.Chosen = best
+		return cmp.Compare(a.Aim, b.Aim)
+	})
+	return order
 }

@@ -3,7 +3,6 @@ package robust
 import (
 	"context"
 	"math"
-	"slices"
 	"testing"
 
 	"rampwright/problems"
@@ -11,9 +10,9 @@ import (
 
 // highestUnder is the largest x with x <= High of every limit on y, x >= Low of
 // every one on z.
-func highestUnder(_ context.Context, limits []problems.Limit, _ []float64) (Found, error) {
+func highestUnder(_ context.Context, q Question) (Found, error) {
 	low, high := math.Inf(-1), math.Inf(1)
-	for _, l := range limits {
+	for _, l := range q.Limits {
 		low, high = math.Max(low, l.Low), math.Min(high, l.High)
 	}
 	return Found{X: []float64{high}, Feasible: low <= high, Aim: high}, nil
@@ -52,10 +51,10 @@ func TestBackOffOfALinearLimit(t *testing.T) {
 			t.Errorf("confidence %v is not met: %+v", confidence, b.Limits)
 		}
 		near(t, "nominal", b.NominalLimits[0].Pass, 0.5, 4*b.NominalLimits[0].Error)
-		if b.Limits[1].Affected || b.ShiftsOfChosen[1].High != 0 {
-			t.Errorf("a limit nothing moves was moved: %+v", b.ShiftsOfChosen[1])
+		if b.Limits[1].Affected || b.Rounds[b.Chosen].Shifts[1].High != 0 {
+			t.Errorf("a limit nothing moves was moved: %+v", b.Rounds[b.Chosen].Shifts[1])
 		}
-		near(t, "margin", b.ShiftsOfChosen[0].High, 1-chosen.X[0], 1e-12)
+		near(t, "margin", b.Rounds[b.Chosen].Shifts[0].High, 1-chosen.X[0], 1e-12)
 	}
 }
 
@@ -95,29 +94,48 @@ func TestBackOffThatCannotBe(t *testing.T) {
 	}
 	goal.Limits = []problems.Limit{{Quantity: "y", Point: "here", Low: 0.9, High: 1}}
 	asked := 0
-	b = backOff(t, goal, func(ctx context.Context, limits []problems.Limit, near []float64) (Found, error) {
+	b = backOff(t, goal, func(ctx context.Context, q Question) (Found, error) {
 		asked++
-		return highestUnder(ctx, limits, near)
+		return highestUnder(ctx, q)
 	})
 	if b.Met || !b.NothingHolds || asked != 0 {
 		t.Errorf("sides nearer than the scatter: met %v, %d searches, %s", b.Met, asked, b.Why)
 	}
 }
 
-// Draws without an answer count against a limit even where no margin helps.
+// Draws without an answer cost more than any margin can: e > 2 - x has none, so that
+// the answer is where few enough draws lie there, 2 less the quantile of e.
 func TestBackOffWithHoles(t *testing.T) {
 	p := &plain{scatter: scattered(1), quantities: named("y"), value: func(x, e []float64, dst *problems.Evaluation) {
-		if dst.Set(0, x[0]); e[0] > x[0]+0.6 {
+		if dst.Set(0, x[0]); e[0] > 2-x[0] {
 			dst.Miss(0, errNone)
 		}
 	}}
-	b := backOff(t, Goal{Problem: p, Limits: []problems.Limit{atMost("y", 2)}, Confidence: 0.99, Highest: true,
-		Nominal: Found{X: []float64{0}, Feasible: true}}, func(context.Context, []problems.Limit, []float64) (Found, error) {
-		return Found{X: []float64{2}, Feasible: true, Aim: 2}, nil
+	cuts := 0
+	b := backOff(t, Goal{Problem: p, Limits: []problems.Limit{atMost("y", 2)}, Confidence: 0.95, Highest: true,
+		Nominal: Found{X: []float64{2}, Feasible: true, Aim: 2}}, func(_ context.Context, q Question) (Found, error) {
+		x := q.Limits[0].High
+		if q.Cut != nil {
+			cuts++
+			problem, limits := q.Cut.Guard(p)
+			a, c, ok := problem.(problems.Linear).LinearForm(1)
+			if !ok || len(limits) != 1 || problem.Quantities()[1].Name != ShareWithoutAnswer || limits[0].High != q.Cut.AtMost {
+				t.Fatalf("the guarded problem has %v, limits %v", problem.Quantities(), limits)
+			}
+			evaluation := problems.NewEvaluation(2)
+			if err := problem.Evaluate(context.Background(), []float64{1}, evaluation); err != nil {
+				t.Fatal(err)
+			}
+			near(t, "share by the form", evaluation.Values[1], a[0]+c, 1e-12)
+			x = math.Min(x, (limits[0].High-c)/a[0]) // the largest x within the cut
+		}
+		return Found{X: []float64{x}, Feasible: true, Aim: x}, nil
 	})
-	if !b.Met || b.Chosen == 0 || !slices.ContainsFunc(b.NominalLimits, func(p Probability) bool { return p.Unanswered > 2000 }) {
-		t.Errorf("met %v, round %d, nominal %+v", b.Met, b.Chosen, b.NominalLimits)
+	if !b.Met || cuts == 0 || b.NominalLimits[0].Unanswered < 4500 {
+		t.Errorf("met %v after %d cuts: %s; nominal %+v", b.Met, cuts, b.Why, b.NominalLimits)
 	}
+	lost := cutAllowed * (1 - b.Aimed)
+	near(t, "x", b.Rounds[b.Chosen].X[0], 2-Quantile(1-lost), 0.2)
 }
 
 func TestDrawsEnoughForTheConfidence(t *testing.T) {

@@ -47,24 +47,6 @@ func (l *limited) shift(s *Shift, rows [][]float64, nominal []float64, alpha flo
 	s.High = high.shift(alpha - min(low.failing(-l.Low), alpha/2))
 }
 
-const (
-	growth = 1.25
-	onSide = 1e-2 // of a shift, within which the design stands on the shifted side
-)
-
-// grow raises the shifts of the sides the design of a round stands on above those it
-// was searched with.
-func (l *limited) grow(next, last *Shift, nominal []float64) {
-	low := -l.worst(nominal, -1) - l.Low - last.Low
-	high := l.High - l.worst(nominal, 1) - last.High
-	if last.Low > 0 && math.Abs(low) <= onSide*last.Low {
-		next.Low = math.Max(next.Low, growth*last.Low)
-	}
-	if last.High > 0 && math.Abs(high) <= onSide*last.High {
-		next.High = math.Max(next.High, growth*last.High)
-	}
-}
-
 // side is one side of a limit over the draws, all values with a sign so that high
 // is bad; a draw without a value is the worst.
 type side struct {

@@ -143,24 +143,33 @@ func (d *DesignDocument) bothDesigns(p *page) {
 // marginCosts writes how often each limit holds for both designs, and its margin.
 func (d *DesignDocument) marginCosts(p *page) {
 	t := &table{columns: []column{{head: "limit"}, {head: "bound"}, {head: "nominal\nholds"}, {head: "backed off\nholds"}, {head: "margin"}, {head: "cost"}}}
-	at := ""
-	for i := range d.Confidence.Limits {
-		l := &d.Confidence.Limits[i]
-		if l.At != at {
-			at = l.At
-			t.section(at)
+	for _, point := range d.study.points() {
+		first := true
+		for i := range d.Confidence.Limits {
+			l := &d.Confidence.Limits[i]
+			if l.At != point {
+				continue
+			}
+			if first {
+				t.section(point)
+				first = false
+			}
+			t.add(l.cells()...)
 		}
-		if !l.Affected {
-			t.add(l.Quantity, bounds(l.low, l.high), "not", "affected", "", "")
-			continue
-		}
-		cost := ""
-		if l.Cost > 0 {
-			cost = significant(float64(l.Cost))
-		}
-		t.add(l.Quantity, bounds(l.low, l.high), sharePercent(l.Nominal.Share), sharePercent(l.BackedOff.Share), l.marginText(), cost)
 	}
 	p.table(t)
+}
+
+// cells are the row of a limit.
+func (l *ConfidentLimit) cells() []string {
+	if !l.Affected {
+		return []string{l.Quantity, bounds(l.low, l.high), "not", "affected", "", ""}
+	}
+	cost := ""
+	if l.Cost > 0 {
+		cost = significant(float64(l.Cost))
+	}
+	return []string{l.Quantity, bounds(l.low, l.high), sharePercent(l.Nominal.Share), sharePercent(l.BackedOff.Share), l.marginText(), cost}
 }
 
 // marginText is the margin of the sides that have one.
