@@ -194,7 +194,7 @@ func least(limits []Probability) float64 {
 func (o *Backoff) ended(shifts []Shift) bool {
 	last := &o.Rounds[len(o.Rounds)-1]
 	switch {
-	case last.Least >= o.Aimed && atRest(last.Shifts, shifts):
+	case o.holds(last) && atRest(last.Shifts, shifts):
 		o.Why = "every limit holds as aimed at, and the margins no longer move"
 	case o.heldRounds() >= enoughHeld:
 		o.Why = "every limit holds as aimed at in several rounds; the margins still move"
@@ -206,11 +206,16 @@ func (o *Backoff) ended(shifts []Shift) bool {
 	return true
 }
 
-// heldRounds counts the rounds that hold as aimed at.
+// holds reports whether every limit of a round holds well enough to be judged over
+// fresh draws: half way from the confidence to what is aimed at, so that the last
+// digits of a search do not decide.
+func (o *Backoff) holds(r *Round) bool { return r.Least >= (o.Confidence+o.Aimed)/2 }
+
+// heldRounds counts the rounds that hold.
 func (o *Backoff) heldRounds() int {
 	n := 0
 	for i := range o.Rounds {
-		if o.Rounds[i].Least >= o.Aimed {
+		if o.holds(&o.Rounds[i]) {
 			n++
 		}
 	}
@@ -258,7 +263,7 @@ func (o *Backoff) verify(ctx context.Context, goal Goal, b *built, limits []limi
 		if k == 0 || met {
 			o.Chosen, o.Limits, o.Joint, o.Met = round, each, joint, met
 		}
-		if met || o.Rounds[round].Least < o.Aimed {
+		if met || !o.holds(&o.Rounds[round]) {
 			break
 		}
 	}
@@ -284,7 +289,7 @@ func (o *Backoff) preference(highest bool) []int {
 	}
 	slices.SortStableFunc(order, func(i, j int) int {
 		a, b := &o.Rounds[i], &o.Rounds[j]
-		holds, held := a.Least >= o.Aimed, b.Least >= o.Aimed
+		holds, held := o.holds(a), o.holds(b)
 		switch {
 		case holds != held && holds:
 			return -1

@@ -8,17 +8,17 @@ import (
 // Settings steer a study of tolerances. The zero value asks for the defaults.
 type Settings struct {
 	Draws    int   // exact draws; default 10000
-	Replaced int   // base draws of the sensitivity, each costing one more for every input; default 1000
+	Replaced int   // base draws of the sensitivity, each costing one more for every input; default a tenth of the draws
 	Samples  int   // exact samples the surrogates are fitted to; default 30 an input
 	Seed     int64 // of every random choice; default 1
 	Jobs     int   // evaluations and fits run side by side; default 1. No result depends on it
 }
 
 const (
-	defaultDraws    = 10000
-	defaultReplaced = 1000
-	samplesAnInput  = 30
-	mostDraws       = 1_000_000 // 10^6 draws of 100 quantities fill 0.8 GB
+	defaultDraws   = 10000
+	drawsABase     = 10
+	samplesAnInput = 30
+	mostDraws      = 1_000_000 // 10^6 draws of 100 quantities fill 0.8 GB
 )
 
 // WithDefaults fills the zero fields for a problem of n uncertain inputs.
@@ -27,7 +27,7 @@ func (s Settings) WithDefaults(n int) Settings {
 		s.Draws = defaultDraws
 	}
 	if s.Replaced == 0 {
-		s.Replaced = min(defaultReplaced, s.Draws/2)
+		s.Replaced = max(2, s.Draws/drawsABase)
 	}
 	if s.Samples == 0 {
 		s.Samples = samplesAnInput * n

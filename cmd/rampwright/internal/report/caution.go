@@ -269,8 +269,8 @@ func geometryCautions(in *inspection) []Caution {
 		add("steep_cowl", "The outer cowl stands at %.4g deg, above the %g deg of common practice: its wave drag grows fast.", outer, steepestCowl)
 	}
 	if in.flow.Outline == nil && design.Setback < leastSetback {
-		add("shock_on_lip", "The lip setback is %.3g capture heights, below %g: at Mach %.4g every ramp shock strikes the lip, which multiplies its heating, and any disturbance puts a shock inside.",
-			design.Setback, leastSetback, design.ShockOnLip)
+		add("shock_on_lip", "The lip setback is %s capture heights, below %g: at Mach %.4g every ramp shock strikes the lip, which multiplies its heating, and any disturbance puts a shock inside.",
+			setbackText(design.Setback), leastSetback, design.ShockOnLip)
 	}
 	return cautions
 }
@@ -300,3 +300,11 @@ func outsideDefaults(problem *inlet.Problem, flow *inlet.Flow) []Caution {
 }
 
 func sentenceCase(text string) string { return strings.ToUpper(text[:1]) + text[1:] }
+
+// setbackText writes a setback with three digits, zero for what a search leaves of it.
+func setbackText(v float64) string {
+	if v < residue {
+		return "0"
+	}
+	return fmt.Sprintf("%.3g", v)
+}

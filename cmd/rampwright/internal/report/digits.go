@@ -19,6 +19,10 @@ const none = "-"
 // place points and close balances within it.
 const noise = 1e-9
 
+// residue is what a search leaves of a value at the end of a range that starts at
+// zero.
+const residue = 1e-12
+
 // significant writes a number with the digits of text, fewer where leading zeros
 // take their place.
 func significant(v float64) string {
@@ -82,8 +86,11 @@ func unsigned(text string) string {
 }
 
 // plain writes a number as a person would state it: few digits, no exponent for
-// everyday sizes.
+// everyday sizes, zero for what a search leaves of it.
 func plain(v float64) string {
+	if math.Abs(v) < residue {
+		return "0"
+	}
 	return shortExponent(strconv.FormatFloat(v, 'g', fixedDigits, 64))
 }
 
