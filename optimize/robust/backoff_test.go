@@ -134,8 +134,11 @@ func TestBackOffWithHoles(t *testing.T) {
 	if !b.Met || cuts == 0 || b.NominalLimits[0].Unanswered < 4500 {
 		t.Errorf("met %v after %d cuts: %s; nominal %+v", b.Met, cuts, b.Why, b.NominalLimits)
 	}
-	lost := cutAllowed * (1 - b.Aimed)
-	near(t, "x", b.Rounds[b.Chosen].X[0], 2-Quantile(1-lost), 0.2)
+	// Between the share the cut leaves and the whole share that may fail.
+	x, least, most := b.Rounds[b.Chosen].X[0], 2-Quantile(1-cutAllowed*(1-b.Aimed)), 2-Quantile(0.95)
+	if x < least-0.2 || x > most+0.1 {
+		t.Errorf("x is %v, want it within %v and %v", x, least, most)
+	}
 }
 
 func TestDrawsEnoughForTheConfidence(t *testing.T) {

@@ -238,3 +238,12 @@ func TestTruncatedNormal(t *testing.T) {
 		near(t, "distribution", (Phi(z)-Phi(-4))/(1-2*Phi(-4)), p, 1e-12)
 	})
 }
+
+// A study without its model's cost: 10000 draws, indices and surrogates of two
+// quantities.
+func BenchmarkRun(b *testing.B) {
+	task := Task{Problem: kinked(), X: []float64{0}, Limits: []problems.Limit{atMost("y", 1), atLeast("z", 0)}}
+	for b.Loop() {
+		run(b, task, Settings{})
+	}
+}

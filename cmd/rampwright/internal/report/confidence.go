@@ -142,7 +142,7 @@ func (d *DesignDocument) bothDesigns(p *page) {
 
 // marginCosts writes how often each limit holds for both designs, and its margin.
 func (d *DesignDocument) marginCosts(p *page) {
-	t := &table{columns: []column{{head: "limit"}, {head: "bound"}, {head: "nominal\nholds"}, {head: "backed off\nholds"}, {head: "margin"}, {head: "cost"}}}
+	t := &table{columns: []column{{head: "limit"}, {head: "bound", drop: 1}, {head: "nominal\nholds"}, {head: "backed\noff\nholds"}, {head: "margin"}, {head: "cost"}}}
 	for _, point := range d.study.points() {
 		first := true
 		for i := range d.Confidence.Limits {

@@ -178,7 +178,7 @@ type SpreadDocument struct {
 }
 
 // asBuilt says what a draw changes.
-const asBuilt = "A draw changes the built geometry and is never focused again: ramp lengths but the last, lip and throat wall stay as drawn, every ramp turns with the corner it starts at, and the last ramp ends where it meets the throat wall. Mach number and incidence are off by the same at every flight point."
+const asBuilt = "A draw changes the built geometry and is never focused again: ramp lengths but the last, lip and throat wall stay as drawn, every ramp turns with the corner it starts at, and the last ramp ends where it meets the throat wall. Mach number and incidence are off by the same at every flight point. Where shocks cross or fall inside the lip a draw is traced wave by wave, coarsely: throat averages within 1 %."
 
 // sensitivityMethod names the estimators.
 const sensitivityMethod = "first order by Saltelli et al. (2010), total by Jansen (1999), on exact draws"
