@@ -155,7 +155,7 @@ func TestLadderRefusedRowAndRampToDelete(t *testing.T) {
 		t.Fatal(err)
 	}
 	file := filepath.Join(t.TempDir(), "turned.yaml")
-	if err := os.WriteFile(file, append(data, []byte("  - {quantity: total_turning_deg, at_least: 17}\n")...), 0o600); err != nil {
+	if err := os.WriteFile(file, bytes.Replace(data, []byte("limits:\n"), []byte("limits:\n  - {quantity: total_turning_deg, at_least: 17}\n"), 1), 0o600); err != nil {
 		t.Fatal(err)
 	}
 	// Three ramps want 8.08, 7.22 and 8.44 deg.

@@ -22,6 +22,13 @@ type Cut struct {
 	AtMost float64
 }
 
+// looser is a cut half way back to the share at the last design.
+func (c *Cut) looser() *Cut {
+	out := *c
+	out.AtMost = (c.AtMost + c.Share) / 2
+	return &out
+}
+
 // share is the linear share at x.
 func (c *Cut) share(x []float64) float64 {
 	u := c.Share
@@ -34,13 +41,14 @@ func (c *Cut) share(x []float64) float64 {
 const (
 	cutStep    = 0.05 // of a variable's range
 	cutAllowed = 0.5  // of the draws that may fail, those without an answer
+	cutFactor  = 0.5  // of the share at the last design: slopes reach no farther
 )
 
 // cutAt measures the share of draws without an answer at x and its slopes; allowed
 // is the share of draws that may fail.
 func (b *built) cutAt(ctx context.Context, x []float64, share float64, limits []limited, deviates [][]float64, allowed float64, jobs int) (*Cut, error) {
 	variables := b.problem.Variables()
-	cut := &Cut{X: x, Share: share, Slope: make([]float64, len(x)), AtMost: cutAllowed * allowed}
+	cut := &Cut{X: x, Share: share, Slope: make([]float64, len(x)), AtMost: math.Max(cutAllowed*allowed, cutFactor*share)}
 	for j, v := range variables {
 		step := cutStep * (v.High - v.Low)
 		if x[j]+step > v.High {

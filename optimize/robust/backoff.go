@@ -135,6 +135,10 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 			break
 		}
 		found, err := search(ctx, Question{applied(ask.shifts), ask.cut, next.X})
+		if err == nil && !found.Feasible && ask.cut != nil { // slopes may have misled
+			ask.cut = ask.cut.looser()
+			found, err = search(ctx, Question{applied(ask.shifts), ask.cut, next.X})
+		}
 		if err != nil {
 			return nil, err
 		}
