@@ -59,7 +59,7 @@ spread.json, spread.csv and spread.svg.`,
 func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) {
 	built, err := of.problem.Built(of.brief.Tolerance.Deviations())
 	if err != nil {
-		return err
+		return &usageError{strings.ReplaceAll(err.Error(), "\n", "; "), "change the tolerance of the brief"}
 	}
 	settings := robust.Settings{Draws: draws, Seed: of.brief.Effort.Seed, Jobs: a.jobs}
 	inputs := len(built.Scatter())
@@ -74,10 +74,7 @@ func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) 
 	a.say("%d draws of %d inputs, then %d for the sensitivity and %d for the surrogates\n", costs(settings, inputs)...)
 	result, err := robust.Run(s.ctx, robust.Task{Problem: built, X: x, Limits: of.limits, Fitted: of.aimed()}, settings)
 	if err != nil {
-		if code := s.interruption.code.Load(); code != 0 && s.ctx.Err() != nil {
-			return &endedWith{int(code)}
-		}
-		return err
+		return s.cutDraws(err)
 	}
 	flow, err := of.problem.Flow(context.WithoutCancel(s.ctx), x)
 	if err != nil {
@@ -89,6 +86,19 @@ func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) 
 		return err
 	}
 	return s.finish(of, document, []file{{"spread.json", document.JSON()}, {"spread.csv", document.CSV()}, {"spread.svg", picture}})
+}
+
+// cutDraws gives draws that were cut short the code of what ended them; there is
+// nothing to keep of them.
+func (s *session) cutDraws(err error) error {
+	switch code := s.interruption.code.Load(); {
+	case s.ctx.Err() == nil:
+		return err
+	case code != 0:
+		return &endedWith{int(code)}
+	}
+	s.app.complain("the time was up before the draws were done", "give more time, or fewer --draws")
+	return &endedWith{exitNotMet}
 }
 
 // costs are the exact evaluations of a study.
