@@ -45,7 +45,10 @@ func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Pro
 	answer, err := robust.BackOff(ctx, goal, robust.Settings{Seed: settings.Seed, Jobs: a.jobs}, b.search)
 	switch {
 	case ctx.Err() != nil:
-		finished.Confidence = &report.Confidence{Confidence: report.Number(confidence), Why: "the search was ended before a design was backed off: the one below knows no tolerances"}
+		finished.Confidence = &report.Confidence{
+			Confidence: report.Number(confidence), Aimed: report.Number(confidence), Limits: []report.ConfidentLimit{},
+			Why: "the search was ended before a design was backed off: the one shown knows no tolerances",
+		}
 		finished.Result.Status = cutStatus(ctx)
 		return of, nil
 	case err != nil:
@@ -100,7 +103,7 @@ func (b *backOff) describe(answer *robust.Backoff) *report.Confidence {
 		Confidence: report.Number(answer.Confidence), Aimed: report.Number(answer.Aimed), Met: answer.Met, Why: answer.Why,
 		Rounds: len(answer.Rounds), DrawsARound: answer.Draws, Draws: answer.Checked,
 		Nominal:   b.side(b.nominal, answer.NominalJoint),
-		BackedOff: b.side(chosen, answer.Joint),
+		BackedOff: b.side(chosen, answer.Joint), Limits: []report.ConfidentLimit{},
 	}
 	for i := range answer.Limits {
 		p, was, shift := &answer.Limits[i], &answer.NominalLimits[i], &answer.Rounds[answer.Chosen].Shifts[i]
@@ -120,12 +123,12 @@ func (b *backOff) describe(answer *robust.Backoff) *report.Confidence {
 	return out
 }
 
-func (b *backOff) side(r *optimize.Result, joint robust.Probability) report.ConfidentDesign {
+func (b *backOff) side(r *optimize.Result, joint robust.Probability) *report.ConfidentDesign {
 	variables := report.Object[report.Number]{}
 	for i, v := range b.problem.Variables() {
 		variables = append(variables, report.Field[report.Number]{Name: v.Name, Value: report.Number(r.Best.X[i])})
 	}
-	return report.ConfidentDesign{Variables: variables, Aim: report.Number(r.Best.AimExact), Joint: share(joint)}
+	return &report.ConfidentDesign{Variables: variables, Aim: report.Number(r.Best.AimExact), Joint: share(joint)}
 }
 
 // priceOf sums the prices of the rows of a limit.

@@ -14,9 +14,9 @@ type Confidence struct {
 	Aimed       Number           `json:"aimed"` // probability aimed at over the draws of a round
 	Rounds      int              `json:"rounds"`
 	DrawsARound int              `json:"draws_a_round"`
-	Draws       int              `json:"draws"` // fresh ones, on which both designs are judged
-	Nominal     ConfidentDesign  `json:"nominal"`
-	BackedOff   ConfidentDesign  `json:"backed_off"`
+	Draws       int              `json:"draws"`   // fresh ones, on which both designs are judged
+	Nominal     *ConfidentDesign `json:"nominal"` // null, as backed_off, where time ended the search: see why
+	BackedOff   *ConfidentDesign `json:"backed_off"`
 	Limits      []ConfidentLimit `json:"limits"`
 }
 
@@ -84,7 +84,7 @@ func (d *DesignDocument) confidence(p *page) {
 		return
 	}
 	p.heading(fmt.Sprintf("Confidence: each limit in %g %% of the inlets built and flown", 100*float64(c.Confidence)))
-	if c.Rounds == 0 {
+	if c.BackedOff == nil {
 		p.wrap("", sentenceCase(c.Why)+".", "")
 		return
 	}

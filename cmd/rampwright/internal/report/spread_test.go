@@ -146,8 +146,8 @@ func TestConfidenceOfADesign(t *testing.T) {
 	fixed.Bounds(math.Inf(-1), 12)
 	s.Confidence = &Confidence{
 		Confidence: 0.95, Met: true, Why: "the margins are at rest", Aimed: 0.9597, Rounds: 4, DrawsARound: 2000, Draws: 10000,
-		Nominal:   ConfidentDesign{variables(8), 0.65591, SpreadShare{0.293, 0.005}},
-		BackedOff: ConfidentDesign{variables(13.6), 0.52344, SpreadShare{0.916, 0.003}},
+		Nominal:   &ConfidentDesign{variables(8), 0.65591, SpreadShare{0.293, 0.005}},
+		BackedOff: &ConfidentDesign{variables(13.6), 0.52344, SpreadShare{0.916, 0.003}},
 		Limits:    []ConfidentLimit{limit, fixed},
 	}
 	d := NewDesign(head, s)
@@ -169,6 +169,10 @@ func TestConfidenceOfADesign(t *testing.T) {
 	s.Confidence = &failed
 	if c := NewDesign(head, s).Cautions[0]; c.Rule != "confidence" || !strings.Contains(c.Text, "internal_contraction_over_self_start at cruise holds in 95.7 %") {
 		t.Errorf("the first caution is %+v", c)
+	}
+	s.Confidence = &Confidence{Confidence: 0.95, Why: "the search was ended before a design was backed off"}
+	if text := NewDesign(head, s).Text(80); !strings.Contains(text, "The search was ended before") {
+		t.Error("a search cut short does not say so")
 	}
 	s.Confidence = nil
 	if bytes.Contains(NewDesign(head, s).JSON(), []byte(`"confidence"`)) {
