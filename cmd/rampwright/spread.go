@@ -36,7 +36,7 @@ spread.json, spread.csv and spread.svg.`,
 			if !study.brief.Tolerance.Any() {
 				return &usageError{"the brief states no tolerance: nothing scatters", "add `tolerance: {ramp_angle_deg: 0.1, mach: 0.03, incidence_deg: 0.5}`"}
 			}
-			x, err := study.fixed(of)
+			x, err := study.fixed("spread", of)
 			if err != nil {
 				return err
 			}
