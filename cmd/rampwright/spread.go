@@ -72,7 +72,12 @@ func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) 
 	}
 	defer s.close(&err)
 	a.say("%d draws of %d inputs, then %d for the sensitivity and %d for the surrogates\n", costs(settings, inputs)...)
+	progress := a.progress()
+	settings.Observe = func(e robust.Event) {
+		progress.show(stage{phase: e.Phase, done: e.Done, total: e.Total, unit: "step"})
+	}
 	result, err := robust.Run(s.ctx, robust.Task{Problem: built, X: x, Limits: of.limits, Fitted: of.aimed()}, settings)
+	progress.end()
 	if err != nil {
 		return s.cutDraws(err)
 	}

@@ -56,7 +56,7 @@ func (b *built) cutAt(ctx context.Context, x []float64, share float64, limits []
 		}
 		b.x = slices.Clone(x)
 		b.x[j] += step
-		draws, err := b.evaluate(ctx, deviates, jobs)
+		draws, err := b.evaluate(ctx, "", deviates, jobs)
 		if err != nil {
 			return nil, err
 		}

@@ -161,11 +161,11 @@ type asked struct {
 // ask for.
 func (o *Backoff) judge(ctx context.Context, b *built, r *Round, limits []limited, deviates [][]float64, jobs int) (asked, error) {
 	b.x = r.X
-	asDrawn, err := b.evaluate(ctx, [][]float64{make([]float64, len(b.scatter))}, 1)
+	asDrawn, err := b.evaluate(ctx, "", [][]float64{make([]float64, len(b.scatter))}, 1)
 	if err != nil {
 		return asked{}, err
 	}
-	draws, err := b.evaluate(ctx, deviates, jobs)
+	draws, err := b.evaluate(ctx, "", deviates, jobs)
 	if err != nil {
 		return asked{}, err
 	}
@@ -276,7 +276,7 @@ func (o *Backoff) verify(ctx context.Context, goal Goal, b *built, limits []limi
 
 func fresh(ctx context.Context, b *built, x []float64, limits []limited, deviates [][]float64, jobs int) ([]Probability, Probability, error) {
 	b.x = x
-	all, err := b.evaluate(ctx, append([][]float64{make([]float64, len(b.scatter))}, deviates...), jobs)
+	all, err := b.evaluate(ctx, "", append([][]float64{make([]float64, len(b.scatter))}, deviates...), jobs)
 	if err != nil {
 		return nil, Probability{}, err
 	}

@@ -56,17 +56,19 @@ type built struct {
 	x       []float64
 	scatter []problems.Scatter
 	width   int // quantities
+	observe func(Event)
 }
 
 // evaluate computes every row of deviates exactly, jobs at a time, each in its own
-// slot; reasons are counted in the order of the draws.
-func (b *built) evaluate(ctx context.Context, deviates [][]float64, jobs int) (*Draws, error) {
+// slot; reasons are counted in the order of the draws. A phase without a name is not
+// told.
+func (b *built) evaluate(ctx context.Context, phase string, deviates [][]float64, jobs int) (*Draws, error) {
 	n := len(deviates)
 	d := &Draws{Deviates: deviates, Values: make([][]float64, n), Missing: make([]Reasons, b.width)}
 	block := make([]float64, n*b.width)
 	missed := make([][]lack, n)
 	failures := make([]error, n)
-	share(jobs, n, func() func(i int) {
+	share(jobs, n, b.tell(phase, n), func() func(i int) {
 		offsets := make([]float64, len(b.scatter))
 		evaluation := problems.NewEvaluation(b.width)
 		return func(i int) {
@@ -137,18 +139,26 @@ func (d *Draws) column(quantity int) []float64 {
 }
 
 // share calls work(i) for i below n on jobs goroutines; start makes what one
-// goroutine needs, and each call writes its own slot.
-func share(jobs, n int, start func() (work func(i int))) {
+// goroutine needs, and each call writes its own slot. The caller's goroutine calls
+// done, if there is one, after each.
+func share(jobs, n int, done func(), start func() (work func(i int))) {
 	var next atomic.Int64
+	finished := make(chan struct{}, n)
 	worker := func() {
 		work := start()
 		for i := int(next.Add(1)) - 1; i < n; i = int(next.Add(1)) - 1 {
 			work(i)
+			finished <- struct{}{}
 		}
 	}
 	var group sync.WaitGroup
 	for range min(jobs, n) {
 		group.Go(worker)
+	}
+	for range n {
+		if <-finished; done != nil {
+			done()
+		}
 	}
 	group.Wait()
 }

@@ -42,7 +42,7 @@ func (b *built) sampled(ctx context.Context, s Settings) (*Draws, error) {
 			u[j] = truncated(p)
 		}
 	}
-	return b.evaluate(ctx, points, s.Jobs)
+	return b.evaluate(ctx, "samples", points, s.Jobs)
 }
 
 // fit chooses a surrogate for each quantity listed that the samples move.
@@ -53,7 +53,7 @@ func (b *built) fit(ctx context.Context, samples *Draws, quantities []int, nomin
 			list = append(list, Fit{Quantity: q})
 		}
 	}
-	share(s.Jobs, len(list), func() func(i int) {
+	share(s.Jobs, len(list), b.tell("fits", len(list)), func() func(i int) {
 		return func(i int) { list[i].choose(ctx, samples, s.Seed) }
 	})
 	return list, ctx.Err()
@@ -86,7 +86,7 @@ func predict(fits []Fit, deviates [][]float64, needed []int, nominal []float64, 
 	for _, q := range needed {
 		still[q] = nominal[q]
 	}
-	share(jobs, len(deviates), func() func(i int) {
+	share(jobs, len(deviates), nil, func() func(i int) {
 		u := make([]float64, len(deviates[0]))
 		return func(i int) {
 			row := block[i*width : (i+1)*width : (i+1)*width]

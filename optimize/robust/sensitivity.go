@@ -3,6 +3,7 @@ package robust
 import (
 	"context"
 	"math"
+	"slices"
 )
 
 // Index is the sensitivity of a response to one input: shares of its variance,
@@ -24,18 +25,19 @@ type replaced struct {
 // the first n draws are a, the next n are b.
 func (b *built) replace(ctx context.Context, draws *Draws, n, jobs int) (*replaced, error) {
 	r := &replaced{a: draws.Values[:n], b: draws.Values[n : 2*n]}
+	var mixed [][]float64
 	for j := range b.scatter {
-		mixed := make([][]float64, n)
-		for i := range mixed {
-			mixed[i] = append([]float64(nil), draws.Deviates[i]...)
-			mixed[i][j] = draws.Deviates[n+i][j]
+		for i := range n {
+			row := append([]float64(nil), draws.Deviates[i]...)
+			row[j] = draws.Deviates[n+i][j]
+			mixed = append(mixed, row)
 		}
-		exchanged, err := b.evaluate(ctx, mixed, jobs)
-		if err != nil {
-			return nil, err
-		}
-		r.ab = append(r.ab, exchanged.Values)
 	}
+	exchanged, err := b.evaluate(ctx, "sensitivity", mixed, jobs)
+	if err != nil {
+		return nil, err
+	}
+	r.ab = slices.Collect(slices.Chunk(exchanged.Values, n))
 	return r, nil
 }
 

@@ -12,6 +12,27 @@ type Settings struct {
 	Samples  int   // exact samples the surrogates are fitted to; default 30 an input
 	Seed     int64 // of every random choice; default 1
 	Jobs     int   // evaluations and fits run side by side; default 1. No result depends on it
+
+	Observe func(Event) // is told how far Run has come; may be nil
+}
+
+// Event tells how far a study has come. Events come from one goroutine.
+type Event struct {
+	Phase       string
+	Done, Total int // of this phase
+}
+
+// tell returns what counts the steps of a phase for the observer, nil where nobody
+// listens.
+func (b *built) tell(phase string, total int) func() {
+	if b.observe == nil || phase == "" {
+		return nil
+	}
+	done := 0
+	return func() {
+		done++
+		b.observe(Event{phase, done, total})
+	}
 }
 
 const (

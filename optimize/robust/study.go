@@ -62,6 +62,7 @@ func Run(ctx context.Context, task Task, settings Settings) (*Study, error) {
 	if err := settings.Validate(len(b.scatter)); err != nil {
 		return nil, err
 	}
+	b.observe = settings.Observe
 	limits, err := limitedBy(quantities, task.Limits)
 	if err != nil {
 		return nil, err
@@ -83,13 +84,13 @@ func Run(ctx context.Context, task Task, settings Settings) (*Study, error) {
 
 // draw evaluates the design as drawn and the exact draws.
 func (s *Study) draw(ctx context.Context, b *built) error {
-	asDrawn, err := b.evaluate(ctx, [][]float64{make([]float64, len(b.scatter))}, 1)
+	asDrawn, err := b.evaluate(ctx, "", [][]float64{make([]float64, len(b.scatter))}, 1)
 	if err != nil {
 		return err
 	}
 	s.Nominal = asDrawn.Values[0]
 	deviates := drawn(s.Settings.Draws, len(b.scatter), doe.Stream(s.Settings.Seed, drawsStream))
-	s.Draws, err = b.evaluate(ctx, deviates, s.Settings.Jobs)
+	s.Draws, err = b.evaluate(ctx, "draws", deviates, s.Settings.Jobs)
 	s.Evaluations += 1 + len(deviates)
 	return err
 }
@@ -106,7 +107,7 @@ func (s *Study) analyse(ctx context.Context, b *built) error {
 	s.Evaluations += s.Settings.Replaced * len(b.scatter)
 	s.Exact = make([]Summary, len(s.Responses))
 	s.Sensitivity = make([][]Index, len(s.Responses))
-	share(s.Settings.Jobs, len(s.Responses), func() func(i int) {
+	share(s.Settings.Jobs, len(s.Responses), nil, func() func(i int) {
 		return func(i int) {
 			response := &s.Responses[i]
 			s.Exact[i] = summarise(response.column(s.Draws.Values), response.Value(s.Nominal))
