@@ -5,7 +5,6 @@ import (
 	"errors"
 	"math"
 	"slices"
-	"sort"
 
 	"rampwright/optimize/local"
 )
@@ -45,6 +44,9 @@ type designer struct {
 	radius     float64   // of the trust region
 	misled     bool      // the last step gained much less than expected
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
+
+	unexplained bool // the wide surfaces are no guide to the aim
+	idle        bool // the last round improved the best design by next to nothing
 
 	audited   *audit
 	confirmed *sample // a center at rest whose slopes were probed once more
@@ -118,7 +120,7 @@ const sampleSlice = 16
 // fit brings the surrogates up to the samples: those around the center always,
 // those over the whole box while it is searched.
 func (d *designer) fit(ctx context.Context) error {
-	if d.exploring() {
+	if d.exploring() || d.unexplained {
 		if err := d.fitWide(ctx); err != nil {
 			return err
 		}
@@ -126,15 +128,22 @@ func (d *designer) fit(ctx context.Context) error {
 	return d.fitNear(ctx, d.center(), nil)
 }
 
-// center is the sample of best merit.
+// center is the sample of best merit. Beside a feasible sample one that violates
+// limits is a center only within reach of a step: far outside the limits an aim
+// may be better without end.
 func (d *designer) center() *sample {
-	best := d.samples[0]
-	for _, s := range d.samples[1:] {
-		if d.merit(s) < d.merit(best) {
-			best = s
+	center := d.best()
+	if center == nil {
+		center = d.samples[0]
+	}
+	around := center
+	for _, s := range d.samples {
+		eligible := s.feasible || !around.feasible || distance(s.u, around.u) <= 2*d.radius
+		if eligible && d.merit(s) < d.merit(center) {
+			center = s
 		}
 	}
-	return best
+	return center
 }
 
 // merit orders samples, the least first.
@@ -252,17 +261,8 @@ const (
 // finalists are the best sample and distinct feasible runners-up; where nothing
 // is feasible, the sample of least violation alone.
 func (d *designer) finalists() []*sample {
-	ordered := append([]*sample(nil), d.samples...)
-	sort.SliceStable(ordered, func(i, j int) bool {
-		a, b := ordered[i], ordered[j]
-		switch {
-		case a.feasible != b.feasible:
-			return a.feasible
-		case !a.feasible:
-			return a.violation < b.violation
-		}
-		return d.plan.objective.better(a.aim, b.aim)
-	})
+	ordered := slices.Clone(d.samples)
+	slices.SortStableFunc(ordered, d.plan.order)
 	list := ordered[:1:1]
 	for _, s := range ordered[1:] {
 		if len(list) == finalistCount || !s.feasible {

@@ -17,7 +17,8 @@ type Fit struct {
 	Choice   crossval.Choice
 	// Err is why there is no surrogate: too few samples with a value. Limits on
 	// the quantity are then judged on exact values only.
-	Err error
+	Err    error
+	window window // the part of the cube that Choice sees; the zero value is all of it
 	// never is a quantity that applied nowhere.
 	never bool
 }
@@ -39,16 +40,22 @@ func nearKinds(seed int64) []surrogate.Model {
 var transforms = []crossval.Transform{crossval.Identity, crossval.Log}
 
 // fitAll chooses a surrogate for every fitted quantity. Earlier fits, where
-// given, are refitted warm instead of chosen again.
-func (p *plan) fitAll(ctx context.Context, jobs int, kinds []surrogate.Model, samples []*sample, earlier []Fit) ([]Fit, error) {
+// given, are refitted warm instead of chosen again; those known already, by place,
+// are taken as they are. With zoom the others see the smallest window that holds
+// the samples, where that is small.
+func (p *plan) fitAll(ctx context.Context, jobs int, kinds []surrogate.Model, samples []*sample, earlier []Fit, known []*Fit, zoom bool) ([]Fit, error) {
 	fits := make([]Fit, len(p.fitted))
 	failures := make([]error, len(p.fitted))
 	inSlots(jobs, len(p.fitted), func(k int) {
+		if known != nil && known[k] != nil {
+			fits[k] = *known[k]
+			return
+		}
 		var before *Fit
 		if earlier != nil && earlier[k].Err == nil && !earlier[k].never {
 			before = &earlier[k]
 		}
-		fits[k] = fitOne(ctx, p.fitted[k], kinds, samples, before)
+		fits[k] = fitOne(ctx, p.fitted[k], kinds, samples, before, zoom)
 		failures[k] = ctx.Err()
 	})
 	for _, err := range failures {
@@ -59,7 +66,7 @@ func (p *plan) fitAll(ctx context.Context, jobs int, kinds []surrogate.Model, sa
 	return fits, nil
 }
 
-func fitOne(ctx context.Context, quantity int, kinds []surrogate.Model, samples []*sample, before *Fit) Fit {
+func fitOne(ctx context.Context, quantity int, kinds []surrogate.Model, samples []*sample, before *Fit, zoom bool) Fit {
 	fit := Fit{Quantity: quantity}
 	var x [][]float64
 	var y []float64
@@ -77,12 +84,15 @@ func fitOne(ctx context.Context, quantity int, kinds []surrogate.Model, samples 
 		return fit
 	}
 	if before != nil {
-		if choice, err := before.Choice.Refit(ctx, x, y); err == nil {
-			fit.Choice = choice
+		if choice, err := before.Choice.Refit(ctx, before.window.all(x), y); err == nil {
+			fit.Choice, fit.window = choice, before.window
 			return fit
 		}
 	}
-	fit.Choice, fit.Err = crossval.Settings{Candidates: kinds, Transforms: transforms}.Choose(ctx, x, y)
+	if zoom {
+		fit.window = closeWindow(x)
+	}
+	fit.Choice, fit.Err = crossval.Settings{Candidates: kinds, Transforms: transforms}.Choose(ctx, fit.window.all(x), y)
 	return fit
 }
 
@@ -121,7 +131,7 @@ func newAnchor(s *sample, fits []Fit, tilt [][]float64) *anchor {
 	}
 	for k := range fits {
 		if exact := s.values[fits[k].Quantity]; fits[k].usable() && !math.IsNaN(exact) && !math.IsInf(exact, 0) {
-			a.shift[k] = exact - fits[k].Choice.Mean(s.u)
+			a.shift[k] = exact - fits[k].mean(s.u)
 		}
 	}
 	return a
@@ -129,6 +139,23 @@ func newAnchor(s *sample, fits []Fit, tilt [][]float64) *anchor {
 
 // usable reports whether the fit predicts a number.
 func (f *Fit) usable() bool { return f.Err == nil && !f.never }
+
+// mean is the prediction at u.
+func (f *Fit) mean(u []float64) float64 { return f.Choice.Mean(f.window.of(u)) }
+
+// gradient stores the slopes at u.
+func (f *Fit) gradient(dst, u []float64) {
+	f.Choice.Gradient(dst, f.window.of(u))
+	for j, width := range f.window.width {
+		dst[j] /= width
+	}
+}
+
+// deviation is the standard deviation of the prediction at u.
+func (f *Fit) deviation(u []float64) float64 {
+	_, deviation := f.Choice.Predict(f.window.of(u))
+	return deviation
+}
 
 // learn updates the tilt so that the corrected model also meets the exact values
 // of another sample (Broyden's rank-one update, Nocedal & Wright eq. 11.7).
@@ -145,7 +172,7 @@ func (a *anchor) learn(s *sample, fits []Fit) {
 		if !fits[k].usable() || math.IsNaN(exact) || math.IsInf(exact, 0) {
 			continue
 		}
-		residual := exact - fits[k].Choice.Mean(s.u) - a.at(k, s.u)
+		residual := exact - fits[k].mean(s.u) - a.at(k, s.u)
 		for j := range s.u {
 			a.tilt[k][j] += residual * (s.u[j] - a.sample.u[j]) / length
 		}
@@ -169,7 +196,7 @@ func (l *surrogateLandscape) values(u, dst []float64) {
 			dst[fit.Quantity] = math.Inf(1) // asks nothing until it can be fitted
 			continue
 		}
-		v := fit.Choice.Mean(u)
+		v := fit.mean(u)
 		if l.anchor != nil {
 			v += l.anchor.at(k, u)
 		}
@@ -186,7 +213,7 @@ func (l *surrogateLandscape) jacobian(u []float64, rows [][]float64) {
 			clear(row)
 			continue
 		}
-		fit.Choice.Gradient(row, u)
+		fit.gradient(row, u)
 		if l.anchor != nil {
 			addScaled(row, 1, l.anchor.tilt[k])
 		}

@@ -21,6 +21,9 @@ func (d *designer) learn(proposals []*proposal) {
 	if len(d.training) == fitted {
 		d.correct(proposals, before)
 	}
+	d.penalty.rescale(d.samples)
+	d.reopen(before.sample)
+	d.idle = d.standsStill()
 	d.note(proposals)
 	d.tell("infill")
 }
@@ -33,7 +36,7 @@ func (d *designer) judgeStep(p *proposal) {
 		fit := &d.near.fits[k]
 		exact := p.sample.values[fit.Quantity]
 		if fit.usable() && !math.IsNaN(exact) && !math.IsInf(exact, 0) {
-			d.stepErrors[fit.Quantity] = math.Abs(exact - fit.Choice.Mean(p.u) - d.anchor.at(k, p.u))
+			d.stepErrors[fit.Quantity] = math.Abs(exact - fit.mean(p.u) - d.anchor.at(k, p.u))
 		}
 	}
 	expected := d.merit(d.anchor.sample) - p.expected
@@ -52,15 +55,41 @@ func (d *designer) judgeStep(p *proposal) {
 	}
 }
 
+// standsStill reports whether the last round improved the best design by less
+// than idleShare.
+func (d *designer) standsStill() bool {
+	best := d.best()
+	if best == nil || len(d.history) == 0 {
+		return false
+	}
+	before := d.history[len(d.history)-1].Aim
+	return d.plan.objective.gain(best.aim, before) <= idleShare*math.Abs(best.aim)
+}
+
+const idleShare = 1e-3
+
+// reopen widens the trust region after a jump: a center that no step led to has
+// nothing to do with how far steps were to be trusted elsewhere.
+func (d *designer) reopen(before *sample) {
+	if jump := distance(d.center().u, before.u) / 2; jump > 2*d.radius {
+		d.radius = math.Min(startRadius, jump)
+	}
+}
+
 // apartFromTraining reports whether u is far enough from every training sample.
 func (d *designer) apartFromTraining(u []float64) bool {
+	least := math.Min(apart, d.radius/apartOfRadius)
 	for _, s := range d.training {
-		if distance(s.u, u) < apart {
+		if distance(s.u, u) < least {
 			return false
 		}
 	}
 	return true
 }
+
+// apartOfRadius relates the distance of training samples to the trust region, once
+// that is small: its model has to follow what happens within it.
+const apartOfRadius = 8
 
 // correct moves the anchor to the new center with what the step has shown of the
 // slopes, without a new fit.
@@ -130,12 +159,19 @@ func (d *designer) audit(ctx context.Context, s *sample) error {
 // atRest reports whether the step from a feasible center promises nothing.
 func (d *designer) atRest(step *proposal) bool {
 	best := d.best()
-	return best != nil && d.center() == best && d.merit(best)-step.expected < settledGain
+	if best == nil || d.center() != best {
+		return false
+	}
+	least := math.Max(settledGain, settledShare*math.Abs(best.aim)/d.penalty.aimScale)
+	return d.merit(best)-step.expected < least
 }
 
-// settledGain is the scaled gain of a step below which it is not worth an exact
-// evaluation.
-const settledGain = 1e-10
+// Below settledGain, scaled, or settledShare of the aim the gain of a step is not
+// worth an exact evaluation.
+const (
+	settledGain  = 1e-10
+	settledShare = 1e-9
+)
 
 // challenge looks once more over the whole box: a better point elsewhere is
 // evaluated, none ends the search.

@@ -36,12 +36,8 @@ const withoutAim = 1e3
 // the optimum look small.
 func newMerit(p *plan, samples []*sample) merit {
 	m := merit{sign: p.objective.sign(), aimScale: 1, usual: make([]float64, len(p.rows)), weight: make([]float64, len(p.rows))}
-	var aims []float64
-	for _, s := range samples {
-		aims = append(aims, m.sign*s.aim)
-	}
-	if middle, least := middle(aims); middle > least {
-		m.aimScale = middle - least
+	if spread := m.spread(samples); spread > 0 {
+		m.aimScale = spread
 	}
 	for r := range p.rows {
 		row := &p.rows[r]
@@ -57,6 +53,27 @@ func newMerit(p *plan, samples []*sample) merit {
 	}
 	return m
 }
+
+// spread is the distance of the median aim from the best, NaN without any.
+func (m *merit) spread(samples []*sample) float64 {
+	aims := make([]float64, len(samples))
+	for i, s := range samples {
+		aims[i] = m.sign * s.aim
+	}
+	median, least := middle(aims)
+	return median - least
+}
+
+// rescale widens the scale of the aim where the samples have turned out to spread
+// far more: a wild aim far outside the limits would outweigh them.
+func (m *merit) rescale(samples []*sample) {
+	if spread := m.spread(samples); spread > rescaleFrom*m.aimScale {
+		m.aimScale = spread
+	}
+}
+
+// rescaleFrom is the growth of the spread that is followed.
+const rescaleFrom = 2
 
 // middle returns the upper median and the least of the finite values, NaN without
 // any.

@@ -80,6 +80,21 @@ func (s *searcher) polish(ctx context.Context, start, low, high []float64, setti
 	return out, nil
 }
 
+// tight returns settings whose feasibility lies within the back-off of every row:
+// a row whose quantity is usually far from its limit has a scale beside which the
+// back-off is small.
+func (s *searcher) tight(settings local.Settings) local.Settings {
+	least := 1.0
+	for q, r := range s.plan.curved {
+		least = math.Min(least, s.plan.rows[r].Scale/s.scale[q])
+	}
+	settings.Feasibility = math.Max(leastFeasibility, 0.1*backoff*least)
+	return settings
+}
+
+// leastFeasibility is above the rounding of scaled rows.
+const leastFeasibility = 1e-14
+
 // explore runs the evolution search over the whole box and returns the distinct
 // good points of its last population, best first.
 func (s *searcher) explore(ctx context.Context, seeds [][]float64, seed uint64, generations int) ([][]float64, error) {

@@ -31,6 +31,10 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 	if err != nil {
 		return nil, err
 	}
+	unexplained, err := d.lookElsewhere(ctx, step)
+	if err != nil || unexplained != nil && (d.idle || d.atRest(step)) {
+		return d.affordable([]*proposal{unexplained}), err
+	}
 	if d.atRest(step) {
 		if err := d.audit(ctx, center); err != nil {
 			return nil, err
@@ -40,7 +44,7 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 			return d.refine(center), nil
 		case d.confirmed != center:
 			d.confirmed = center
-			if probes := d.scouts(center, 2, leastScout); len(probes) > 0 {
+			if probes := d.scouts(center, d.probes(), leastScout); len(probes) > 0 {
 				return d.affordable(probes), nil
 			}
 		}
@@ -52,6 +56,9 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		return d.affordable(d.scouts(center, 2, math.Max(leastScout, math.Min(d.radius, scoutRadius)))), nil
 	}
 	proposals := []*proposal{step}
+	if unexplained != nil {
+		return d.affordable(append(proposals, unexplained)), nil
+	}
 	if d.exploring() {
 		wide, err := d.search(ctx)
 		if err != nil {
@@ -61,12 +68,57 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 			return d.affordable(append(proposals, wide)), nil
 		}
 	}
-	// Where the region is smaller than the scouts' distance, slopes are learned
-	// from the steps alone.
-	if d.exploring() || d.misled && d.radius > leastScout {
+	if d.exploring() {
 		proposals = append(proposals, d.scouts(center, 1, math.Min(d.radius, scoutRadius))...)
 	}
 	return d.affordable(proposals), nil
+}
+
+// lookElsewhere returns the point of largest expected improvement while the wide
+// surfaces do not explain the aim, nil once nothing promises any.
+func (d *designer) lookElsewhere(ctx context.Context, step *proposal) (*proposal, error) {
+	if len(d.history) <= wideRounds || d.explains(wellExplained) {
+		d.unexplained = !d.explains(explained)
+	}
+	if !d.unexplained {
+		return nil, nil
+	}
+	p, err := d.improve(ctx)
+	d.unexplained = p != nil
+	if p != nil && distance(p.u, step.u) < 10*apart {
+		return nil, err
+	}
+	return p, err
+}
+
+// explains reports whether leave-one-out prediction of the wide surfaces explains
+// the aim: what they say of the whole box is a guide.
+func (d *designer) explains(share float64) bool {
+	for _, i := range d.plan.objective.reads {
+		for k := range d.wide.fits {
+			if fit := &d.wide.fits[k]; fit.Quantity == i && fit.usable() && !(fit.Choice.Quality.Q2 >= share) {
+				return false
+			}
+		}
+	}
+	return true
+}
+
+// An aim counts as explained from the share explained of its variance on; once
+// it did not, from wellExplained on, because samples crowd around a center.
+const (
+	explained     = 0.5
+	wellExplained = 0.95
+)
+
+// probes is how many probes confirm the slopes at rest: a pair, and one a variable
+// while the samples are few, which may leave a direction unseen.
+func (d *designer) probes() int {
+	n := d.plan.dimension()
+	if len(d.training) < (n+1)*(n+2) {
+		return max(2, n)
+	}
+	return 2
 }
 
 // exploring reports whether the box is still searched widely: in the first
@@ -98,7 +150,7 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 	for j, u := range center.u {
 		low[j], high[j] = math.Max(0, u-d.radius), math.Min(1, u+d.radius)
 	}
-	found, err := s.polish(ctx, center.u, low, high, surrogateSearch)
+	found, err := s.polish(ctx, center.u, low, high, s.tight(surrogateSearch))
 	if err != nil {
 		return nil, err
 	}
@@ -286,8 +338,7 @@ func (d *designer) doubt(u []float64) float64 {
 		if !fit.usable() {
 			continue
 		}
-		_, deviation := fit.Choice.Predict(u)
-		most = math.Max(most, deviation/d.unit(fit.Quantity))
+		most = math.Max(most, fit.deviation(u)/d.unit(fit.Quantity))
 	}
 	return most
 }

@@ -1,6 +1,7 @@
 package optimize
 
 import (
+	"cmp"
 	"context"
 	"errors"
 	"math"
@@ -56,6 +57,20 @@ func (p *plan) judge(u []float64, evaluation *problems.Evaluation) *sample {
 		s.violation += constraints.MissingViolation
 	}
 	return s
+}
+
+// order puts feasible samples first, the best aim leading, then the others by
+// their violation.
+func (p *plan) order(a, b *sample) int {
+	switch {
+	case a.feasible && !b.feasible:
+		return -1
+	case !a.feasible && b.feasible:
+		return 1
+	case !a.feasible:
+		return cmp.Compare(a.violation, b.violation)
+	}
+	return cmp.Compare(p.objective.sign()*a.aim, p.objective.sign()*b.aim)
 }
 
 // evaluate computes the points exactly, jobs of them at a time, and returns them

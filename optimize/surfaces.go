@@ -19,7 +19,7 @@ type surfaces struct {
 // fitWide fits over the training samples of the whole box; the kinds are chosen
 // once and again when the samples have grown by a quarter.
 func (d *designer) fitWide(ctx context.Context) error {
-	fitted, err := d.fitSurfaces(ctx, wideKinds(d.settings.Seed), d.wide, d.spread(), 0.8)
+	fitted, err := d.fitSurfaces(ctx, wideKinds(d.settings.Seed), d.wide, d.spread(), 0.8, nil)
 	d.wide = fitted
 	return err
 }
@@ -50,7 +50,8 @@ func (d *designer) spread() []*sample {
 // them where asked; the anchor is set anew where the surfaces changed.
 func (d *designer) fitNear(ctx context.Context, center, without *sample) error {
 	members := d.nearest(center, without)
-	fitted, err := d.fitSurfaces(ctx, nearKinds(d.settings.Seed), d.near, members, 0.5)
+	polynomials := d.polynomials(ctx, without)
+	fitted, err := d.fitSurfaces(ctx, nearKinds(d.settings.Seed), d.near, members, 0.5, polynomials)
 	if err != nil {
 		return err
 	}
@@ -66,7 +67,7 @@ func (d *designer) fitNear(ctx context.Context, center, without *sample) error {
 // fitSurfaces fits on the members: not at all where nothing changed, from the
 // earlier hyperparameters where at least the share given of the members stood
 // there when the kinds were chosen, by a new choice otherwise.
-func (d *designer) fitSurfaces(ctx context.Context, kinds []surrogate.Model, before *surfaces, members []*sample, share float64) (*surfaces, error) {
+func (d *designer) fitSurfaces(ctx context.Context, kinds []surrogate.Model, before *surfaces, members []*sample, share float64, known []*Fit) (*surfaces, error) {
 	if before != nil && common(before.members, members) == len(members) && len(members) == len(before.members) {
 		return before, nil
 	}
@@ -75,7 +76,7 @@ func (d *designer) fitSurfaces(ctx context.Context, kinds []surrogate.Model, bef
 	if before != nil && float64(common(before.chosen, members)) >= share*float64(len(members)) {
 		earlier, next.chosen = before.fits, before.chosen
 	}
-	fits, err := d.plan.fitAll(ctx, d.settings.Jobs, kinds, members, earlier)
+	fits, err := d.plan.fitAll(ctx, d.settings.Jobs, kinds, members, earlier, known, known != nil)
 	if err != nil {
 		return before, err
 	}
@@ -83,9 +84,11 @@ func (d *designer) fitSurfaces(ctx context.Context, kinds []surrogate.Model, bef
 	return next, nil
 }
 
-// neighbours is how many samples the near surfaces are fitted to: twice the
-// terms of a full quadratic in n variables, and ten.
-func neighbours(n int) int { return (n+1)*(n+2) + 10 }
+// neighbours is how many samples the near surfaces are fitted to: the terms of a
+// full quadratic in n variables, and ten. Twice the terms follow an optimum among
+// widely spread values too loosely (measured on problem 100 of Hock &
+// Schittkowski and the tension spring).
+func neighbours(n int) int { return (n+1)*(n+2)/2 + 10 }
 
 // nearest returns the training samples nearest to the center, in the order they
 // were evaluated.

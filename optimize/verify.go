@@ -23,6 +23,10 @@ func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) 
 			return c, err
 		}
 		c.Predicted, c.AimPredicted, c.SurrogateError = d.audited.predicted, d.audited.aim, d.audited.err
+		// The audit left the sample out; its prices are slopes that know it.
+		if err := d.fitNear(context.WithoutCancel(ctx), s, nil); err != nil {
+			return c, err
+		}
 		d.pricesAt(s, c.Assessment.Checks)
 	} else {
 		c.Predicted = unpredicted(len(d.plan.quantities))
