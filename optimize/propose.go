@@ -146,11 +146,7 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 	s := d.newSearcher(land)
 	s.blind = d.blind(d.near)
 	d.stayInside(s)
-	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
-	for j, u := range center.u {
-		low[j], high[j] = math.Max(0, u-d.radius), math.Min(1, u+d.radius)
-	}
-	found, err := s.polish(ctx, center.u, low, high, s.tight(surrogateSearch))
+	found, err := d.stepWithin(ctx, s, center, d.radius)
 	if err != nil {
 		return nil, err
 	}
@@ -160,6 +156,23 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 	p.exploit = true
 	p.expected = d.expectedMerit(found)
 	return p, nil
+}
+
+// stepWithin searches around the center. A solution that the model itself calls
+// worse than the center lies in another valley, reached by a first step too long:
+// a smaller region keeps to this one.
+func (d *designer) stepWithin(ctx context.Context, s *searcher, center *sample, radius float64) (*solution, error) {
+	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
+	for {
+		for j, u := range center.u {
+			low[j], high[j] = math.Max(0, u-radius), math.Min(1, u+radius)
+		}
+		found, err := s.polish(ctx, center.u, low, high, s.tight(surrogateSearch))
+		if err != nil || radius <= leastRadius || !(d.expectedMerit(found) > d.merit(center)) {
+			return found, err
+		}
+		radius = math.Max(leastRadius, radius/8)
+	}
 }
 
 // newSearcher searches a landscape in the scales of the samples.
