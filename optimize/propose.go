@@ -159,8 +159,9 @@ func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, erro
 }
 
 // stepWithin searches around the center. A solution that the model itself calls
-// worse than the center lies in another valley, reached by a first step too long:
-// a smaller region keeps to this one.
+// worse than a feasible center comes of backing off further than the center does,
+// or lies in another valley, reached by a first step too long: then the search
+// goes up to the limits, and keeps to smaller regions.
 func (d *designer) stepWithin(ctx context.Context, s *searcher, center *sample, radius float64) (*solution, error) {
 	low, high := make([]float64, len(center.u)), make([]float64, len(center.u))
 	for {
@@ -168,10 +169,14 @@ func (d *designer) stepWithin(ctx context.Context, s *searcher, center *sample, 
 			low[j], high[j] = math.Max(0, u-radius), math.Min(1, u+radius)
 		}
 		found, err := s.polish(ctx, center.u, low, high, s.tight(surrogateSearch))
-		if err != nil || radius <= leastRadius || !(d.expectedMerit(found) > d.merit(center)) {
+		if err != nil || !center.feasible || radius <= leastRadius || !(d.expectedMerit(found) > d.merit(center)) {
 			return found, err
 		}
-		radius = math.Max(leastRadius, radius/8)
+		if slices.Max(append(s.inside, 0)) > 0 {
+			clear(s.inside)
+		} else {
+			radius = math.Max(leastRadius, radius/8)
+		}
 	}
 }
 
