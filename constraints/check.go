@@ -29,6 +29,9 @@ type Check struct {
 	// Price is the gain of the aim for each unit by which the limit is loosened;
 	// zero where it is not active, filled by the search.
 	Price float64
+	// Drives is the index of the variable the limit holds back most, -1 where it has
+	// no price; filled by the search.
+	Drives int
 }
 
 // Assessment is every row judged on one evaluation.
@@ -67,7 +70,7 @@ func Assess(rows []Row, evaluation *problems.Evaluation) Assessment {
 }
 
 func judge(row *Row, evaluation *problems.Evaluation) Check {
-	check := Check{Row: *row, Value: evaluation.Values[row.Index], Applies: true}
+	check := Check{Row: *row, Value: evaluation.Values[row.Index], Applies: true, Drives: -1}
 	if math.IsNaN(check.Value) {
 		check.Margin = math.NaN()
 		check.Missing = evaluation.Reasons[row.Index]

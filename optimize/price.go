@@ -1,6 +1,7 @@
 package optimize
 
 import (
+	"context"
 	"math"
 
 	"gonum.org/v1/gonum/floats"
@@ -9,30 +10,47 @@ import (
 	"rampwright/constraints"
 )
 
-// pricesAt stores in every active check at a sample the gain of the aim for each
-// unit by which its limit is loosened: the multipliers that balance the slope of
-// the aim against those of the active limits and of the faces of the box the
-// design stands on,
+// Price fills price and driven variable of every active check of a design from
+// exact slopes, by central differences: 2n runs of the model, for models that cost
+// little. Where the aim is the worst of several points it leaves them as they are.
+func Price(ctx context.Context, task Task, x []float64, checks []constraints.Check) error {
+	plan, err := newPlan(task)
+	if err != nil {
+		return err
+	}
+	land := newExactLandscape(ctx, plan)
+	newSearcher(plan, land, 1).price(plan.normal(x), checks)
+	return land.err
+}
+
+// pricesAt prices the active checks at a sample by the slopes of the near surfaces.
+func (d *designer) pricesAt(s *sample, checks []constraints.Check) {
+	search := newSearcher(d.plan, d.plan.surrogates(d.near.fits, d.anchor), 1)
+	search.blind = d.blind(d.near)
+	search.price(s.u, checks)
+}
+
+// price stores in every active check at u the gain of the aim for each unit by
+// which its limit is loosened: the multipliers that balance the slope of the aim
+// against those of the active limits and of the faces of the box the design stands
+// on,
 //
 //	min | sign grad(aim) + sum lambda_r grad(c_r) |^2,  lambda >= 0
 //
-// (first-order conditions, Nocedal & Wright thm. 12.1), with the slopes of the
-// near surfaces.
-func (d *designer) pricesAt(s *sample, checks []constraints.Check) {
-	land := d.plan.surrogates(d.near.fits, d.anchor)
-	search := newSearcher(d.plan, land, 1)
-	if search.blind = d.blind(d.near); search.blind || search.worst() {
+// (first-order conditions, Nocedal & Wright thm. 12.1). The variable it drives is
+// the one whose share of a limit's term in that sum is largest, in unit-cube
+// lengths.
+func (s *searcher) price(u []float64, checks []constraints.Check) {
+	if s.blind || s.worst() {
 		return
 	}
-	n := d.plan.dimension()
-	slope := make([]float64, n)
-	search.values(s.u)
-	land.jacobian(s.u, search.rows)
-	d.plan.objective.gradient(search.vector, search.rows, slope)
+	slope := make([]float64, len(u))
+	s.values(u)
+	s.land.jacobian(u, s.rows)
+	s.plan.objective.gradient(s.vector, s.rows, slope)
 	for j := range slope {
-		slope[j] *= d.plan.objective.sign()
+		slope[j] *= s.plan.objective.sign()
 	}
-
 	var columns [][]float64 // gradients of active sides, scaled rows
 	var owners []int        // check of a column, -1 for a face
 	for r := range checks {
@@ -44,28 +62,38 @@ func (d *designer) pricesAt(s *sample, checks []constraints.Check) {
 		if math.Abs(check.Value-check.Low) < math.Abs(check.Value-check.High) {
 			sign = -1
 		}
-		if column := d.plan.rowSlope(r, search); column != nil {
+		if column := s.plan.rowSlope(r, s); column != nil {
 			columns, owners = append(columns, scaled(column, sign/check.Scale)), append(owners, r)
 		}
 	}
-	for j, v := range s.u {
-		face := make([]float64, n)
-		switch {
-		case v <= 0:
-			face[j] = -1
-		case v >= 1:
-			face[j] = 1
-		default:
-			continue
+	for j, v := range u {
+		if v <= 0 || v >= 1 {
+			face := make([]float64, len(u))
+			face[j] = math.Copysign(1, v-0.5)
+			columns, owners = append(columns, face), append(owners, -1)
 		}
-		columns, owners = append(columns, face), append(owners, -1)
 	}
 	multipliers := balance(slope, columns)
 	for k, r := range owners {
-		if r >= 0 {
-			checks[r].Price = multipliers[k] / checks[r].Scale
+		if r < 0 {
+			continue
+		}
+		checks[r].Price, checks[r].Drives = multipliers[k]/checks[r].Scale, -1
+		if multipliers[k] > 0 {
+			checks[r].Drives = steepestSide(columns[k])
 		}
 	}
+}
+
+// steepestSide is the index of the largest component by size.
+func steepestSide(v []float64) int {
+	most := 0
+	for j := range v {
+		if math.Abs(v[j]) > math.Abs(v[most]) {
+			most = j
+		}
+	}
+	return most
 }
 
 // rowSlope is the gradient of a row's quantity in the unit cube, nil where none

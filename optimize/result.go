@@ -11,11 +11,12 @@ import (
 type Status int
 
 const (
-	// Verified: both exact routes agree on Best, every limit holds exactly, and
-	// the surrogates predicted it within the agreement asked for.
+	// Verified: both exact routes agree on Best (where the problem has but one, it
+	// gave the same values again), every limit holds exactly, and the surrogates
+	// predicted it within the agreement asked for.
 	Verified Status = iota
 	// NotVerified: Best holds every limit, but the surrogates missed it by more
-	// than the agreement, or the exact routes differ.
+	// than the agreement, or the exact routes or the repetition differ.
 	NotVerified
 	// Infeasible: no exact evaluation holds every limit; Best has the least sum
 	// of scaled violations.
@@ -45,6 +46,19 @@ func (s Status) String() string {
 	}
 }
 
+// Repetition says what a second run of the one exact route showed: that the model
+// is one, and not what the model is worth.
+type Repetition int
+
+const (
+	// NotRepeated: a second route stands in its place, or the search was ended.
+	NotRepeated Repetition = iota
+	// Same: every value came out the same to the last bit.
+	Same
+	// Differs: some value did not.
+	Differs
+)
+
 // Candidate is one design with its evidence.
 type Candidate struct {
 	X      []float64 // in the variables' units
@@ -53,6 +67,8 @@ type Candidate struct {
 	// RouteGap is the largest relative difference between the routes; NaN without
 	// a second one, +Inf where only one has a value.
 	RouteGap float64
+	// Repetition is what a problem without a second route gave when it was run again.
+	Repetition Repetition
 	// Predicted is what the surrogates said of X before its exact evaluation
 	// joined them, by quantity index: the exact value for explicit quantities,
 	// NaN for those without a surrogate.

@@ -31,11 +31,10 @@ func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) 
 	} else {
 		c.Predicted = unpredicted(len(d.plan.quantities))
 	}
-	// The evidence is due even when the time is up.
-	if err := c.verify(context.WithoutCancel(ctx), d.plan.problem); err != nil {
+	if err := c.verify(ctx, d.plan.problem); err != nil {
 		return c, err
 	}
-	if c.Second != nil {
+	if c.Second != nil || c.Repetition != NotRepeated {
 		d.counts.Verify++
 	}
 	return c, nil
@@ -50,21 +49,52 @@ func unpredicted(n int) []float64 {
 	return values
 }
 
-// verify computes the candidate by the second exact route, where the problem has
-// one.
+// verify computes the candidate by the second exact route, which is due even when
+// the time is up; where the problem has none, once more by the first, which is
+// not.
 func (c *Candidate) verify(ctx context.Context, problem problems.Problem) error {
 	c.RouteGap = math.NaN()
 	verifier, ok := problem.(problems.Verifier)
 	if !ok {
-		return nil
+		return c.repeat(ctx, problem)
 	}
 	c.Second = problems.NewEvaluation(len(c.Exact.Values))
-	if err := verifier.Verify(ctx, c.X, c.Second); err != nil {
+	if err := verifier.Verify(context.WithoutCancel(ctx), c.X, c.Second); err != nil {
 		return err
 	}
 	c.RouteGap = routeGap(c.Exact, c.Second)
 	return nil
 }
+
+// Repeater is implemented by a problem whose Evaluate may answer from a store:
+// Repeat runs the model itself.
+type Repeater interface {
+	Repeat(ctx context.Context, x []float64, dst *problems.Evaluation) error
+}
+
+// repeat runs the model again and compares to the last bit.
+func (c *Candidate) repeat(ctx context.Context, problem problems.Problem) error {
+	run := problem.Evaluate
+	if repeater, ok := problem.(Repeater); ok {
+		run = repeater.Repeat
+	}
+	again := problems.NewEvaluation(len(c.Exact.Values))
+	if err := run(ctx, c.X, again); ctx.Err() != nil {
+		return nil
+	} else if err != nil {
+		return err
+	}
+	c.Repetition = Same
+	for i, v := range c.Exact.Values {
+		if w := again.Values[i]; v != w && !(math.IsNaN(v) && math.IsNaN(w)) {
+			c.Repetition = Differs
+		}
+	}
+	return nil
+}
+
+// confirmed reports whether a second computation bears the candidate out.
+func (c *Candidate) confirmed() bool { return c.RouteGap <= RouteAgreement || c.Repetition == Same }
 
 // routeGap is the largest difference between two evaluations beyond the bounds of
 // the second, relative to values above 1. A value without a finite bound agrees

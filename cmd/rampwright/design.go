@@ -164,7 +164,7 @@ func (a *app) cutShort(err error, interruption *interruption) error {
 }
 
 // afterwards runs what never feeds the search, on the exact model: the exact
-// search as yardstick; the nearest design in tenths of a degree and the play of
+// search as yardstick; the prices of the limits, the nearest design in tenths of a degree and the play of
 // the variables where the limits hold; the reason why where nothing holds them.
 func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Settings, finished *report.Study) (err error) {
 	task := optimize.Task{Problem: study.model, Limits: study.limits, Aim: study.brief.Aim}
@@ -180,6 +180,9 @@ func (a *app) afterwards(ctx context.Context, study *study, settings optimize.Se
 	best := finished.Result.Best
 	if !best.Assessment.Feasible {
 		return nil
+	}
+	if err := optimize.Price(ctx, task, best.X, best.Assessment.Checks); err != nil {
+		return err
 	}
 	if study.problem != nil { // the variables of an analytic problem are no angles
 		if finished.Rounded, err = optimize.Round(ctx, task, best.X, roundedStep); err != nil {

@@ -54,6 +54,10 @@ func (s *Study) endingCautions() []Caution {
 		add("unfinished", "The search was ended early (%s): a better design may exist.", s.Result.Status)
 	}
 	switch {
+	case best.Repetition == optimize.Same:
+		add("one_route", "The problem has no second exact route: run again it gave the same values to the last bit, which checks the repetition and not the model.")
+	case best.Repetition == optimize.Differs:
+		add("routes_differ", "The problem has no second exact route, and run again it gave other values: do not use these numbers.")
 	case math.IsNaN(best.RouteGap):
 		add("one_route", "The problem has no second exact route: nothing but its own formula confirms these numbers.")
 	case math.IsInf(best.RouteGap, 1):

@@ -106,7 +106,8 @@ type Limit struct {
 	Margin   Number         `json:"margin"`
 	Met      bool           `json:"met"`
 	Active   bool           `json:"active"`
-	Price    Number         `json:"price"` // gain of the aim for each unit the limit is loosened
+	Price    Number         `json:"price"`  // gain of the aim for each unit the limit is loosened
+	Drives   string         `json:"drives"` // the variable the limit holds back most; empty without a price
 	Kind     string         `json:"kind"`
 	Missing  Object[string] `json:"missing,omitzero"`
 }
@@ -214,7 +215,12 @@ func (s *Study) candidate(c *optimize.Candidate) Candidate {
 		nullable{"exact", c.AimExact, "a quantity of the aim has no value"},
 		nullable{"predicted", c.AimPredicted, unforeseen})
 	gap := "the problem has no second exact route"
-	if math.IsInf(c.RouteGap, 1) {
+	switch {
+	case c.Repetition == optimize.Same:
+		gap = "the problem has no second exact route; run again it gave the same values to the last bit"
+	case c.Repetition == optimize.Differs:
+		gap = "the problem has no second exact route; run again it gave other values"
+	case math.IsInf(c.RouteGap, 1):
 		gap = "only one of the exact routes has a value"
 	}
 	candidate.Evidence.Missing = whyNull(
@@ -268,7 +274,7 @@ func (s *Study) best(list []reading) Best {
 		b.Error = append(b.Error, Field[Object[Number]]{point, errors})
 	}
 	for i := range c.Assessment.Checks {
-		b.Limits = append(b.Limits, newLimit(&c.Assessment.Checks[i]))
+		b.Limits = append(b.Limits, s.limit(&c.Assessment.Checks[i]))
 	}
 	return b
 }
@@ -305,11 +311,14 @@ func (s *Study) predicted(exact []reading) []reading {
 	return list
 }
 
-func newLimit(c *constraints.Check) Limit {
+func (s *Study) limit(c *constraints.Check) Limit {
 	l := Limit{
 		Quantity: c.Quantity.Name, Member: c.Quantity.Member, At: c.Quantity.Point,
 		Low: Number(c.Low), High: Number(c.High), Value: Number(c.Value), Margin: Number(c.Margin),
 		Met: c.Met, Active: c.Active, Price: Number(c.Price), Kind: c.Kind.String(),
+	}
+	if c.Price > 0 {
+		l.Drives = s.model().Variables()[c.Drives].Name
 	}
 	if c.Missing != nil {
 		l.Missing = Object[string]{{"value", c.Missing.Error()}}

@@ -200,7 +200,7 @@ func (d *DesignDocument) how(c *constraints.Check) string {
 	case !c.Met:
 		return "not met"
 	case c.Active && c.Price > 0:
-		return "on the limit: " + d.price(c)
+		return "on the limit: " + d.price(c) + ", holds " + d.study.model().Variables()[c.Drives].Name
 	case c.Active:
 		return "on the limit"
 	}

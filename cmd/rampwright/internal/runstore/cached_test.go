@@ -13,6 +13,7 @@ import (
 	"sync/atomic"
 	"testing"
 
+	"rampwright/optimize"
 	"rampwright/problems"
 )
 
@@ -144,6 +145,21 @@ func TestCachedKnowsEveryOptionalInterface(t *testing.T) {
 	slices.Sort(declared)
 	if known := slices.Sorted(maps.Keys(optional)); !slices.Equal(declared, known) {
 		t.Errorf("package problems declares %q, Cached passes on %q", declared, known)
+	}
+}
+
+// A repetition is worth something only if the model itself is run.
+func TestCachedRepeatsWithTheModel(t *testing.T) {
+	cached, counter := Cached(variants()["plain"], newLedger(t), "m")
+	dst := problems.NewEvaluation(3)
+	if err := cached.Evaluate(context.Background(), []float64{0.1}, dst); err != nil {
+		t.Fatal(err)
+	}
+	if err := cached.(optimize.Repeater).Repeat(context.Background(), []float64{0.1}, dst); err != nil || dst.Values[0] != 0.1 {
+		t.Errorf("repeated: %v, %v", dst.Values, err)
+	}
+	if counter.Calls(Primary) != 2 || counter.Hits(Primary) != 0 {
+		t.Errorf("%d calls, %d hits", counter.Calls(Primary), counter.Hits(Primary))
 	}
 }
 
