@@ -19,6 +19,7 @@ type Fit struct {
 	// the quantity are then judged on exact values only.
 	Err    error
 	window window // the part of the cube that Choice sees; the zero value is all of it
+	exact  bool   // an expansion that reproduces the quantity, see polynomials
 	// never is a quantity that applied nowhere.
 	never bool
 }

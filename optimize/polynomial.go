@@ -15,8 +15,12 @@ import (
 // the fit has not seen.
 
 // exactFit is the leave-one-out error of an exact fit, relative to the spread of
-// the data.
-const exactFit = 1e-8
+// the data, and exactSamples how many samples a term it needs: a single one more
+// than terms would do to tell.
+const (
+	exactFit     = 1e-8
+	exactSamples = 1.2
+)
 
 // polynomials returns, by place among the fitted quantities, the expansions over
 // all training samples but one that reproduce their quantity exactly; nil where
@@ -30,7 +34,7 @@ func (d *designer) polynomials(ctx context.Context, without *sample) []*Fit {
 }
 
 func (d *designer) polynomial(ctx context.Context, k int, without *sample) *Fit {
-	fit := &Fit{Quantity: d.plan.fitted[k]}
+	fit := &Fit{Quantity: d.plan.fitted[k], exact: true}
 	var x [][]float64
 	var y []float64
 	for _, s := range d.training {
@@ -55,7 +59,7 @@ func (d *designer) polynomial(ctx context.Context, k int, without *sample) *Fit 
 			return fit
 		}
 	}
-	choice, err := crossval.Settings{Candidates: []surrogate.Model{pce.OLS{}}, Transforms: identity, Alone: true}.Choose(ctx, x, y)
+	choice, err := crossval.Settings{Candidates: []surrogate.Model{pce.OLS{SamplesPerTerm: exactSamples}}, Transforms: identity, Alone: true}.Choose(ctx, x, y)
 	if err != nil || !exact(choice, y) {
 		return nil
 	}

@@ -203,9 +203,10 @@ func (d *designer) stayInside(s *searcher) {
 const mostInside = 1e-4
 
 // rowError is the error of the corrected prediction of a quantity at the latest
-// step, in its unit.
+// step, in its unit; none where the quantity has been recognised since.
 func (d *designer) rowError(quantity int) float64 {
-	if d.stepErrors == nil {
+	recognised := slices.ContainsFunc(d.near.fits, func(f Fit) bool { return f.Quantity == quantity && f.exact })
+	if d.stepErrors == nil || recognised {
 		return 0
 	}
 	return d.stepErrors[quantity]
