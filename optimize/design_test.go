@@ -280,6 +280,42 @@ func TestCancelledDesignKeepsTheBest(t *testing.T) {
 	})
 }
 
+// The same for every evaluation in turn: a feasible best is called feasible and no
+// other is, and with more evaluations it is never worse.
+func TestCancelledAfterEveryEvaluation(t *testing.T) {
+	last := math.Inf(-1)
+	for at := int64(1); ; at++ {
+		ctx, cancel := context.WithCancel(context.Background())
+		task := disk(1)
+		task.Problem = &interrupting{verifiedToy: task.Problem.(verifiedToy), at: at, end: cancel}
+		result, err := Design(ctx, task, Settings{Samples: 8, Infill: 12}, nil)
+		ended := ctx.Err() != nil
+		cancel()
+		if err != nil {
+			if !errors.Is(err, ErrNothingEvaluated) || at > 8 {
+				t.Fatalf("cancelled at evaluation %d: %v", at, err)
+			}
+			continue
+		}
+		if !ended {
+			if at < 12 {
+				t.Errorf("the design ended by itself at evaluation %d", at)
+			}
+			return
+		}
+		best := &result.Best
+		if result.Status != Interrupted || best.Assessment.Feasible != (best.Exact.Values[1] <= 1) || best.Second == nil {
+			t.Errorf("cancelled at evaluation %d: %v, feasible %t with a square of %g", at, result.Status, best.Assessment.Feasible, best.Exact.Values[1])
+		}
+		if best.Assessment.Feasible {
+			if best.AimExact < last {
+				t.Errorf("cancelled at evaluation %d: %g after %g", at, best.AimExact, last)
+			}
+			last = best.AimExact
+		}
+	}
+}
+
 // A limit at 0, whose scale comes from the samples, has one among few samples too.
 func TestCancelledAmongTheSamplesUnderALimitAtZero(t *testing.T) {
 	for at := int64(2); at <= 20; at += 3 {

@@ -22,8 +22,9 @@ const (
 )
 
 // SearchExact searches the exact model: evolution over the box, then the local
-// solver from its distinct points and from space-filling starts. Starts are
-// split over jobs; the result does not depend on it.
+// solver from its distinct points and from space-filling starts, each moved to
+// where the model has values (see towardKnown). Starts are split over jobs; the
+// result does not depend on it.
 func SearchExact(ctx context.Context, task Task, settings Settings) (*ExactSearch, error) {
 	plan, err := newPlan(task)
 	if err != nil {
@@ -31,14 +32,18 @@ func SearchExact(ctx context.Context, task Task, settings Settings) (*ExactSearc
 	}
 	settings = settings.WithDefaults(plan.dimension())
 	land := newExactLandscape(ctx, plan)
-	starts, err := newSearcher(plan, land, 1).explore(ctx, nil, uint64(settings.Seed), exactGenerations)
+	scout := newSearcher(plan, land, 1)
+	starts, err := scout.explore(ctx, nil, uint64(settings.Seed), exactGenerations)
 	if err != nil {
 		return nil, err
 	}
 	if land.err != nil {
 		return nil, land.err
 	}
-	starts = append(starts, plan.design(exactStarts, settings.Seed)...)
+	known := starts[0]
+	for _, u := range plan.design(exactStarts, settings.Seed) {
+		starts = append(starts, scout.towardKnown(u, known))
+	}
 	found, counts := make([]*solution, len(starts)), make([]int, len(starts))
 	failures := make([]error, len(starts))
 	low, high := plan.cube()

@@ -162,14 +162,18 @@ func (d *designer) atRest(step *proposal) bool {
 	if best == nil || d.center() != best {
 		return false
 	}
-	least := math.Max(settledGain, settledShare*math.Abs(best.aim)/d.penalty.aimScale)
+	least := settledGain
+	if distance(step.u, best.u) < settledStep {
+		least = math.Max(least, settledShare*math.Abs(best.aim)/d.penalty.aimScale)
+	}
 	return d.merit(best)-step.expected < least
 }
 
-// Below settledGain, scaled, or settledShare of the aim the gain of a step is not
-// worth an exact evaluation.
+// The gain of a step is not worth an exact evaluation below settledGain, scaled;
+// of a step shorter than settledStep, below settledShare of the aim.
 const (
 	settledGain  = 1e-10
+	settledStep  = 3e-5
 	settledShare = 1e-9
 )
 
