@@ -42,7 +42,6 @@ type designer struct {
 
 	penalty    merit
 	radius     float64   // of the trust region
-	misled     bool      // the last step gained much less than expected
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
 
 	unexplained bool // the wide surfaces are no guide to the aim

@@ -15,6 +15,7 @@ import (
 	"pgregory.net/rapid"
 
 	"rampwright/problems"
+	"rampwright/problems/analytic"
 )
 
 // Known solutions are found and verified within the default effort.
@@ -170,7 +171,14 @@ func TestHistoryNeverWorsens(t *testing.T) {
 
 // A result is the same to the last bit for any number of jobs.
 func TestDesignDoesNotDependOnJobs(t *testing.T) {
-	for name, task := range map[string]Task{"edge": cliff(), "worst": charalambous3()} {
+	valleys, err := analytic.New("g08")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for name, task := range map[string]Task{
+		"edge": cliff(), "worst": charalambous3(),
+		"valleys": {Problem: valleys, Limits: valleys.OwnLimits(), Aim: valleys.Aim()},
+	} {
 		want := mustDesign(t, task, Settings{Jobs: 1})
 		for _, jobs := range []int{2, 7} {
 			got := mustDesign(t, task, Settings{Jobs: jobs})

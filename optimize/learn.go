@@ -9,7 +9,6 @@ import (
 // takes the new samples into the training set or the correction.
 func (d *designer) learn(proposals []*proposal) {
 	before, fitted := d.anchor, len(d.training)
-	d.misled = false
 	for _, p := range proposals {
 		if p.exploit {
 			d.judgeStep(p)
@@ -49,7 +48,6 @@ func (d *designer) judgeStep(p *proposal) {
 	case !(expected > 0):
 	case ratio < 0.25:
 		d.radius = math.Max(leastRadius, 0.5*d.radius)
-		d.misled = true
 	case ratio > 0.75 && length > 0.9*d.radius:
 		d.radius = math.Min(1, 2*d.radius)
 	}

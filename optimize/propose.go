@@ -22,18 +22,22 @@ type proposal struct {
 }
 
 // propose returns the points to evaluate next: a step of the corrected surrogates
-// from the center, with the best point of the surrogates over the whole box
-// while that is searched, or a point near the center they know least where they
-// misled. None means that the search is done.
+// from the center; beside it, while the whole box is searched, the best point of
+// the surrogates there or a point near the center they know least; beside it or
+// alone, while they do not explain the aim, the point of largest expected
+// improvement. None means that the search is done.
 func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 	center := d.anchor.sample
 	step, err := d.exploit(ctx, center)
 	if err != nil {
 		return nil, err
 	}
-	unexplained, err := d.lookElsewhere(ctx, step)
-	if err != nil || unexplained != nil && (d.idle || d.atRest(step)) {
-		return d.affordable([]*proposal{unexplained}), err
+	elsewhere, err := d.lookElsewhere(ctx, step)
+	if err != nil {
+		return nil, err
+	}
+	if elsewhere != nil && (d.idle || d.atRest(step)) {
+		return d.affordable([]*proposal{elsewhere}), nil
 	}
 	if d.atRest(step) {
 		if err := d.audit(ctx, center); err != nil {
@@ -56,8 +60,8 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		return d.affordable(d.scouts(center, 2, math.Max(leastScout, math.Min(d.radius, scoutRadius)))), nil
 	}
 	proposals := []*proposal{step}
-	if unexplained != nil {
-		return d.affordable(append(proposals, unexplained)), nil
+	if elsewhere != nil {
+		return d.affordable(append(proposals, elsewhere)), nil
 	}
 	if d.exploring() {
 		wide, err := d.search(ctx)
@@ -67,8 +71,6 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		if d.worthEvaluating(wide, step) {
 			return d.affordable(append(proposals, wide)), nil
 		}
-	}
-	if d.exploring() {
 		proposals = append(proposals, d.scouts(center, 1, math.Min(d.radius, scoutRadius))...)
 	}
 	return d.affordable(proposals), nil
