@@ -236,15 +236,15 @@ func TestLiftedDefaultsNamePoints(t *testing.T) {
 	}
 }
 
-// The price is told in the words of aim and unit.
+// The price is told in the words of aim and unit, with the variable it holds.
 func TestPriceInWords(t *testing.T) {
 	d := NewDesign(head, study(t))
 	check := constraints.Check{Row: constraints.Row{Quantity: problems.Quantity{Unit: "m"}}, Active: true, Met: true, Applies: true, Price: 0.2581}
-	if got := d.how(&check); got != "on the limit: 0.258 recovery per m" {
+	if got := d.how(&check); got != "on the limit: 0.258 recovery per m, holds ramp_1_angle_deg" {
 		t.Errorf("got %q", got)
 	}
 	check.Quantity.Unit, d.Best.Aim.Text = "", "recovery * capture"
-	if got := d.how(&check); got != "on the limit: 0.258 of the aim per unit" {
+	if got := d.how(&check); got != "on the limit: 0.258 of the aim per unit, holds ramp_1_angle_deg" {
 		t.Errorf("got %q", got)
 	}
 	check.Price = 0
