@@ -48,8 +48,11 @@ type stripSheet struct {
 // higher.
 func (d *stripSheet) rowHeight(row *Strip) float64 {
 	bands := float64(len(d.chart.BandNames))*(bandHeight+bandGap) - bandGap
-	return max(bands, float64(len(d.nameLines(row)))*d.faces.small.height())
+	return max(bands, float64(len(d.nameLines(row)))*d.lineStep())
 }
+
+// lineStep is the distance of the lines of a name.
+func (d *stripSheet) lineStep() float64 { return d.faces.small.height() + 1 }
 
 func (d *stripSheet) nameLines(row *Strip) []string { return d.faces.small.wrap(row.Name, stripNames) }
 
@@ -118,11 +121,11 @@ func (d *stripSheet) row(i int) {
 	height := d.rowHeight(row)
 	middle := d.tops[i] + height/2
 	lines := d.nameLines(row)
-	y := middle - float64(len(lines))*small.height()/2
+	y := middle - float64(len(lines))*d.lineStep()/2
 	for _, line := range lines {
 		width := small.width(line)
 		d.labelled(line, box{d.x.from - 14 - width, y, width, small.height()}, small, darkInk)
-		y += small.height()
+		y += d.lineStep()
 	}
 	width := small.width(row.Note)
 	d.labelled(row.Note, box{sheetWidth - margin - width, middle - small.height()/2, width, small.height()}, small, darkInk)
