@@ -403,41 +403,6 @@ func TestDesignRefusals(t *testing.T) {
 	}
 }
 
-func TestRouteGap(t *testing.T) {
-	nan := math.NaN()
-	for _, c := range []struct {
-		a, b []float64
-		want float64
-	}{
-		{[]float64{1, 200}, []float64{1, 202}, 0.01},
-		{[]float64{1e-3}, []float64{2e-3}, 1e-3}, // absolute below 1
-		{[]float64{nan, 2}, []float64{nan, 2}, 0},
-		{[]float64{nan, 2}, []float64{1, 2}, math.Inf(1)},
-		{[]float64{1, 2}, []float64{1, nan}, math.Inf(1)},
-	} {
-		if got := routeGap(&problems.Evaluation{Values: c.a}, &problems.Evaluation{Values: c.b}); math.Abs(got-c.want) > 1e-15 && got != c.want {
-			t.Errorf("%v against %v: %g, want %g", c.a, c.b, got, c.want)
-		}
-	}
-}
-
-// Numerical routes may differ by the bounds of the second, no more, and a value
-// without a finite bound agrees with nothing.
-func TestRouteGapBeyondTheBounds(t *testing.T) {
-	for _, c := range []struct{ b, bound, want float64 }{
-		{2.01, 0.02, 0}, {2.01, 0.005, 0.0025}, {1.99, 0.005, 0.0025}, {2, math.Inf(1), math.Inf(1)}, {2, 0, 0},
-	} {
-		second := problems.NewEvaluation(2)
-		second.Set(0, c.b)
-		second.Set(1, 5)
-		second.Widen(0, c.bound)
-		first := &problems.Evaluation{Values: []float64{2, 5}}
-		if got := routeGap(first, second); math.Abs(got-c.want) > 1e-12 && got != c.want {
-			t.Errorf("2 against %g within %g: %g, want %g", c.b, c.bound, got, c.want)
-		}
-	}
-}
-
 // Runners-up are distinct designs that hold every limit, best first.
 func TestFinalistsAreDistinct(t *testing.T) {
 	task := disk(1)

@@ -67,6 +67,9 @@ type Candidate struct {
 	// RouteGap is the largest relative difference between the routes; NaN without
 	// a second one, +Inf where only one has a value.
 	RouteGap float64
+	// Broken are the limits that hold on Exact and not on Second, among those on
+	// quantities that the second route resolves better (Evaluation.Bounds).
+	Broken []constraints.Check
 	// Repetition is what a problem without a second route gave when it was run again.
 	Repetition Repetition
 	// Predicted is what the surrogates said of X before its exact evaluation

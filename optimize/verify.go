@@ -63,7 +63,24 @@ func (c *Candidate) verify(ctx context.Context, problem problems.Problem) error 
 		return err
 	}
 	c.RouteGap = routeGap(c.Exact, c.Second)
+	c.Broken = broken(c.Assessment, c.Second)
 	return nil
+}
+
+// broken lists the limits that are met but for the values of a second route that
+// resolves them better.
+func broken(assessment constraints.Assessment, second *problems.Evaluation) []constraints.Check {
+	var list []constraints.Check
+	for _, first := range assessment.Checks {
+		if !first.Met || second.Bound(first.Index) == 0 {
+			continue
+		}
+		finer := constraints.Assess([]constraints.Row{first.Row}, second)
+		if check := finer.Checks[0]; !check.Met {
+			list = append(list, check)
+		}
+	}
+	return list
 }
 
 // Repeater is implemented by a problem whose Evaluate may answer from a store:
@@ -94,7 +111,9 @@ func (c *Candidate) repeat(ctx context.Context, problem problems.Problem) error 
 }
 
 // confirmed reports whether a second computation bears the candidate out.
-func (c *Candidate) confirmed() bool { return c.RouteGap <= RouteAgreement || c.Repetition == Same }
+func (c *Candidate) confirmed() bool {
+	return c.RouteGap <= RouteAgreement && len(c.Broken) == 0 || c.Repetition == Same
+}
 
 // routeGap is the largest difference between two evaluations beyond the bounds of
 // the second, relative to values above 1. A value without a finite bound agrees

@@ -65,6 +65,10 @@ func (s *Study) endingCautions() []Caution {
 	case best.RouteGap > optimize.RouteAgreement:
 		add("routes_differ", "The two exact routes differ by %.2g, more than %g: do not use these numbers.", best.RouteGap, optimize.RouteAgreement)
 	}
+	if len(best.Broken) > 0 {
+		add("broken_when_resolved", "The search held limits on coarse traces that the fine ones of verification break: %s. Tighten these by the difference and search again.",
+			unmet(constraints.Assessment{Checks: best.Broken}))
+	}
 	switch {
 	case s.Result.Status == optimize.Verified:
 	case math.IsInf(best.SurrogateError, 1):
