@@ -68,7 +68,7 @@ func (n invented) view() (v SideView, ok bool) {
 			slope, front := math.Tan(surface), math.Tan(absolute)
 			x := (focus.Y - corner.Y - front*focus.X + slope*corner.X) / (slope - front)
 			next := Vertex{fmt.Sprintf("corner %d", i+1), x, corner.Y + slope*(x-corner.X)}
-			if x <= corner.X {
+			if !(x > corner.X) {
 				return v, false
 			}
 			corner = next
@@ -84,7 +84,7 @@ func (n invented) view() (v SideView, ok bool) {
 	slope, front := math.Tan(surface), math.Tan(surface-beta)
 	x := (focus.Y - corner.Y - front*focus.X + slope*corner.X) / (slope - front)
 	shoulder := Vertex{"shoulder", x, corner.Y + slope*(x-corner.X)}
-	if x <= corner.X {
+	if !(x > corner.X) {
 		return v, false
 	}
 	v.Waves = append(v.Waves, Wave{"lip shock", LipShock, focus.X, focus.Y, shoulder.X, shoulder.Y})

@@ -172,6 +172,7 @@ func TestFieldReadsBack(t *testing.T) {
 				low, high = min(low, v), max(high, v)
 			}
 		}
+		low, high = separated(low, high) // the colours of a field of one value reach beyond it
 		k := -1
 		var x, y [4]float64
 		colour := map[int][2]float64{}
