@@ -137,7 +137,7 @@ func band(v *robust.Summary) report.SpreadBand {
 const onTheLip = 1e-9
 
 // spreadInside tells, for each flight point, how many draws have a shock inside the
-// lip: run straight, and traced.
+// lip: run straight, and traced; of a given outline both as traced.
 func (s *study) spreadInside(out *report.SpreadStudy, r *robust.Study, built *inlet.Built) {
 	clearance := make([]float64, len(s.brief.Flight))
 	offsets := make([]float64, len(r.Scatter))
@@ -156,7 +156,11 @@ func (s *study) spreadInside(out *report.SpreadStudy, r *robust.Study, built *in
 	for i, n := range inside {
 		point := report.SpreadPoint{At: s.brief.Flight[i].Name, SpreadShare: share(robust.NewProbability(n, r.Settings.Draws)), Traced: report.Number(math.NaN())}
 		if clear := response(r, "lip_clearance", point.At); clear != nil {
-			point.Traced = report.Number(r.Share(func(values []float64) bool { return clear.Value(values) < -onTheLip }).Pass)
+			traced := r.Share(func(values []float64) bool { return clear.Value(values) < -onTheLip })
+			point.Traced = report.Number(traced.Pass)
+			if s.problem.Definition().Outline != nil {
+				point.SpreadShare = share(traced)
+			}
 		}
 		out.Inside = append(out.Inside, point)
 	}

@@ -127,8 +127,15 @@ func (b *Built) EvaluateBuilt(ctx context.Context, x, given []float64, dst *prob
 // StraightClearance stores, for each flight point, the least lip clearance of the
 // ramp shocks as built and flown when each runs on straight, in capture heights:
 // negative where one falls inside the lip, NaN where not every ramp shock is
-// attached. A trace may find that shocks merge on the way and pass outside.
+// attached, and of a given outline, whose shocks only a trace tells. A trace may
+// find that shocks merge on the way and pass outside.
 func (b *Built) StraightClearance(x, given, dst []float64) {
+	if b.definition.Outline != nil {
+		for i := range dst {
+			dst[i] = math.NaN()
+		}
+		return
+	}
 	w := b.pool.Get().(*builtWork)
 	defer b.pool.Put(w)
 	off := b.offset(w, x, given)

@@ -80,6 +80,9 @@ func (f *Frozen) Move(h Hinge, angle float64) (*Frozen, error) {
 	} else {
 		c.turnRamps(h.Ramp, angle-now)
 	}
+	if f.problem.definition.Outline != nil {
+		c.Throat = heightBetween(walls.Body, walls.CowlInner, walls.Planes[0])
+	}
 	if !(c.Throat > 0) {
 		c.err = &problems.Status{Phrase: "duct closed at the shoulder"}
 	}

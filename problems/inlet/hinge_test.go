@@ -156,3 +156,36 @@ func TestPartsThereAreNot(t *testing.T) {
 		t.Errorf("a ramp turned through the cowl: %v, status %v", err, flow.Status())
 	}
 }
+
+// TestThroatOfAMovedOutline: the throat height of an outline with a part turned is
+// that of the walls given anew where the part has moved them.
+func TestThroatOfAMovedOutline(t *testing.T) {
+	frozen := func(o *Outline) *Frozen {
+		d := outlined(t, veyric())
+		if o != nil {
+			d.Outline = o
+		}
+		return problemOf(t, d).Freeze(nil)
+	}
+	f := frozen(nil)
+	for _, h := range []Hinge{{0}, {1}, {3}} {
+		angle, err := f.Angle(h)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, by := range []float64{-0.5, 0, 0.5} {
+			moved, err := f.Move(h, angle+by*radian)
+			if err != nil {
+				t.Fatal(err)
+			}
+			g := moved.Geometry()
+			want, err := frozen(&Outline{g.Body, g.CowlInner, g.OuterAngle, g.Planes[0]}).Contour()
+			if err != nil {
+				t.Fatal(err)
+			}
+			if got, err := moved.Contour(); err != nil || math.Abs(got.Throat-want.Throat) > 1e-12*want.Throat {
+				t.Errorf("%s by %g deg: throat height %v m (%v), of the walls where they stand %v m", h.Name(), by, got.Throat, err, want.Throat)
+			}
+		}
+	}
+}

@@ -46,7 +46,13 @@ func (o *Outline) Geometry(outerLength float64) wave.Geometry {
 // ramps is the number of straight stretches of the body ahead of the shoulder.
 func (o *Outline) ramps() int { return o.shoulder() }
 
-// height returns y of a wall line at x, prolonged straight past its ends.
+// heightBetween is the vertical distance of the walls at x: the throat height of an
+// outline.
+func heightBetween(body, cowl []contour.Point, x float64) float64 {
+	return heightAt(cowl, x) - heightAt(body, x)
+}
+
+// heightAt is y of a wall line at x, prolonged straight past its ends.
 func heightAt(points []contour.Point, x float64) float64 {
 	i := 1
 	for i < len(points)-1 && points[i].X < x {
@@ -71,7 +77,7 @@ func (c *closure) take(o *Outline) {
 	c.Cowl, c.Wedge = c.CowlInner, c.CowlOuter-c.CowlInner
 	c.Given = c.Angles[n-1]
 	c.LipTurning = c.Given - c.Cowl
-	c.Throat = heightAt(o.CowlInner, o.ThroatX) - heightAt(o.Body, o.ThroatX)
+	c.Throat = heightBetween(o.Body, o.CowlInner, o.ThroatX)
 	if !(c.Throat > 0) {
 		c.err = &problems.Status{Phrase: "duct closed at the throat plane"}
 	}

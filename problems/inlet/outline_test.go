@@ -158,3 +158,15 @@ func TestTraceBesideTheChain(t *testing.T) {
 		t.Errorf("traced anew: %v, %v", err, again)
 	}
 }
+
+// Straight shocks tell nothing of a given outline, which is traced in every draw.
+func TestStraightClearanceOfAnOutline(t *testing.T) {
+	built := builtOf(t, outlined(t, veyric()), Tolerances{Mach: 0.02})
+	clearance := make([]float64, len(built.definition.Points))
+	built.StraightClearance(nil, []float64{0.01}, clearance)
+	for i, c := range clearance {
+		if !math.IsNaN(c) {
+			t.Errorf("clearance %v at point %d", c, i)
+		}
+	}
+}

@@ -105,7 +105,7 @@ type SpreadShare struct {
 
 // SpreadPoint is the share of the draws at a flight point in which a ramp shock
 // falls inside the lip: run straight, and by the trace, in which shocks that cross
-// merge on the way.
+// merge on the way. Of a given outline both are by the trace.
 type SpreadPoint struct {
 	At string `json:"at"`
 	SpreadShare
@@ -180,6 +180,9 @@ type SpreadDocument struct {
 // asBuilt says what a draw changes.
 const asBuilt = "A draw changes the built geometry and is never focused again: ramp lengths but the last, lip and throat wall stay as drawn, every ramp turns with the corner it starts at, and the last ramp ends where it meets the throat wall. Mach number and incidence are off by the same at every flight point. Where shocks cross or fall inside the lip a draw is traced wave by wave, coarsely: throat averages within 1 %."
 
+// outlineAsBuilt says the same of a given outline.
+const outlineAsBuilt = "The walls stay as given; Mach number and incidence are off by the same at every flight point. Every draw is traced wave by wave, coarsely: throat averages within 1 %."
+
 // sensitivityMethod names the estimators.
 const sensitivityMethod = "first order by Saltelli et al. (2010), total by Jansen (1999), on exact draws"
 
@@ -197,6 +200,9 @@ func NewSpread(head Head, study SpreadStudy, truncatedAt int) *SpreadDocument {
 		Sensitivity: append([]SpreadIndex{}, study.Sensitivity...), SensitivityBy: sensitivityMethod,
 		Fits: append([]SpreadFit{}, study.Fits...), Evaluations: study.Evaluations,
 		GeometryAsBuilt: asBuilt, Assumptions: assumptions(study.Problem.Definition()), study: study,
+	}
+	if study.outline() {
+		d.GeometryAsBuilt = outlineAsBuilt
 	}
 	for i := range d.Quantities {
 		q := &d.Quantities[i]
@@ -217,6 +223,9 @@ func NewSpread(head Head, study SpreadStudy, truncatedAt int) *SpreadDocument {
 
 // JSON returns the document as indented JSON.
 func (d *SpreadDocument) JSON() []byte { return document(d) }
+
+// outline reports whether the inlet is a given outline, of which every draw is traced.
+func (s *SpreadStudy) outline() bool { return s.Problem.Definition().Outline != nil }
 
 // judged reports whether a quantity belongs to the aim or to a limit.
 func (s *SpreadStudy) judged(quantity, at string) bool {

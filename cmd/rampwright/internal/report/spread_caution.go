@@ -44,8 +44,12 @@ func (s *SpreadStudy) shocksInside() (Caution, bool) {
 			also = append(also, fmt.Sprintf("%s %s %%", p.At, sharePercent(p.Share)))
 		}
 	}
-	text := fmt.Sprintf("In %s %% of the draws a ramp shock, run straight, falls inside the lip at %s; some merge ahead of it, and in %s %% one passes inside. It enters the duct, reflects there, heats the walls and may unstart the inlet. A lip set back from the focus keeps it out at the cost of capture.",
+	text := fmt.Sprintf("In %s %% of the draws a ramp shock, run straight, falls inside the lip at %s; some merge ahead of it, and in %s %% one passes inside.",
 		sharePercent(worst.Share), worst.At, sharePercent(worst.Traced))
+	if s.outline() {
+		text = fmt.Sprintf("In %s %% of the draws a ramp shock passes inside the lip at %s.", sharePercent(worst.Share), worst.At)
+	}
+	text += " It enters the duct, reflects there, heats the walls and may unstart the inlet. A lip set back from the focus keeps it out at the cost of capture."
 	if also != nil {
 		text += " Also: " + strings.Join(also, ", ") + "."
 	}
