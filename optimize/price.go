@@ -116,7 +116,7 @@ func scaled(v []float64, factor float64) []float64 {
 	return out
 }
 
-// balance solves the non-negative least squares problem of pricesAt by the active
+// balance solves the non-negative least squares problem of price by the active
 // set method of Lawson & Hanson (Solving Least Squares Problems, 1974, ch. 23).
 // Columns that depend on those already in are left out.
 func balance(slope []float64, columns [][]float64) []float64 {
@@ -165,6 +165,9 @@ func settle(slope []float64, columns [][]float64, x []float64, used []bool) bool
 				list = append(list, k)
 			}
 		}
+		if list == nil {
+			return true
+		}
 		solution, ok := leastSquares(slope, columns, list)
 		if !ok {
 			return false
@@ -172,8 +175,12 @@ func settle(slope []float64, columns [][]float64, x []float64, used []bool) bool
 		// Walk from x toward the solution until the first multiplier vanishes.
 		reach := 1.0
 		for i, k := range list {
-			if solution[i] <= 0 {
+			switch {
+			case solution[i] > 0:
+			case x[k] > 0:
 				reach = math.Min(reach, x[k]/(x[k]-solution[i]))
+			default: // just taken in, and already of no use
+				reach = 0
 			}
 		}
 		for i, k := range list {

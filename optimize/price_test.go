@@ -122,3 +122,14 @@ func TestBalanceWithRepeatedColumns(t *testing.T) {
 		t.Errorf("multipliers %v", x)
 	}
 }
+
+// A column at right angles to the slope balances nothing: it is given up at once.
+func TestColumnsOfNoUseAreGivenUp(t *testing.T) {
+	for _, columns := range [][][]float64{{{0, 1}}, {{0, 1}, {1, 0}}} {
+		x, used := make([]float64, len(columns)), make([]bool, len(columns))
+		used[0] = true
+		if !settle([]float64{-1, 0}, columns, x, used) || x[0] != 0 || used[0] {
+			t.Errorf("columns %v: multipliers %v, used %v", columns, x, used)
+		}
+	}
+}

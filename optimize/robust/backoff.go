@@ -3,6 +3,7 @@ package robust
 import (
 	"cmp"
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -88,6 +89,15 @@ func drawsOf(confidence float64, n int) int {
 	return max(n, int(math.Ceil(tailDraws/(1-confidence))))
 }
 
+// checkConfidence refuses what is no confidence, or asks for too many draws.
+func checkConfidence(confidence float64) error {
+	const most = 1 - float64(tailDraws)/mostDraws
+	if !(confidence > 0 && confidence <= most) {
+		return fmt.Errorf("confidence %g is not within 0 to %g", confidence, most)
+	}
+	return nil
+}
+
 // aimed is the probability a round aims at so that fresh draws confirm the
 // confidence in spite of the errors of both samples: two standard errors above it,
 // and not more than half way to 1.
@@ -108,16 +118,17 @@ func aimed(confidence float64, draws int) float64 {
 // many on, a cut keeps the search where draws have answers (our rule). It ends when
 // every limit holds as aimed and the shifts are at rest; the best design that holds
 // them is then judged, with the nominal one, over fresh draws. A search that finds
-// nothing ends it as well.
+// nothing ends it as well. The error reports a goal or setting that makes no sense,
+// a model or search that could not be run, or a context that ended.
 func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (*Backoff, error) {
 	b := &built{problem: goal.Problem, scatter: goal.Problem.Scatter(), width: len(goal.Problem.Quantities())}
 	if len(b.scatter) == 0 {
 		return nil, ErrNothingScatters
 	}
-	if !(goal.Confidence > 0 && goal.Confidence < 1) {
-		return nil, fmt.Errorf("confidence %g is not within (0, 1)", goal.Confidence)
-	}
 	settings = settings.WithDefaults(len(b.scatter))
+	if err := errors.Join(checkConfidence(goal.Confidence), settings.Validate(len(b.scatter))); err != nil {
+		return nil, err
+	}
 	limits, err := limitedBy(goal.Problem.Quantities(), goal.Limits)
 	if err != nil {
 		return nil, err

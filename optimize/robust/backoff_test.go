@@ -3,6 +3,7 @@ package robust
 import (
 	"context"
 	"math"
+	"strings"
 	"testing"
 
 	"rampwright/problems"
@@ -149,6 +150,18 @@ func TestDrawsEnoughForTheConfidence(t *testing.T) {
 		}
 		if p := aimed(c, n); p < c || p > (1+c)/2 {
 			t.Errorf("confidence %v aims at %v", c, p)
+		}
+	}
+}
+
+// What makes no sense is refused at once and in one answer: no negative number of
+// workers is waited for, no confidence asks for draws without end.
+func TestBackOffRefuses(t *testing.T) {
+	nothing := func(context.Context, Question) (Found, error) { panic("searched") }
+	for _, confidence := range []float64{-1, 0, 1, 1 - 1e-9, math.NaN()} {
+		_, err := BackOff(context.Background(), Goal{Problem: shiftedBy(0.1), Confidence: confidence}, Settings{Jobs: -1}, nothing)
+		if err == nil || !strings.Contains(err.Error(), "confidence") || !strings.Contains(err.Error(), "jobs -1") {
+			t.Errorf("confidence %v: %v", confidence, err)
 		}
 	}
 }
