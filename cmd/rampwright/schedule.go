@@ -160,6 +160,13 @@ func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, er
 	s.Points, s.Jobs, s.Highest = flags.points, a.jobs, plan.aim.Highest
 	s.Limits, err = study.limitsAt(&plan.limitsOf, problems.Geometry)
 	note(err)
+	// The library takes a zero for its default; typed, it is a mistake.
+	if flags.points < 2 {
+		note(fmt.Errorf("--points %d: at least two", flags.points))
+	}
+	if a.jobs < 1 {
+		note(fmt.Errorf("--jobs %d: at least one", a.jobs))
+	}
 	if wrong == nil {
 		frozen := envelope.Freeze(study.problem, x, plan.air, mapTrace)
 		if plan.moving, err = envelope.Hang(frozen, plan.hinge); err != nil {
@@ -189,7 +196,10 @@ func parseMove(text string) (hinge inlet.Hinge, low, high float64, err error) {
 			return hinge, 0, 0, fmt.Errorf("--move %q: the angle is cowl_angle_deg or ramp_1_angle_deg, ramp_2_angle_deg and so on", text)
 		}
 	}
-	low, high, err = rangeOr("--move "+name+"=", stops, func() (float64, float64) { return 0, 0 })
+	if stops == "" {
+		return hinge, 0, 0, fmt.Errorf("--move %q: the hinge stops are missing, such as %s=2..9", text, name)
+	}
+	low, high, err = rangeOr("--move "+name+"=", stops, nil)
 	return hinge, low, high, err
 }
 

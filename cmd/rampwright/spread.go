@@ -64,7 +64,7 @@ func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) 
 	settings := robust.Settings{Draws: draws, Seed: of.brief.Effort.Seed, Jobs: a.jobs}
 	inputs := len(built.Scatter())
 	if err := settings.WithDefaults(inputs).Validate(inputs); err != nil && a.jobs >= 1 {
-		return &usageError{"--" + err.Error(), fmt.Sprintf("%d or more", robust.LeastDraws)}
+		return &usageError{"--" + strings.ReplaceAll(err.Error(), "\n", "; "), fmt.Sprintf("%d or more", robust.LeastDraws)}
 	}
 	s, err := a.openSession(dir, "spread", of, []*study{of})
 	if err != nil {

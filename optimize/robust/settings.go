@@ -66,10 +66,11 @@ func (s Settings) WithDefaults(n int) Settings {
 // inputs.
 func (s Settings) Validate(n int) error {
 	var wrong []error
-	if s.Draws < LeastDraws || s.Draws > mostDraws {
+	enough := s.Draws >= LeastDraws && s.Draws <= mostDraws
+	if !enough {
 		wrong = append(wrong, fmt.Errorf("draws %d: allowed %d to %d", s.Draws, LeastDraws, mostDraws))
 	}
-	if most := s.Draws / 2; s.Replaced < 2 || s.Replaced > most {
+	if most := s.Draws / 2; s.Replaced < 2 || enough && s.Replaced > most {
 		wrong = append(wrong, fmt.Errorf("base draws of the sensitivity %d: allowed 2 to half the draws, %d", s.Replaced, most))
 	}
 	if least := n + 2; s.Samples < least {
