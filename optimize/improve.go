@@ -168,5 +168,5 @@ func (a *acquisition) aim(u []float64) (mean, deviation float64) {
 		deviation = math.Hypot(deviation, a.plan.objective.value(a.values)-mean)
 		a.values[i] -= deviations[k]
 	}
-	return mean, math.Max(deviation, tiny*math.Abs(a.best.aim))
+	return mean, math.Max(deviation, tiny*math.Max(math.Abs(a.best.aim), tiny))
 }

@@ -16,6 +16,7 @@ import (
 	"rampwright/cmd/rampwright/internal/report"
 	"rampwright/cmd/rampwright/internal/runstore"
 	"rampwright/optimize"
+	"rampwright/problems"
 	"rampwright/problems/inlet"
 )
 
@@ -114,22 +115,8 @@ func (a *app) design(study *study, dir string) (err error) {
 		return a.cutShort(err, interruption)
 	}
 	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
-	searched, err := a.withConfidence(ctx, study, cached, settings, &finished)
-	if err != nil {
+	if err := a.followUp(ctx, study, cached, settings, &finished); err != nil {
 		return err
-	}
-	if err := a.afterwards(ctx, searched, settings, &finished); err != nil && ctx.Err() == nil {
-		return err // a search that was cut short is left out, and the document says so
-	}
-	if result = finished.Result; searched != study {
-		if err := judgeAsAsked(study, result); err != nil {
-			return err
-		}
-	}
-	if study.problem != nil {
-		if finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), result.Best.X); err != nil {
-			return err
-		}
 	}
 	document := report.NewDesign(study.head(settings.Seed), finished)
 	files, err := resultFiles(study, document, &finished, runRecord(began, a.jobs, counter))
@@ -148,7 +135,28 @@ func (a *app) design(study *study, dir string) (err error) {
 		return err
 	}
 	a.say("result folder: %s\n", folder.Dir())
-	return ending(result, interruption)
+	return ending(finished.Result, interruption)
+}
+
+// followUp does what follows a search: the design that holds the confidence of the
+// brief in place of the first, what is known of it on the exact model, its flow.
+func (a *app) followUp(ctx context.Context, study *study, cached problems.Problem, settings optimize.Settings, finished *report.Study) error {
+	searched, err := a.withConfidence(ctx, study, cached, settings, finished)
+	if err != nil {
+		return err
+	}
+	if err := a.afterwards(ctx, searched, settings, finished); err != nil && ctx.Err() == nil {
+		return err // a search that was cut short is left out, and the document says so
+	}
+	if searched != study {
+		if err := judgeAsAsked(study, finished.Result); err != nil {
+			return err
+		}
+	}
+	if study.problem != nil {
+		finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), finished.Result.Best.X)
+	}
+	return err
 }
 
 // cutShort gives an end that came before there was anything to keep its code.

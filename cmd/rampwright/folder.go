@@ -57,10 +57,7 @@ func (f filesFolder) write(files []file) error {
 	for _, each := range files {
 		fresh[each.name] = true
 		name := filepath.Join(f.dir, each.name)
-		if err := os.WriteFile(name+".part", each.data, 0o666); err != nil {
-			return err
-		}
-		if err := os.Rename(name+".part", name); err != nil {
+		if err := replaceFile(name, each.data); err != nil {
 			return err
 		}
 	}
@@ -76,4 +73,18 @@ func (f filesFolder) write(files []file) error {
 		}
 	}
 	return nil
+}
+
+// replaceFile writes a file beside its place and moves it there; a failure leaves
+// nothing beside it.
+func replaceFile(name string, data []byte) error {
+	part := name + ".part"
+	err := os.WriteFile(part, data, 0o666)
+	if err == nil {
+		err = os.Rename(part, name)
+	}
+	if err != nil {
+		_ = os.Remove(part) // the failure is the news
+	}
+	return err
 }

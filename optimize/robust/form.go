@@ -65,7 +65,7 @@ func FORM(inputs int, margin func(u, gradient []float64) float64) (Reliability, 
 			next[j] = factor*gradient[j] - u[j] // the step
 		}
 		if norm(next) <= formTolerance*math.Max(1, norm(u)) && math.Abs(g) <= formTolerance*scale {
-			return newReliability(u, start, step), nil
+			return newReliability(u, gradient, start, step), nil
 		}
 		penalty := 2*norm(u)/math.Sqrt(steep) + 10
 		merit := func(u []float64, g float64) float64 { return dot(u, u)/2 + penalty*math.Abs(g) }
@@ -86,13 +86,14 @@ func FORM(inputs int, margin func(u, gradient []float64) float64) (Reliability, 
 	return Reliability{}, &NoPoint{formSteps, g, norm(u)}
 }
 
-func newReliability(u []float64, start float64, steps int) Reliability {
+// newReliability describes the point u of zero margin. It lies along the gradient
+// there, which has a direction where u is the origin as well.
+func newReliability(u, gradient []float64, start float64, steps int) Reliability {
 	beta := norm(u)
 	r := Reliability{Beta: beta, Point: u, Importance: make([]float64, len(u)), Iterations: steps}
-	for j, v := range u {
-		if beta > 0 {
-			r.Importance[j] = v * v / (beta * beta)
-		}
+	steep := dot(gradient, gradient)
+	for j, v := range gradient {
+		r.Importance[j] = v * v / steep
 	}
 	if start < 0 {
 		r.Beta = -beta

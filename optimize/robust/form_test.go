@@ -104,3 +104,19 @@ func TestFormWithoutAPoint(t *testing.T) {
 		t.Errorf("a surface bent inside the sphere has probability %v", p)
 	}
 }
+
+// A margin that is already zero at the origin, as of a design on its limit: even
+// odds, and the inputs share by the slope.
+func TestFormOfALimitWithoutMargin(t *testing.T) {
+	r, err := FORM(2, func(u, gradient []float64) float64 {
+		gradient[0], gradient[1] = 3, -4
+		return 3*u[0] - 4*u[1]
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "beta", r.Beta, 0, 1e-15)
+	near(t, "probability", r.Failure, 0.5, 1e-15)
+	near(t, "share of the first", r.Importance[0], 0.36, 1e-15)
+	near(t, "share of the second", r.Importance[1], 0.64, 1e-15)
+}
