@@ -246,7 +246,7 @@ func (d *designer) status(ctx context.Context, best *Candidate) Status {
 		return Interrupted
 	case !best.Assessment.Feasible:
 		return Infeasible
-	case !best.confirmed() || !(best.SurrogateError <= d.settings.Agreement):
+	case !best.Verified(d.settings.Agreement):
 		return NotVerified
 	}
 	return Verified

@@ -67,6 +67,21 @@ func (c *Candidate) verify(ctx context.Context, problem problems.Problem) error 
 	return nil
 }
 
+// Judge holds a candidate against other limits than those it was searched with, by
+// both routes. Prices are not known of them.
+func (c *Candidate) Judge(rows []constraints.Row) {
+	c.Assessment, c.Broken = constraints.Assess(rows, c.Exact), nil
+	if c.Second != nil {
+		c.Broken = broken(c.Assessment, c.Second)
+	}
+}
+
+// Verified reports whether a design that holds its limits is borne out: by a second
+// computation, and by surrogates that foresaw it to the agreement.
+func (c *Candidate) Verified(agreement float64) bool {
+	return c.confirmed() && c.SurrogateError <= agreement
+}
+
 // broken lists the limits that are met but for the values of a second route that
 // resolves them better.
 func broken(assessment constraints.Assessment, second *problems.Evaluation) []constraints.Check {

@@ -63,5 +63,18 @@ func TestLimitsHoldOnTheFinerRoute(t *testing.T) {
 		if len(candidate.Broken) != c.broken || candidate.confirmed() == (c.broken > 0) {
 			t.Errorf("%g finely: %d limits broken, confirmed %t", c.fine, len(candidate.Broken), candidate.confirmed())
 		}
+		// Against limits loosened to what the finer route holds, nothing is broken.
+		looser, err := constraints.Rows(
+			[]problems.Quantity{{Name: "traced"}, {Name: "exact"}}, []problems.Limit{{Quantity: "traced", Low: 0.98, High: math.Inf(1)}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		candidate.Second = second
+		if candidate.Judge(looser); len(candidate.Broken) > 0 || !candidate.Verified(1e-3) || len(candidate.Assessment.Checks) != 1 {
+			t.Errorf("against looser limits: %+v", candidate)
+		}
+		if candidate.SurrogateError = 2e-3; candidate.Verified(1e-3) {
+			t.Error("verified by surrogates that were wrong")
+		}
 	}
 }

@@ -56,9 +56,6 @@ func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Pro
 	}
 	finished.Result = b.results[answer.Chosen]
 	finished.Confidence = b.describe(answer)
-	if !answer.Met && finished.Result.Status == optimize.Verified {
-		finished.Result.Status = optimize.NotVerified
-	}
 	round := &answer.Rounds[answer.Chosen]
 	searched := *of
 	guarded, guard := round.Cut.Guard(of.model)
@@ -144,8 +141,11 @@ func priceOf(r *optimize.Result, limit problems.Limit) float64 {
 }
 
 // judgeAsAsked judges a backed-off result on the limits of the brief, which its
-// search had moved, and drops the quantity it had added.
-func judgeAsAsked(of *study, result *optimize.Result) error {
+// search had moved, and drops the quantity it had added. What held the moved limits
+// holds these, but a finer trace may break the moved ones alone; and what does not
+// hold them with the confidence is not verified.
+func judgeAsAsked(of *study, finished *report.Study) error {
+	result := finished.Result
 	rows, err := constraints.Rows(of.model.Quantities(), of.limits)
 	if err != nil {
 		return fmt.Errorf("limits of the brief: %w", err)
@@ -159,6 +159,12 @@ func judgeAsAsked(of *study, result *optimize.Result) error {
 		judgeAnew(&result.Candidates[i], rows, width)
 	}
 	judgeAnew(&result.Best, rows, width)
+	if result.Status == optimize.Verified || result.Status == optimize.NotVerified {
+		result.Status = optimize.NotVerified
+		if finished.Confidence.Met && result.Best.Verified(finished.Agreement) {
+			result.Status = optimize.Verified
+		}
+	}
 	return nil
 }
 
@@ -166,7 +172,7 @@ func judgeAnew(c *optimize.Candidate, rows []constraints.Row, width int) {
 	trim(c.Exact, width)
 	trim(c.Second, width)
 	c.Predicted = c.Predicted[:min(width, len(c.Predicted))]
-	c.Assessment = constraints.Assess(rows, c.Exact)
+	c.Judge(rows)
 }
 
 // trim drops the values behind the first.

@@ -149,7 +149,7 @@ func (a *app) followUp(ctx context.Context, study *study, cached problems.Proble
 		return err // a search that was cut short is left out, and the document says so
 	}
 	if searched != study {
-		if err := judgeAsAsked(study, finished.Result); err != nil {
+		if err := judgeAsAsked(study, finished); err != nil {
 			return err
 		}
 	}
