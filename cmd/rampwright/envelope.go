@@ -141,6 +141,9 @@ func (a *app) envelopePlan(study *study, flags envelopeFlags) (*envelopePlan, er
 	if err != nil {
 		return nil, err
 	}
+	if err := study.closes(x); err != nil {
+		return nil, err
+	}
 	plan := &envelopePlan{study: study, x: x, air: study.air(), limitsOf: flags.limitsOf}
 	s := &plan.settings
 	var wrong []error
@@ -174,6 +177,14 @@ func (a *app) envelopePlan(study *study, flags envelopeFlags) (*envelopePlan, er
 	plan.frozen = envelope.Freeze(study.problem, x, plan.air, mapTrace)
 	s.Boundaries = plan.frozen.With(inlet.SearchTrace())
 	return plan, nil
+}
+
+// closes refuses a geometry without a contour: there is nothing to fly.
+func (s *study) closes(x []float64) error {
+	if _, err := s.problem.Freeze(x).Contour(); err != nil {
+		return &usageError{"the contour does not close: " + err.Error(), "choose other angles; flow tells how far the shocks hold"}
+	}
+	return nil
 }
 
 // air is that of the design point: its dynamic pressure where the brief states one.

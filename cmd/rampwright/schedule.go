@@ -137,6 +137,9 @@ func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, er
 	if err != nil {
 		return nil, err
 	}
+	if err := study.closes(x); err != nil {
+		return nil, err
+	}
 	plan := &schedulePlan{air: study.air(), limitsOf: flags.limitsOf}
 	s := &plan.settings
 	var wrong []error
