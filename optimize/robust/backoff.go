@@ -285,6 +285,7 @@ func (o *Backoff) verify(ctx context.Context, goal Goal, b *built, limits []limi
 	return nil
 }
 
+// fresh tells how often the limits of the design at x hold over draws of its own.
 func fresh(ctx context.Context, b *built, x []float64, limits []limited, deviates [][]float64, jobs int) ([]Probability, Probability, error) {
 	b.x = x
 	all, err := b.evaluate(ctx, "", append([][]float64{make([]float64, len(b.scatter))}, deviates...), jobs)

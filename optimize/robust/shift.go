@@ -30,6 +30,7 @@ func unshifted(limits []limited) []Shift {
 	return list
 }
 
+// applied are the limits moved inside.
 func applied(shifts []Shift) []problems.Limit {
 	list := make([]problems.Limit, len(shifts))
 	for i := range shifts {

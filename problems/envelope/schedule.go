@@ -3,7 +3,6 @@ package envelope
 import (
 	"context"
 	"errors"
-	"fmt"
 	"math"
 	"runtime"
 
@@ -68,23 +67,18 @@ func (s ScheduleSettings) withDefaults() ScheduleSettings {
 // Validate reports, all at once, every setting out of its range, each an *Invalid.
 func (s ScheduleSettings) Validate() error {
 	s = s.withDefaults()
-	var faults []error
-	require := func(ok bool, format string, args ...any) {
-		if !ok {
-			faults = append(faults, &Invalid{fmt.Sprintf(format, args...)})
-		}
-	}
-	require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
-	require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
-	require(math.Abs(s.Incidence/radian) <= MostIncidence, "incidence %.6g deg is not within %g deg", s.Incidence/radian, MostIncidence)
-	require(s.LowAngle < s.HighAngle, "hinge stops %.6g to %.6g deg have no room between them", s.LowAngle/radian, s.HighAngle/radian)
-	require(s.LowAngle > -math.Pi/4 && s.HighAngle < math.Pi/4, "hinge stops %.6g to %.6g deg are not within -45 to 45 deg", s.LowAngle/radian, s.HighAngle/radian)
-	require(s.Points >= 2 && s.Points <= MostPoints, "%d Mach numbers are not within 2 to %d", s.Points, MostPoints)
-	require(s.Angles >= 5 && s.Angles <= 1000, "%d positions are not within 5 to 1000", s.Angles)
-	require(s.Tolerance >= 1e-9 && s.Tolerance <= 0.01, "angle tolerance %g rad is not within 1e-9 to 0.01", s.Tolerance)
-	require(s.Jobs >= 1, "%d jobs: at least one", s.Jobs)
-	require(s.Aim != nil, "a schedule needs an aim")
-	return errors.Join(faults...)
+	var wrong faults
+	wrong.require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
+	wrong.require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
+	wrong.require(math.Abs(s.Incidence/radian) <= MostIncidence, "incidence %.6g deg is not within %g deg", s.Incidence/radian, MostIncidence)
+	wrong.require(s.LowAngle < s.HighAngle, "hinge stops %.6g to %.6g deg have no room between them", s.LowAngle/radian, s.HighAngle/radian)
+	wrong.require(s.LowAngle > -math.Pi/4 && s.HighAngle < math.Pi/4, "hinge stops %.6g to %.6g deg are not within -45 to 45 deg", s.LowAngle/radian, s.HighAngle/radian)
+	wrong.require(s.Points >= 2 && s.Points <= MostPoints, "%d Mach numbers are not within 2 to %d", s.Points, MostPoints)
+	wrong.require(s.Angles >= 5 && s.Angles <= 1000, "%d positions are not within 5 to 1000", s.Angles)
+	wrong.require(s.Tolerance >= 1e-9 && s.Tolerance <= 0.01, "angle tolerance %g rad is not within 1e-9 to 0.01", s.Tolerance)
+	wrong.require(s.Jobs >= 1, "%d jobs: at least one", s.Jobs)
+	wrong.require(s.Aim != nil, "a schedule needs an aim")
+	return errors.Join(wrong...)
 }
 
 // Missed is a limit that does not hold.

@@ -74,26 +74,30 @@ type Invalid struct {
 
 func (e *Invalid) Error() string { return e.What }
 
+// faults gathers what is wrong with settings, each an *Invalid.
+type faults []error
+
+func (f *faults) require(ok bool, format string, args ...any) {
+	if !ok {
+		*f = append(*f, &Invalid{fmt.Sprintf(format, args...)})
+	}
+}
+
 // Validate reports, all at once, every setting out of its range, each an *Invalid.
 func (s Settings) Validate() error {
 	s = s.withDefaults()
-	var faults []error
-	require := func(ok bool, format string, args ...any) {
-		if !ok {
-			faults = append(faults, &Invalid{fmt.Sprintf(format, args...)})
-		}
-	}
-	require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
-	require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
+	var wrong faults
+	wrong.require(min(s.LowMach, s.HighMach) >= LeastMach && max(s.LowMach, s.HighMach) <= MostMach, "Mach numbers %g to %g are not within %g to %g", s.LowMach, s.HighMach, LeastMach, MostMach)
+	wrong.require(s.LowMach < s.HighMach, "the range of Mach numbers %g to %g has no length", s.LowMach, s.HighMach)
 	low, high := s.LowIncidence/radian, s.HighIncidence/radian
-	require(math.Max(math.Abs(low), math.Abs(high)) <= MostIncidence+1e-9, "incidences %.6g to %.6g deg are not within %g to %g deg", low, high, -MostIncidence, MostIncidence)
-	require(low < high, "the range of incidences %.6g to %.6g deg has no length", low, high)
-	require(s.MachPoints >= 2 && s.MachPoints <= MostPoints, "%d Mach numbers are not within 2 to %d", s.MachPoints, MostPoints)
-	require(s.IncidencePoints >= 2 && s.IncidencePoints <= MostPoints, "%d incidences are not within 2 to %d", s.IncidencePoints, MostPoints)
-	require(s.Tolerance >= 1e-10 && s.Tolerance <= 0.1, "boundary tolerance %g is not within 1e-10 to 0.1", s.Tolerance)
-	require(s.Flatness >= 1e-4 && s.Flatness <= 1, "flatness %g is not within 1e-4 to 1", s.Flatness)
-	require(s.Jobs >= 1, "%d jobs: at least one", s.Jobs)
-	return errors.Join(faults...)
+	wrong.require(math.Max(math.Abs(low), math.Abs(high)) <= MostIncidence+1e-9, "incidences %.6g to %.6g deg are not within %g to %g deg", low, high, -MostIncidence, MostIncidence)
+	wrong.require(low < high, "the range of incidences %.6g to %.6g deg has no length", low, high)
+	wrong.require(s.MachPoints >= 2 && s.MachPoints <= MostPoints, "%d Mach numbers are not within 2 to %d", s.MachPoints, MostPoints)
+	wrong.require(s.IncidencePoints >= 2 && s.IncidencePoints <= MostPoints, "%d incidences are not within 2 to %d", s.IncidencePoints, MostPoints)
+	wrong.require(s.Tolerance >= 1e-10 && s.Tolerance <= 0.1, "boundary tolerance %g is not within 1e-10 to 0.1", s.Tolerance)
+	wrong.require(s.Flatness >= 1e-4 && s.Flatness <= 1, "flatness %g is not within 1e-4 to 1", s.Flatness)
+	wrong.require(s.Jobs >= 1, "%d jobs: at least one", s.Jobs)
+	return errors.Join(wrong...)
 }
 
 // Survey is a finished map.

@@ -52,6 +52,22 @@ func (d *EnvelopeDocument) machSpan() chart.Span {
 	return chart.Span{Label: "free-stream Mach number", Low: s.LowMach, High: s.HighMach}
 }
 
+// curve lists n points of a line, with a gap where y is missing.
+func curve(n int, at func(i int) (x, y float64)) []chart.LinePoint {
+	var points []chart.LinePoint
+	gap := false
+	for i := range n {
+		x, y := at(i)
+		if !finite(y) {
+			gap = true
+			continue
+		}
+		points = append(points, chart.LinePoint{X: x, Y: y, Gap: gap && points != nil})
+		gap = false
+	}
+	return points
+}
+
 // curvesShown is how many incidences a picture against Mach number has at most.
 const curvesShown = 5
 
@@ -74,17 +90,10 @@ func (d *EnvelopeDocument) Against(quantity, label string) ([]byte, error) {
 		}
 		last = j
 		line := chart.Line{Name: fmt.Sprintf("incidence %s deg", plain(float64(d.Grid.IncidenceDeg[j])))}
-		gap := false
-		for i := range d.Grid.Mach {
+		line.Points = curve(len(d.Grid.Mach), func(i int) (x, y float64) {
 			row := &d.Rows[i*m+j]
-			v := row.value(quantity)
-			if !finite(v) {
-				gap = true
-				continue
-			}
-			line.Points = append(line.Points, chart.LinePoint{X: float64(row.Mach), Y: v, Gap: gap && line.Points != nil})
-			gap = false
-		}
+			return float64(row.Mach), row.value(quantity)
+		})
 		if line.Points != nil {
 			c.Lines = append(c.Lines, line)
 		}

@@ -300,16 +300,13 @@ func (d *ScheduleDocument) Picture() ([]byte, error) {
 		{"least miss of the limits", false, func(r *ScheduleRow) Number { return r.AngleDeg }},
 	} {
 		line := chart.Line{Name: of.name, Lead: of.lead}
-		gap := false
-		for i := range d.Rows {
+		line.Points = curve(len(d.Rows), func(i int) (x, y float64) {
 			row := &d.Rows[i]
 			if row.LimitsKept == (of.name == "least miss of the limits") {
-				gap = true
-				continue
+				return float64(row.Mach), math.NaN()
 			}
-			line.Points = append(line.Points, chart.LinePoint{X: float64(row.Mach), Y: float64(of.read(row)), Gap: gap && line.Points != nil})
-			gap = false
-		}
+			return float64(row.Mach), float64(of.read(row))
+		})
 		if line.Points != nil {
 			c.Lines = append(c.Lines, line)
 		}
