@@ -122,6 +122,17 @@ func TestSpreadDocument(t *testing.T) {
 	}
 }
 
+// A limit that asks nothing of the design as drawn, only of some draws, has a strip
+// without a mark.
+func TestSpreadPictureOfALimitBesideTheDesign(t *testing.T) {
+	study := scattered(t)
+	study.Limits[1].Nominal = Number(math.Inf(1))
+	picture, err := NewSpread(head, study, 4).Picture()
+	if err != nil || !bytes.Contains(picture, []byte("separation_margin")) {
+		t.Fatalf("no strip of the limit: %v", err)
+	}
+}
+
 func TestSharePercent(t *testing.T) {
 	for share, want := range map[Number]string{1: "100.0", 0.9999: "> 99.9", 0.9994: "99.9", 0.5: "50.0", 0.0001: "< 0.1", 0: "0.0"} {
 		if got := sharePercent(share); got != want {

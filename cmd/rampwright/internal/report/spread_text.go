@@ -291,9 +291,13 @@ func (d *SpreadDocument) Picture() ([]byte, error) {
 		band := func(b SpreadBand) chart.Band {
 			return chart.Band{Low: float64(b.P05) / scale, Middle: float64(b.P50) / scale, High: float64(b.P95) / scale}
 		}
+		mark := float64(l.Nominal) / scale
+		if !finite(mark) { // the limit asks nothing of the design as drawn, only of some draws
+			mark = math.NaN()
+		}
 		picture.Rows = append(picture.Rows, chart.Strip{
 			Name: aimPhrase(l.Quantity, l.At) + " " + bounds(l.low, l.high), Note: sharePercent(l.Probability),
-			Mark: float64(l.Nominal) / scale, Bands: []chart.Band{band(l.Margin), band(l.Fitted)},
+			Mark: mark, Bands: []chart.Band{band(l.Margin), band(l.Fitted)},
 		})
 	}
 	if len(picture.Rows) == 0 {
