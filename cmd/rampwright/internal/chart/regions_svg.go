@@ -153,6 +153,12 @@ func (d linesSheet) regionLabels(m RegionMap, p panel) []label {
 	}
 	s.taken = append(s.taken, box{0, p.frame.bottom() - 2, sheetWidth, farBelow})
 	s.place(labels)
+	for i := range labels {
+		if l := &labels[i]; l.box.y >= s.low { // from beyond every spot to right below the axis
+			l.box.y -= farBelow - belowAxes
+			l.leader.a.y -= farBelow - belowAxes
+		}
+	}
 	return labels
 }
 

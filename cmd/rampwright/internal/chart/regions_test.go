@@ -83,6 +83,40 @@ func TestRegionMapIsDrawn(t *testing.T) {
 	}
 }
 
+// A name without room in the frame stands right below the axis, and the sheet is no
+// taller for it than its row.
+func TestNamesBelowARegionMap(t *testing.T) {
+	m := RegionMap{
+		Title: "t", X: Span{"Mach number", 1, 10}, Y: Span{"incidence, deg", -10, 10},
+		NX: 2, NY: 2, Cells: make([]int, 4), Dots: make([]bool, 4), Classes: []string{"attached"},
+	}
+	for k := range 60 { // strokes everywhere, the last of them named in the lower left corner
+		y := -10 + float64(k)/3
+		m.Lines = append(m.Lines, RegionLine{Name: "many", Points: [][2]float64{{1, y}, {10, y}}})
+	}
+	for k := range 25 {
+		m.Lines = append(m.Lines, RegionLine{Name: fmt.Sprintf("a name that takes much room in the frame, number %d", k), Points: [][2]float64{{1.2, -9.9}, {1.3, -9.8}}})
+	}
+	d := linesSheet{faces: newTypefaces()}
+	p := d.newPanel(box{margin + axisRoom, 0, sheetWidth - 2*margin - axisRoom, regionHeight}, m.X, m.Y)
+	below := 0
+	for _, l := range d.regionLabels(m, p) {
+		if l.box.y < p.frame.bottom() {
+			continue
+		}
+		below++
+		if l.box.y < p.frame.bottom()+belowAxes || l.box.bottom() > p.frame.bottom()+belowAxes+float64(len(m.Lines))*20 {
+			t.Errorf("%s stands %g below the frame", l.name, l.box.y-p.frame.bottom())
+		}
+		if end := l.leader.a; l.led && !l.box.grow(1).contains(end) {
+			t.Errorf("the leader of %s ends at %v, its box is %v", l.name, end, l.box)
+		}
+	}
+	if below == 0 {
+		t.Error("every name has room in the frame: the test shows nothing")
+	}
+}
+
 func TestInvalidRegions(t *testing.T) {
 	m := RegionMap{
 		X: Span{"x", 1, 1}, NX: 1, NY: 2, Cells: []int{4}, Classes: make([]string, 20),
