@@ -233,6 +233,9 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	defer interruption.stop()
 	progress := a.progress()
 	result, err := runFits(ctx, plan, func(done, total int) {
+		if ctx.Err() != nil {
+			return // what is left is not fitted
+		}
 		progress.show(stage{phase: "fitting", done: done, total: total, unit: "design"})
 	})
 	progress.end()

@@ -76,7 +76,11 @@ func (a *app) report(dir string, with []string, file string) error {
 
 // resultFolder reads what a page needs of the result folder of a design.
 func resultFolder(dir string) (*report.Folder, error) {
-	if _, err := runstore.ReadMark(dir); err != nil {
+	var refused *runstore.Refused
+	switch _, err := runstore.ReadMark(dir); {
+	case errors.As(err, &refused) && refused.Why == runstore.NotOurs:
+		return nil, &usageError{"no finished design there: " + dir + " is no result folder of a design", "rampwright design writes one"}
+	case err != nil:
 		return nil, err
 	}
 	folder := new(report.Folder)

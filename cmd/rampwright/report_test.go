@@ -71,7 +71,8 @@ func TestReportOfNoResult(t *testing.T) {
 		code int
 		want string
 	}{
-		{[]string{"report", empty}, exitError, "rampwright"},
+		{[]string{"report", empty}, exitUsage, "no finished design there"},
+		{[]string{"compare", damaged + "-no", empty}, exitUsage, "-no is no result folder of a design"},
 		{[]string{"report", unfinished}, exitUsage, "no finished design there"},
 		{[]string{"report", damaged}, exitError, "damaged: result.json"},
 		{[]string{"report"}, exitUsage, "expected 1 argument"},

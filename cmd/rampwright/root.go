@@ -50,6 +50,7 @@ Exit codes:
 			}
 			return cmd.Help()
 		},
+		PersistentPreRunE: func(cmd *cobra.Command, args []string) error { return refuseEmpty(cmd) },
 	}
 	root.SetIn(a.in)
 	root.SetOut(a.out)
@@ -82,6 +83,27 @@ func unknownCommand(root *cobra.Command, name string) error {
 		hint = "did you mean " + strings.Join(near, " or ") + "? " + hint
 	}
 	return &usageError{fmt.Sprintf("there is no command %q", name), hint}
+}
+
+// worded are the flags, beside those of the brief, that take a text.
+var worded = []string{
+	"of", "output", "mach", "incidence-deg", "points", "limits-of", "move", "highest", "lowest", "svg", "at",
+	"between", "count", "counts", "kinds", "scenario", "time-limit",
+}
+
+// refuseEmpty refuses a flag that was given an empty text, which would otherwise
+// read like one that was not given. Those of the brief are judged with the brief.
+func refuseEmpty(cmd *cobra.Command) error {
+	var empty []string
+	for _, name := range worded {
+		if flag := cmd.Flags().Lookup(name); flag != nil && flag.Changed && flag.Value.String() == "" {
+			empty = append(empty, "--"+name)
+		}
+	}
+	if empty == nil {
+		return nil
+	}
+	return &usageError{strings.Join(empty, ", ") + ": the flag has an empty value", "see " + cmd.CommandPath() + " --help"}
 }
 
 // exactArgs refuses a wrong number of arguments as bad usage.

@@ -21,7 +21,7 @@ type scheduleFlags struct {
 	of        string
 	move      string
 	mach      string
-	incidence float64
+	incidence *float64 // deg; nil where none is given
 	points    int
 	limitsOf  string
 	highest   string
@@ -31,6 +31,7 @@ type scheduleFlags struct {
 
 func (a *app) scheduleCommand() *cobra.Command {
 	var flags scheduleFlags
+	var incidence float64
 	cmd := &cobra.Command{
 		Use: "schedule BRIEF", Short: "Schedule a movable ramp or cowl over Mach number: the angle that keeps the limits", Args: exactArgs(1),
 		Long: `Find, for each Mach number of a range, the angle of one movable part that keeps
@@ -46,6 +47,9 @@ those of envelope.`,
 			if err != nil {
 				return err
 			}
+			if cmd.Flags().Changed("incidence-deg") {
+				flags.incidence = &incidence
+			}
 			return a.schedule(study, flags)
 		},
 	}
@@ -53,7 +57,7 @@ those of envelope.`,
 	set.StringVar(&flags.of, "of", "", "take searched values from this result folder")
 	set.StringVar(&flags.move, "move", "", "the angle to schedule with its hinge stops, such as cowl_angle_deg=2..9, deg")
 	set.StringVar(&flags.mach, "mach", "", "range of Mach numbers, such as 4..6 (default that of the flight points)")
-	set.Float64Var(&flags.incidence, "incidence-deg", 0, "incidence, deg (default that of the design point)")
+	set.Float64Var(&incidence, "incidence-deg", 0, "incidence, deg (default that of the design point)")
 	set.IntVar(&flags.points, "points", envelope.DefaultSchedulePoints, "Mach numbers")
 	set.StringVar(&flags.limitsOf, "limits-of", "", "flight point whose limits hold at every Mach number (default the design point)")
 	set.StringVar(&flags.highest, "highest", "", "quantity to drive up, in place of the brief's aim")
@@ -64,11 +68,6 @@ those of envelope.`,
 	a.progressFlags(cmd)
 	set.BoolVar(&a.force, "force", false, "write into a folder that holds other files")
 	briefFlags(cmd)
-	cmd.PreRun = func(cmd *cobra.Command, args []string) {
-		if !cmd.Flags().Changed("incidence-deg") {
-			flags.incidence = math.NaN()
-		}
-	}
 	return cmd
 }
 
@@ -155,8 +154,8 @@ func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, er
 	s.LowMach, s.HighMach, err = rangeOr("--mach", flags.mach, study.flownMach)
 	note(err)
 	s.Incidence = study.problem.Definition().Points[0].Incidence
-	if !math.IsNaN(flags.incidence) {
-		s.Incidence = flags.incidence / degree
+	if flags.incidence != nil {
+		s.Incidence = *flags.incidence / degree
 	}
 	plan.aim, err = study.aimOr(flags.highest, flags.lowest)
 	note(err)

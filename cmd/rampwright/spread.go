@@ -36,6 +36,9 @@ spread.json, spread.csv and spread.svg.`,
 			if !study.brief.Tolerance.Any() {
 				return &usageError{"the brief states no tolerance: nothing scatters", "add `tolerance: {ramp_angle_deg: 0.1, mach: 0.03, incidence_deg: 0.5}`"}
 			}
+			if draws < robust.LeastDraws || draws > robust.MostDraws {
+				return &usageError{fmt.Sprintf("--draws %d: allowed %d to %d", draws, robust.LeastDraws, robust.MostDraws), "fewer leave every share uncertain, more take memory"}
+			}
 			x, err := study.fixed("spread", of)
 			if err != nil {
 				return err
@@ -47,7 +50,7 @@ spread.json, spread.csv and spread.svg.`,
 		},
 	}
 	cmd.Flags().StringVar(&of, "of", "", "take searched values from this result folder")
-	cmd.Flags().IntVar(&draws, "draws", 0, "exact draws (default 10000)")
+	cmd.Flags().IntVar(&draws, "draws", robust.DefaultDraws, "exact draws")
 	cmd.Flags().StringVarP(&dir, "output", "o", "", "result folder (default ./<brief name>-spread)")
 	cmd.Flags().BoolVar(&a.json, "json", false, "print one JSON document")
 	a.searchFlags(cmd)

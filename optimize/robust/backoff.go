@@ -91,7 +91,7 @@ func drawsOf(confidence float64, n int) int {
 
 // checkConfidence refuses what is no confidence, or asks for too many draws.
 func checkConfidence(confidence float64) error {
-	const most = 1 - float64(tailDraws)/mostDraws
+	const most = 1 - float64(tailDraws)/MostDraws
 	if !(confidence > 0 && confidence <= most) {
 		return fmt.Errorf("confidence %g is not within 0 to %g", confidence, most)
 	}

@@ -165,3 +165,13 @@ func TestBackOffRefuses(t *testing.T) {
 		}
 	}
 }
+
+// A value that no draw moves but by its rounding asks for no margin.
+func TestNoShiftWithinRounding(t *testing.T) {
+	s := side{present: true, nominal: 0.45, sorted: []float64{0.45, math.Nextafter(0.45, 1), math.Nextafter(0.45, 1)}, draws: 3}
+	if by := s.shift(0.1); by != 0 {
+		t.Errorf("a shift of %g", by)
+	}
+	s.sorted[2] = 0.47
+	near(t, "shift", s.shift(0.1), 0.02, 1e-15)
+}

@@ -68,7 +68,7 @@ func (b *built) evaluate(ctx context.Context, phase string, deviates [][]float64
 	block := make([]float64, n*b.width)
 	missed := make([][]lack, n)
 	failures := make([]error, n)
-	share(jobs, n, b.tell(phase, n), func() func(i int) {
+	share(jobs, n, b.tell(ctx, phase, n), func() func(i int) {
 		offsets := make([]float64, len(b.scatter))
 		evaluation := problems.NewEvaluation(b.width)
 		return func(i int) {

@@ -53,7 +53,7 @@ func (b *built) fit(ctx context.Context, samples *Draws, quantities []int, nomin
 			list = append(list, Fit{Quantity: q})
 		}
 	}
-	share(s.Jobs, len(list), b.tell("fits", len(list)), func() func(i int) {
+	share(s.Jobs, len(list), b.tell(ctx, "fits", len(list)), func() func(i int) {
 		return func(i int) { list[i].choose(ctx, samples, s.Seed) }
 	})
 	return list, ctx.Err()

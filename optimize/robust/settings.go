@@ -1,6 +1,7 @@
 package robust
 
 import (
+	"context"
 	"errors"
 	"fmt"
 )
@@ -23,29 +24,37 @@ type Event struct {
 }
 
 // tell returns what counts the steps of a phase for the observer, nil where nobody
-// listens.
-func (b *built) tell(phase string, total int) func() {
+// listens. Once the context has ended there are no more of them.
+func (b *built) tell(ctx context.Context, phase string, total int) func() {
 	if b.observe == nil || phase == "" {
 		return nil
 	}
 	done := 0
 	return func() {
+		if ctx.Err() != nil {
+			return
+		}
 		done++
 		b.observe(Event{phase, done, total})
 	}
 }
 
+// DefaultDraws and MostDraws are the exact draws made for the zero settings and the
+// most there may be: 10^6 draws of 100 quantities fill 0.8 GB.
 const (
-	defaultDraws   = 10000
+	DefaultDraws = 10000
+	MostDraws    = 1_000_000
+)
+
+const (
 	drawsABase     = 10
 	samplesAnInput = 30
-	mostDraws      = 1_000_000 // 10^6 draws of 100 quantities fill 0.8 GB
 )
 
 // WithDefaults fills the zero fields for a problem of n uncertain inputs.
 func (s Settings) WithDefaults(n int) Settings {
 	if s.Draws == 0 {
-		s.Draws = defaultDraws
+		s.Draws = DefaultDraws
 	}
 	if s.Replaced == 0 {
 		s.Replaced = max(2, s.Draws/drawsABase)
@@ -66,9 +75,9 @@ func (s Settings) WithDefaults(n int) Settings {
 // inputs.
 func (s Settings) Validate(n int) error {
 	var wrong []error
-	enough := s.Draws >= LeastDraws && s.Draws <= mostDraws
+	enough := s.Draws >= LeastDraws && s.Draws <= MostDraws
 	if !enough {
-		wrong = append(wrong, fmt.Errorf("draws %d: allowed %d to %d", s.Draws, LeastDraws, mostDraws))
+		wrong = append(wrong, fmt.Errorf("draws %d: allowed %d to %d", s.Draws, LeastDraws, MostDraws))
 	}
 	if most := s.Draws / 2; s.Replaced < 2 || enough && s.Replaced > most {
 		wrong = append(wrong, fmt.Errorf("base draws of the sensitivity %d: allowed 2 to half the draws, %d", s.Replaced, most))

@@ -113,7 +113,8 @@ func upTo(sorted []float64, bound float64) int {
 
 // shift is how far the nominal value must stay inside so that a share alpha of the
 // draws lies beyond. Where more draws than that have no value, the share is taken
-// of those that have one: what remains is the search's to avoid.
+// of those that have one: what remains is the search's to avoid. A shift within the
+// rounding of the value is none.
 func (s *side) shift(alpha float64) float64 {
 	if !s.present || len(s.sorted) == 0 {
 		return 0
@@ -125,6 +126,9 @@ func (s *side) shift(alpha float64) float64 {
 		place = answered - 1 - int(alpha*float64(answered))
 	}
 	if place < 0 || math.IsInf(s.nominal, 0) {
+		return 0
+	}
+	if !differs(s.sorted[place], s.nominal) {
 		return 0
 	}
 	return math.Max(0, s.sorted[place]-s.nominal)

@@ -161,6 +161,22 @@ func kinked() *plain {
 	}}
 }
 
+// A run that is cancelled tells of no draw that was not made.
+func TestTellsOfNoDrawThatWasNotMade(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	settings := Settings{Draws: 500, Jobs: 2, Observe: func(e Event) {
+		if e.Done == 10 {
+			cancel()
+		}
+		if e.Done > 10 {
+			t.Errorf("told of %d draws of %d after the end", e.Done, e.Total)
+		}
+	}}
+	if _, err := Run(ctx, Task{Problem: kinked(), X: []float64{0.2}}, settings); !errors.Is(err, context.Canceled) {
+		t.Errorf("error %v", err)
+	}
+}
+
 func TestReasonsAreCountedWithoutTheirNumbers(t *testing.T) {
 	s := run(t, Task{Problem: kinked(), X: []float64{0}}, Settings{Draws: 1000})
 	if got := s.Draws.Missing[1]; len(got) != 1 || got[0].Text != "ramp 1 detached" {

@@ -267,13 +267,16 @@ func TestStatesOfEndings(t *testing.T) {
 }
 
 // TestACancelledRunEnds: a survey and a schedule end with the error of the context,
-// and keep nothing.
+// keep nothing, and tell of no step that was not made.
 func TestACancelledRunEnds(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	settings := discSettings()
 	settings.Jobs, settings.Observe = 2, func(e envelope.Event) {
 		if e.Done == 10 {
 			cancel()
+		}
+		if e.Done > 10 {
+			t.Errorf("told of step %d of %d after the end", e.Done, e.Total)
 		}
 	}
 	if survey, err := envelope.Run(ctx, disc{}, settings); !errors.Is(err, context.Canceled) || survey != nil {

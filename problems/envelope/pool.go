@@ -37,7 +37,9 @@ func each(ctx context.Context, jobs, n int, done func(), task func(i int) error)
 	}
 	for range n {
 		<-finished
-		done()
+		if ctx.Err() == nil { // what a cancelled context left is not done
+			done()
+		}
 	}
 	group.Wait()
 	for _, err := range failures {

@@ -93,8 +93,15 @@ func (d *DesignDocument) confidence(p *page) {
 	d.bothDesigns(p)
 	d.marginCosts(p)
 	p.WriteByte('\n')
-	p.wrap(indent, fmt.Sprintf("Holds: per cent of %d fresh draws of the exact model, standard error %s at most. Margin: by how much the search kept inside, from %d draws a round in %d rounds that aimed at %.4g %%. Cost: margin times price, in %s, to first order.",
-		c.Draws, percentError(c.largestError()), c.DrawsARound, c.Rounds, 100*float64(c.Aimed), d.aimUnit()), indent)
+	p.wrap(indent, fmt.Sprintf("Holds: per cent of %d fresh draws of the exact model, standard error %s at most. Margin: by how much the search kept inside, from %d draws a round in %s that aimed at %.4g %%. Cost: margin times price, in %s, to first order.",
+		c.Draws, percentError(c.largestError()), c.DrawsARound, rounds(c.Rounds), 100*float64(c.Aimed), d.aimUnit()), indent)
+}
+
+func rounds(n int) string {
+	if n == 1 {
+		return "1 round"
+	}
+	return fmt.Sprintf("%d rounds", n)
 }
 
 func (c *Confidence) largestError() Number {

@@ -89,7 +89,7 @@ func (d *EnvelopeDocument) Against(quantity, label string) ([]byte, error) {
 			continue
 		}
 		last = j
-		line := chart.Line{Name: fmt.Sprintf("incidence %s deg", plain(float64(d.Grid.IncidenceDeg[j])))}
+		line := chart.Line{Name: fmt.Sprintf("incidence %.3g deg", float64(d.Grid.IncidenceDeg[j]))}
 		line.Points = curve(len(d.Grid.Mach), func(i int) (x, y float64) {
 			row := &d.Rows[i*m+j]
 			return float64(row.Mach), row.value(quantity)

@@ -164,15 +164,21 @@ func (d *DesignDocument) nearby(p *page) {
 	}
 }
 
+// roundedText tells of the design in tenths of a degree, which keeps the margins of a
+// confidence as well.
 func (d *DesignDocument) roundedText(r *Rounded) string {
+	keeps := "keeps every limit exactly"
+	if c := d.Confidence; c != nil && c.BackedOff != nil {
+		keeps = "keeps every limit with its margin above"
+	}
 	if r.Variables == nil {
-		return "In tenths of a degree: no design near this one keeps every limit exactly."
+		return "In tenths of a degree: no design near this one " + keeps + "."
 	}
 	var angles []string
 	for _, v := range d.study.model().Variables() {
 		value, _ := r.Variables.Get(v.Name)
 		angles = append(angles, plain(float64(value)))
 	}
-	return fmt.Sprintf("In tenths of a degree: the nearest design that keeps every limit exactly is %s (in the order above), with %s of %s.",
-		strings.Join(angles, ", "), d.aimName(), significant(float64(r.Aim)))
+	return fmt.Sprintf("In tenths of a degree: the nearest design that %s is %s (in the order above), with %s of %s.",
+		keeps, strings.Join(angles, ", "), d.aimName(), significant(float64(r.Aim)))
 }

@@ -172,6 +172,9 @@ func TestConfidenceOfADesign(t *testing.T) {
 		}
 	}
 	within80(t, d.Text(80))
+	if got := d.roundedText(&Rounded{}); got != "In tenths of a degree: no design near this one keeps every limit with its margin above." {
+		t.Errorf("of the rounded design: %q", got)
+	}
 	if !bytes.Contains(d.JSON(), []byte(`"backed_off": {`)) {
 		t.Error("the document has no backed-off design")
 	}
