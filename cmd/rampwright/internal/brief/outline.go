@@ -124,6 +124,10 @@ func (r *reader) checkOutline(part *node, o *inlet.Outline) {
 		r.add(part.get("throat_x_m"), Problem{Message: "the throat plane does not lie behind the lip", Value: exactNumber(o.ThroatX), Allowed: "above " + exactNumber(lip.X) + " m"})
 		return
 	}
+	if end := min(o.Body[len(o.Body)-1].X, o.CowlInner[len(o.CowlInner)-1].X); o.ThroatX > end {
+		r.add(part.get("throat_x_m"), Problem{Message: "the throat plane lies behind the end of a wall", Value: exactNumber(o.ThroatX), Allowed: "up to " + exactNumber(end) + " m", Hint: "carry both walls on to the throat plane"})
+		return
+	}
 	d := &r.brief.Definition
 	if !(d.CowlLength >= 0) {
 		return // wrong, and said

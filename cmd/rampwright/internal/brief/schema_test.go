@@ -214,7 +214,7 @@ var beyondSchema = map[string]string{
 	"aim-at-no-point": elsewhere, "aim-at-the-geometry": elsewhere, "aim-without-a-value": elsewhere, "limit-at-no-point": elsewhere, "formula-at-no-point": elsewhere, "point-twice": elsewhere,
 	"angles-for-the-ramps": elsewhere, "weights-all-zero": elsewhere, "limit-of-geometry-at-a-point": elsewhere,
 	"range-reversed": elsewhere, "limit-crossed": elsewhere, "cowl-steeper-than-the-ramps": elsewhere, "no-such-altitude": elsewhere,
-	"outline-order": elsewhere, "outline-closed": elsewhere, "outline-throat-ahead": elsewhere, "outline-origin": elsewhere,
+	"outline-order": elsewhere, "outline-closed": elsewhere, "outline-throat-ahead": elsewhere, "outline-throat-behind": elsewhere, "outline-origin": elsewhere,
 	"confidence-of-nothing": elsewhere, "scatter-below-sonic": elsewhere,
 
 	"aim-misspelt": grammar, "aim-of-numbers": grammar, "formula-arguments": grammar, "formula-function": grammar,
