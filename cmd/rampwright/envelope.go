@@ -131,17 +131,24 @@ func (a *app) surveyFailed(err error, interruption *interruption) error {
 	return err
 }
 
-// envelopePlan turns the flags into a plan; everything wrong with them is reported
-// at once.
-func (a *app) envelopePlan(study *study, flags envelopeFlags) (*envelopePlan, error) {
-	if study.problem == nil {
-		return nil, &usageError{"envelope maps an inlet; this brief poses the analytic problem " + study.analyticName(), ""}
+// contoured returns the fixed values of an inlet whose contour closes, for a command
+// that does something to one.
+func (s *study) contoured(command, does, of string) ([]float64, error) {
+	if s.problem == nil {
+		return nil, &usageError{command + " " + does + "; this brief poses the analytic problem " + s.analyticName(), ""}
 	}
-	x, err := study.fixed("envelope", flags.of)
+	x, err := s.fixed(command, of)
 	if err != nil {
 		return nil, err
 	}
-	if err := study.closes(x); err != nil {
+	return x, s.closes(x)
+}
+
+// envelopePlan turns the flags into a plan; everything wrong with them is reported
+// at once.
+func (a *app) envelopePlan(study *study, flags envelopeFlags) (*envelopePlan, error) {
+	x, err := study.contoured("envelope", "maps an inlet", flags.of)
+	if err != nil {
 		return nil, err
 	}
 	plan := &envelopePlan{study: study, x: x, air: study.air(), limitsOf: flags.limitsOf}

@@ -129,14 +129,8 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 // schedulePlan turns the flags into a plan; everything wrong with them is reported at
 // once.
 func (a *app) schedulePlan(study *study, flags scheduleFlags) (*schedulePlan, error) {
-	if study.problem == nil {
-		return nil, &usageError{"schedule moves a part of an inlet; this brief poses the analytic problem " + study.analyticName(), ""}
-	}
-	x, err := study.fixed("schedule", flags.of)
+	x, err := study.contoured("schedule", "moves a part of an inlet", flags.of)
 	if err != nil {
-		return nil, err
-	}
-	if err := study.closes(x); err != nil {
 		return nil, err
 	}
 	plan := &schedulePlan{air: study.air(), limitsOf: flags.limitsOf}

@@ -30,7 +30,7 @@ func hinged(t *rapid.T) (*Frozen, Definition) {
 	}
 	f := problem.Freeze(nil)
 	if _, err := f.Contour(); err != nil {
-		t.Skip("the contour does not close")
+		t.Fatalf("the contour does not close: %v", err)
 	}
 	return f, d
 }
@@ -101,8 +101,11 @@ func TestPartsMoveAsRigidBodies(t *testing.T) {
 			}
 		}
 		now, err := moved.Angle(h)
-		if err != nil {
-			t.Skip("the duct closes")
+		if err != nil { // a part moved into the duct leaves no contour, and says so
+			if _, closed := moved.Contour(); closed == nil {
+				t.Fatalf("a closed duct has no angle: %v", err)
+			}
+			return
 		}
 		same("the angle asked for", angle+by, now)
 		before, _ := f.Contour()
