@@ -79,6 +79,7 @@ const (
 	loopDraws    = 2000
 	mostRounds   = 8
 	enoughHeld   = 2    // rounds that hold as aimed at
+	mostRetreats = 2    // searches with half the change of the shifts
 	tailDraws    = 20   // draws expected beyond the confidence
 	shiftsAtRest = 2e-2 // relative change of every shift that ends the loop
 )
@@ -113,7 +114,9 @@ func aimed(confidence float64, draws int) float64 {
 //	s = g(x) - g_a(x),  g_a the (1 - aimed) quantile of g over the draws,
 //
 // at least 0, and the next search keeps g(x) >= bound + s. Every round uses the
-// same draws. A draw without an answer counts as the worst value, or is left out
+// same draws. A side whose last change the draws take back moves half way only, and
+// where no design holds the shifts asked for, the search goes half way to them (our
+// rules). A draw without an answer counts as the worst value, or is left out
 // where more have none than may fail: from the first round with more than half as
 // many on, a cut keeps the search where draws have answers (our rule). It ends when
 // every limit holds as aimed and the shifts are at rest; the best design that holds
@@ -136,7 +139,7 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 	out := &Backoff{Confidence: goal.Confidence, Draws: drawsOf(goal.Confidence, loopDraws), Checked: drawsOf(goal.Confidence, settings.Draws)}
 	out.Aimed = aimed(goal.Confidence, out.Draws)
 	deviates := drawn(out.Draws, len(b.scatter), doe.Stream(settings.Seed, "back-off draws"))
-	next := Round{Found: goal.Nominal, Shifts: unshifted(limits)}
+	next, retreats := Round{Found: goal.Nominal, Shifts: unshifted(limits)}, 0
 	for {
 		ask, err := out.judge(ctx, b, &next, limits, deviates, settings.Jobs)
 		if err != nil {
@@ -145,19 +148,24 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 		if out.ended(ask.shifts) || out.crossed(ask.shifts) {
 			break
 		}
-		found, err := search(ctx, Question{applied(ask.shifts), ask.cut, next.X})
-		if err == nil && !found.Feasible && ask.cut != nil { // slopes may have misled
-			ask.cut = ask.cut.looser()
-			found, err = search(ctx, Question{applied(ask.shifts), ask.cut, next.X})
+		if n := len(out.Rounds); n > 2 { // the first round knows no shifts
+			ask.shifts = damped(out.Rounds[n-2].Shifts, next.Shifts, ask.shifts)
 		}
-		if err != nil {
+		from := next
+		if next, err = ask.answer(ctx, search, from.X); err != nil {
 			return nil, err
 		}
-		if !found.Feasible {
+		if !next.Feasible && retreats < mostRetreats {
+			retreats++
+			ask.shifts = halfway(from.Shifts, ask.shifts)
+			if next, err = ask.answer(ctx, search, from.X); err != nil {
+				return nil, err
+			}
+		}
+		if !next.Feasible {
 			out.NothingHolds, out.Why = true, "no design was found that holds the limits with the margins they need"
 			break
 		}
-		next = Round{Found: found, Shifts: ask.shifts, Cut: ask.cut}
 	}
 	return out, out.verify(ctx, goal, b, limits, settings)
 }
@@ -166,6 +174,16 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 type asked struct {
 	shifts []Shift
 	cut    *Cut
+}
+
+// answer searches with what is asked, from the design of the round before.
+func (a *asked) answer(ctx context.Context, search Search, near []float64) (Round, error) {
+	found, err := search(ctx, Question{applied(a.shifts), a.cut, near})
+	if err == nil && !found.Feasible && a.cut != nil { // slopes may have misled
+		a.cut = a.cut.looser()
+		found, err = search(ctx, Question{applied(a.shifts), a.cut, near})
+	}
+	return Round{Found: found, Shifts: a.shifts, Cut: a.cut}, err
 }
 
 // judge draws at the design of a round, keeps the round, and returns what its draws
@@ -226,11 +244,12 @@ func (o *Backoff) ended(shifts []Shift) bool {
 // digits of a search do not decide.
 func (o *Backoff) holds(r *Round) bool { return r.Least >= (o.Confidence+o.Aimed)/2 }
 
-// heldRounds counts the rounds that hold.
+// heldRounds counts the rounds that hold, but not with more than twice the care
+// aimed at: those gave away what a later round may win back.
 func (o *Backoff) heldRounds() int {
 	n := 0
 	for i := range o.Rounds {
-		if o.holds(&o.Rounds[i]) {
+		if r := &o.Rounds[i]; o.holds(r) && r.Least <= (1+o.Aimed)/2 {
 			n++
 		}
 	}
