@@ -107,7 +107,7 @@ type Limit struct {
 	Met      bool           `json:"met"`
 	Active   bool           `json:"active"`
 	Price    Number         `json:"price"`  // gain of the aim for each unit the limit is loosened
-	Drives   string         `json:"drives"` // the variable the limit holds back most; empty without a price
+	Drives   *string        `json:"drives"` // the variable the limit holds back most; null without a price
 	Kind     string         `json:"kind"`
 	Missing  Object[string] `json:"missing,omitzero"`
 }
@@ -318,7 +318,7 @@ func (s *Study) limit(c *constraints.Check) Limit {
 		Met: c.Met, Active: c.Active, Price: Number(c.Price), Kind: c.Kind.String(),
 	}
 	if c.Price > 0 {
-		l.Drives = s.model().Variables()[c.Drives].Name
+		l.Drives = &s.model().Variables()[c.Drives].Name
 	}
 	if c.Missing != nil {
 		l.Missing = Object[string]{{"value", c.Missing.Error()}}
