@@ -111,32 +111,46 @@ func (c *core) tube(entry float64, out carried, force vector) Closure {
 // dynamic is the dynamic pressure of the free stream over p0.
 func (c *core) dynamic() float64 { return c.gas.DynamicPressure(1, c.free.Mach) }
 
-// forces sums the gauge force on the walls by segment, in the order of surfaces and
-// segments.
-func (c *core) forces() []Force {
-	low, high := c.ends(slices.Max(c.geometry.Planes))
-	list := c.segmentForces(nil, Body, low, high)
-	list = c.segmentForces(list, CowlInner, low, high)
+// wetted lists the wall pieces that Trace.Walls and Trace.Forces speak of, surface by
+// surface and downstream: body and inner cowl as far as the last plane or the ending,
+// the outer cowl to its length. Pieces shorter than a tie, where waves meet in a
+// corner or a corner stands in the plane, are left out.
+func (c *core) wetted() []piece {
+	low, high := c.vertical(slices.Max(c.geometry.Planes))
+	list := c.ahead(nil, Body, low, high)
+	list = c.ahead(list, CowlInner, low, high)
 	tip := c.geometry.outerEnd()
 	over := contour.Point{X: tip.X, Y: tip.Y + c.geometry.captureHeight()}
-	return c.segmentForces(list, CowlOuter, c.frame.in(tip), c.frame.in(over))
+	return c.ahead(list, CowlOuter, c.frame.in(tip), c.frame.in(over))
 }
 
-// segmentForces appends the forces on the segments of a surface ahead of the line
-// from low to high.
-func (c *core) segmentForces(list []Force, surface Surface, low, high contour.Point) []Force {
-	scale := -1 / (c.dynamic() * c.geometry.captureHeight()) // on the wall, not the fluid
+// ahead appends the pieces of a surface upstream of the line from low to high; one
+// that reaches past it is cut there.
+func (c *core) ahead(list []piece, surface Surface, low, high contour.Point) []piece {
 	for _, p := range c.pieces {
-		length, ok := clip(p.from, p.to, low, high)
-		if p.surface != surface || !ok {
+		if p.surface != surface {
 			continue
 		}
+		if d, ok := clip(p.from, p.to, low, high); ok && d.length() > c.near {
+			p.to = contour.Point{X: p.from.X + d.x, Y: p.from.Y + d.y}
+			list = append(list, p)
+		}
+	}
+	return list
+}
+
+// forces sums the gauge force on wall pieces by segment, in their order.
+func (c *core) forces(pieces []piece) []Force {
+	var list []Force
+	scale := -1 / (c.dynamic() * c.geometry.captureHeight()) // on the wall, not the fluid
+	for _, p := range pieces {
 		at := len(list) - 1
-		if at < 0 || list[at].Surface != surface || list[at].Segment != p.segment+1 {
-			list = append(list, Force{Surface: surface, Segment: p.segment + 1})
+		if at < 0 || list[at].Surface != p.surface || list[at].Segment != p.segment+1 {
+			list = append(list, Force{Surface: p.surface, Segment: p.segment + 1, From: c.frame.out(p.from)})
 			at++
 		}
-		f := c.pieceForce(p, length).times(scale)
+		f := c.pieceForce(p, step(p.from, p.to)).times(scale)
+		list[at].To = c.frame.out(p.to)
 		list[at].X += f.x*c.frame.cos - f.y*c.frame.sin
 		list[at].Y += f.y*c.frame.cos + f.x*c.frame.sin
 	}

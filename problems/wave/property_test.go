@@ -105,34 +105,79 @@ func TestClosureOfRandomInlets(t *testing.T) {
 	}
 }
 
-// The forces by segment are the pressures of the wall pieces; the plane stands two
-// ties, 2e-9 capture heights, behind its x.
+// The forces by segment are the pressures of the wall pieces, which lie end to end
+// from the start of a segment to its end, or to the plane.
 func TestForcesAreWallPressures(t *testing.T) {
-	c := chainOf(t, veyric(5, 1))
-	r := fly(t, c.geometry(0), 5, 1, wave.Settings{})
-	var sum, want [2]float64
-	for _, f := range r.Forces {
-		if f.Surface != wave.CowlOuter {
-			sum[0], sum[1] = sum[0]+f.X, sum[1]+f.Y
+	for _, mach := range []float64{5, 6.4} {
+		c := chainOf(t, veyric(mach, 1))
+		g := c.geometry(0)
+		r := fly(t, g, mach, 1, wave.Settings{})
+		scale := 1 / (gas.Air.DynamicPressure(1, mach) * 0.16)
+		next := 0
+		for _, f := range r.Forces {
+			var want contour.Point
+			at := f.From
+			for ; next < len(r.Walls) && r.Walls[next].Surface == f.Surface && r.Walls[next].Segment == f.Segment; next++ {
+				w := r.Walls[next]
+				side := 1.0
+				if w.Surface == wave.CowlInner {
+					side = -1
+				}
+				push := side * (r.Regions[w.Region].Pressure - 1) * scale
+				want.X += push * (w.To.Y - w.From.Y)
+				want.Y -= push * (w.To.X - w.From.X)
+				within(t, "gap between wall pieces", contour.Distance(at, w.From), 0, 1e-9)
+				at = w.To
+			}
+			within(t, "end of a segment", contour.Distance(at, f.To), 0, 1e-9)
+			within(t, "force along x", f.X, want.X, 1e-13)
+			within(t, "force along y", f.Y, want.Y, 1e-13)
+		}
+		if next != len(r.Walls) {
+			t.Errorf("%d of %d wall pieces bear a force", next, len(r.Walls))
+		}
+		for _, f := range r.Forces[:len(r.Forces)-1] {
+			if f.To.X > g.Planes[0]+1e-12 {
+				t.Errorf("%v %d reaches past the plane: %v", f.Surface, f.Segment, f.To)
+			}
+		}
+		within(t, "end of the outer cowl", r.Forces[len(r.Forces)-1].To.X, g.CowlInner[0].X+g.OuterLength, 1e-12)
+	}
+}
+
+// The parts of a plane lie end to end from body to cowl, their shares are those of
+// the whole, and the averages are those of the parts.
+func TestPartsTileThePlane(t *testing.T) {
+	rng := rand.New(rand.NewPCG(9, 9))
+	tested := 0
+	for range 40 {
+		s := sampleOf(t, rng)
+		r := fly(t, s.geometry(0, 1), s.mach, s.incidence, wave.Settings{WithoutError: true})
+		for _, station := range r.Stations {
+			if station.Err != nil {
+				continue
+			}
+			tested++
+			at := station.Profile[0].Low
+			var share, height, mach, recovery, pressure float64
+			for _, p := range station.Profile {
+				within(t, "gap between parts", p.Low, at, 1e-14)
+				at = p.High
+				state := r.Regions[p.Region]
+				share, height = share+p.Share, height+p.High-p.Low
+				mach, recovery = mach+p.Share*state.Mach, recovery+p.Share*state.TotalPressure
+				pressure += (p.High - p.Low) * state.Pressure
+			}
+			within(t, "share of the mass", share, 1, 1e-13)
+			within(t, "height", height, station.Height, 1e-13)
+			within(t, "Mach number", mach, station.Mach, 1e-12)
+			within(t, "recovery", recovery, station.Recovery, 1e-12)
+			within(t, "pressure", pressure/height, station.Pressure, 1e-12)
 		}
 	}
-	scale := 1 / (gas.Air.DynamicPressure(1, 5) * 0.16)
-	for _, w := range r.Walls {
-		side := 1.0
-		switch w.Surface {
-		case wave.CowlOuter:
-			continue
-		case wave.CowlInner:
-			side = -1
-		}
-		push := side * (r.Regions[w.Region].Pressure - 1) * scale
-		dx, dy := w.To.X-w.From.X, w.To.Y-w.From.Y
-		share := min(1, max(0, (r.Stations[0].X-w.From.X)/dx)) // ahead of the plane
-		want[0] += push * dy * share
-		want[1] -= push * dx * share
+	if tested < 20 {
+		t.Errorf("%d planes tested", tested)
 	}
-	within(t, "force along x", sum[0], want[0], 1e-7)
-	within(t, "force along y", sum[1], want[1], 1e-7)
 }
 
 // The outer cowl of veyric-6 in the free stream is the wedge of the chain's cowl

@@ -25,23 +25,28 @@ type Station struct {
 	// greatest recovery; Distortion their difference over Recovery.
 	Worst, Best float64
 	Distortion  float64
-	// Profile lists the uniform parts of the plane, body to cowl.
+	// Profile lists the uniform parts of the plane, body to cowl without a gap: what
+	// the averages are taken over.
 	Profile []Part
 	// Closure is that of the captured stream tube between free stream and plane.
 	Closure Closure
 	Err     error // why the plane was not reached, nil if it was
 }
 
-// Part is a uniform part of a plane, between two heights, m.
+// Part is a uniform part of a plane, between two heights, m, with its share of the
+// mass that passes the plane.
 type Part struct {
 	Low, High float64
 	Region    int
+	Share     float64
 }
 
 // ends are the ends of the vertical plane at x on body and inner cowl, two ties
 // behind it, so that a wave that ends at x itself lies ahead of the plane.
-func (c *core) ends(x float64) (low, high contour.Point) {
-	x += 2 * c.near
+func (c *core) ends(x float64) (low, high contour.Point) { return c.vertical(x + 2*c.near) }
+
+// vertical is where the vertical line at x meets body and inner cowl.
+func (c *core) vertical(x float64) (low, high contour.Point) {
 	body, cowl := height(c.geometry.Body, x), height(c.geometry.CowlInner, x)
 	return c.frame.in(contour.Point{X: x, Y: body}), c.frame.in(contour.Point{X: x, Y: cowl})
 }
@@ -126,12 +131,30 @@ func (c *core) station(x, entry float64, push vector) Station {
 	return station
 }
 
+// tubes joins the bands of a plane that are thinner than a tie, where waves start just
+// ahead of it, to the next one above, or to the last.
+func (c *core) tubes(cut []band) []band {
+	var list []band
+	from := cut[0].from
+	for _, b := range cut {
+		if step(b.from, b.to).length() > c.near {
+			list = append(list, band{b.region, from, b.to})
+			from = b.to
+		}
+	}
+	if list == nil { // the whole plane is thinner than that
+		return cut
+	}
+	list[len(list)-1].to = cut[len(cut)-1].to
+	return list
+}
+
 // average fills the averages and the profile of a station from its cut.
 func (c *core) average(station *Station, cut []band) {
 	var mass, area, recovery, mach, pressure, temperature float64
 	var direction vector
 	station.Worst, station.Best = math.Inf(1), 0
-	for _, b := range cut {
+	for _, b := range c.tubes(cut) {
 		s := &c.regions[b.region]
 		along := step(b.from, b.to)
 		size := along.length()
@@ -143,11 +166,12 @@ func (c *core) average(station *Station, cut []band) {
 		temperature += dm * s.temperature(c.gas, c.free.Mach)
 		pressure += size * s.Pressure
 		direction = direction.plus(u.times(dm))
-		if size > c.near {
-			station.Worst, station.Best = min(station.Worst, s.TotalPressure), max(station.Best, s.TotalPressure)
-			from, to := c.frame.out(b.from), c.frame.out(b.to)
-			station.Profile = append(station.Profile, Part{from.Y, to.Y, int(b.region)})
-		}
+		station.Worst, station.Best = min(station.Worst, s.TotalPressure), max(station.Best, s.TotalPressure)
+		from, to := c.frame.out(b.from), c.frame.out(b.to)
+		station.Profile = append(station.Profile, Part{from.Y, to.Y, int(b.region), dm})
+	}
+	for i := range station.Profile {
+		station.Profile[i].Share /= mass
 	}
 	station.Height = area
 	station.Recovery, station.Mach, station.Temperature = recovery/mass, mach/mass, temperature/mass

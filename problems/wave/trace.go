@@ -61,7 +61,9 @@ type Front struct {
 	Duct   bool // enters the duct or ends ahead of the lip; else outside
 }
 
-// Wall is a stretch of surface under one pressure, in metres.
+// Wall is a stretch of surface under one pressure, in metres: of body and inner cowl
+// as far as the last plane or the ending, of the outer cowl to its length; surface by
+// surface and downstream.
 type Wall struct {
 	Surface  Surface
 	Segment  int // from 1
@@ -84,13 +86,13 @@ type Captured struct {
 	Streamline []contour.Point
 }
 
-// Force is the gauge force p - p0 on one segment of wall, on q0 Ac, x downstream:
-// body and inner cowl as far as the last plane or the ending, the outer cowl to
-// its length.
+// Force is the gauge force p - p0 on what Walls has of one segment, on q0 Ac, x
+// downstream.
 type Force struct {
-	Surface Surface
-	Segment int // from 1
-	X, Y    float64
+	Surface  Surface
+	Segment  int // from 1
+	From, To contour.Point
+	X, Y     float64
 }
 
 // TemperatureRatio is T/T0 of a region.
@@ -139,7 +141,6 @@ func (c *core) read() *Trace {
 	for _, x := range c.geometry.Planes {
 		t.Stations = append(t.Stations, c.station(x, entry, push))
 	}
-	t.Forces = c.forces()
 	height := c.geometry.captureHeight()
 	t.OpenMass = c.open.mass / c.regions[0].massFlux(c.gas) / height
 	t.OpenMomentum = c.open.momentum / c.dynamic() / height
@@ -177,7 +178,8 @@ func (c *core) spilled(line streamline, push vector) Closure {
 	return c.tube(entry, c.through(c.topCut), c.wallForce(CowlOuter, low, high).plus(push.times(-1)))
 }
 
-// leaveFrame copies regions, fronts, walls and endings into the axes of the inlet.
+// leaveFrame copies regions, fronts, walls with their forces, and endings into the axes
+// of the inlet.
 func (c *core) leaveFrame(t *Trace) {
 	t.Regions = slices.Clone(c.regions)
 	for i := range t.Regions {
@@ -191,8 +193,10 @@ func (c *core) leaveFrame(t *Trace) {
 			Below: int(f.below), Above: int(f.above), Source: int(f.source), Merged: f.merged, Duct: f.duct,
 		}
 	}
-	t.Walls = make([]Wall, 0, len(c.pieces))
-	for _, p := range c.pieces {
+	wetted := c.wetted()
+	t.Forces = c.forces(wetted)
+	t.Walls = make([]Wall, 0, len(wetted))
+	for _, p := range wetted {
 		t.Walls = append(t.Walls, Wall{p.surface, p.segment + 1, c.frame.out(p.from), c.frame.out(p.to), int(p.region)})
 	}
 	for _, e := range []*Ending{t.Ending, t.OutsideEnding} {
