@@ -17,7 +17,7 @@ import (
 )
 
 func (a *app) flowCommand() *cobra.Command {
-	var of string
+	var of, waves string
 	var strict bool
 	var picture picture
 	cmd := &cobra.Command{
@@ -30,19 +30,22 @@ detached shock is an answer, not an error: --strict turns it into exit code 4.
 
 Where ramp shocks cross ahead of the lip or fall inside it, and for an inlet given
 by its outline, every wave is traced and the throat is an average. --svg draws the
-waves of one flight point.`,
+waves of one flight point. --waves traces every flight point and writes its fronts,
+wall pressures, forces, stream tubes of the throat plane and lip streamline as CSV
+files, with this result as flow.json, into a new folder.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			study, err := read(cmd, args[0])
 			if err != nil {
 				return err
 			}
-			return a.flow(study, of, strict, picture)
+			return a.flow(study, of, strict, picture, wavesFolder(waves))
 		},
 	}
 	cmd.Flags().StringVar(&of, "of", "", "take searched values from this result folder")
 	cmd.Flags().BoolVar(&strict, "strict", false, "exit with code 4 unless every point is attached")
 	cmd.Flags().StringVar(&picture.file, "svg", "", "draw the inlet and its waves into this file, which must not exist")
 	cmd.Flags().StringVar(&picture.at, "at", "", "flight point of the drawing (default the first)")
+	cmd.Flags().StringVar(&waves, "waves", "", "trace every flight point and write its waves and walls into this folder, which must not exist")
 	cmd.Flags().BoolVar(&a.json, "json", false, "print one JSON document")
 	briefFlags(cmd)
 	return cmd
@@ -80,7 +83,7 @@ func (p picture) draw(title string, flow *inlet.Flow) error {
 	return writeNew(p.file, drawing)
 }
 
-func (a *app) flow(study *study, of string, strict bool, picture picture) error {
+func (a *app) flow(study *study, of string, strict bool, picture picture, waves wavesFolder) error {
 	if study.problem == nil {
 		return &usageError{"flow computes an inlet; this brief poses the analytic problem " + study.analyticName(), "rampwright design searches it, rampwright fits shows how well it can be fitted"}
 	}
@@ -88,14 +91,23 @@ func (a *app) flow(study *study, of string, strict bool, picture picture) error 
 	if err != nil {
 		return err
 	}
+	if err := waves.check(); err != nil {
+		return err
+	}
 	flow, err := study.problem.Flow(context.Background(), x)
 	if err != nil {
+		return err
+	}
+	if err := waves.trace(study.problem.Freeze(x), flow); err != nil {
 		return err
 	}
 	if err := picture.draw(study.brief.Title, flow); err != nil {
 		return err
 	}
 	document := report.NewFlow(study.head(0), study.problem, flow)
+	if err := waves.write(a, flow, document); err != nil {
+		return err
+	}
 	if err := a.print(document); err != nil {
 		return err
 	}

@@ -24,7 +24,15 @@ func TestFiguresOfThePages(t *testing.T) {
 				f.checkAxes(t)
 				seen[f.check(t, &shown)]++
 			}
-			want := map[string]int{"parity": 6, "map": len(shown.Maps), "progress": 2, "off design": 1, "side view": 1}
+			want := map[string]int{"parity": 6, "map": len(shown.Maps), "progress": 2, "off design": 1, "side view": 1, "walls": 0}
+			for _, p := range shown.Points {
+				if p.Trace != nil {
+					want["walls"]++
+				}
+			}
+			if want["walls"] == 0 {
+				delete(want, "walls")
+			}
 			if shown.OffDesign == nil {
 				delete(want, "off design")
 			}
@@ -42,7 +50,11 @@ type shownValues struct {
 		Aim       struct{ Exact float64 }
 		Variables map[string]float64
 	}
-	History   []struct{ Evaluations, Error float64 }
+	History []struct{ Evaluations, Error float64 }
+	Points  []struct {
+		Name  string
+		Trace *struct{ Walls []shownWall }
+	}
 	Variables []struct {
 		Name      string
 		Low, High float64
@@ -59,6 +71,14 @@ type shownValues struct {
 		Mach              []float64
 		Recovery, Capture []*float64
 	} `json:"off_design"`
+}
+
+// shownWall is a stretch of wall in result.json.
+type shownWall struct {
+	Surface  string
+	From     [2]float64 `json:"from_m"`
+	To       [2]float64 `json:"to_m"`
+	Pressure float64    `json:"pressure_ratio"`
 }
 
 // figure is one drawing of a page, its points in the units of its axes.
@@ -206,6 +226,12 @@ func (f *figure) check(t *testing.T, shown *shownValues) string {
 			return "parity"
 		}
 	}
+	for _, p := range shown.Points {
+		if f.title == "Pressure along the walls: "+p.Name {
+			f.checkSteps(t, p.Trace.Walls)
+			return "walls"
+		}
+	}
 	if len(f.frames) == 0 {
 		return "bar"
 	}
@@ -222,6 +248,29 @@ func curve(x []float64, y []*float64) []xy {
 		}
 	}
 	return list
+}
+
+// checkSteps: each surface has its steps, by their logarithm where the axis says so.
+func (f *figure) checkSteps(t *testing.T, walls []shownWall) {
+	t.Helper()
+	want := map[string][]xy{}
+	for i, w := range walls {
+		y := w.Pressure
+		if f.root["data-y-log"] == "true" {
+			y = math.Log10(y)
+		}
+		to := w.To[0]
+		if i+1 < len(walls) && walls[i+1].Surface == w.Surface {
+			to = walls[i+1].From[0]
+		}
+		want[w.Surface] = append(want[w.Surface], xy{w.From[0], y}, xy{to, y})
+	}
+	if len(f.lines) != len(want) {
+		t.Errorf("%s: %d lines, want %d", f.title, len(f.lines), len(want))
+	}
+	for surface, steps := range want {
+		f.same(t, surface, steps)
+	}
 }
 
 // same fails unless a line passes through the points wanted.

@@ -87,7 +87,7 @@ func unknownCommand(root *cobra.Command, name string) error {
 
 // worded are the flags, beside those of the brief, that take a text.
 var worded = []string{
-	"of", "output", "mach", "incidence-deg", "points", "limits-of", "move", "highest", "lowest", "svg", "at",
+	"of", "output", "mach", "incidence-deg", "points", "limits-of", "move", "highest", "lowest", "svg", "at", "waves",
 	"between", "count", "counts", "kinds", "scenario", "time-limit",
 }
 

@@ -6,14 +6,15 @@ import (
 	"strings"
 )
 
-// LineChart is a picture of values along one axis: lines through marked points,
-// and level lines, on linear axes.
+// LineChart is a picture of values along one axis: lines through marked points or in
+// steps, and level lines.
 type LineChart struct {
 	Title    string
 	Subtitle []string
 	XLabel   string
 	YLabel   string
 	WholeX   bool // x counts: ticks at whole numbers only
+	LogY     bool // y on a logarithmic axis: every Y is above 0
 	// Low and High are the range of x to show at least; the lines widen it.
 	Low, High float64
 	Lines     []Line
@@ -24,7 +25,10 @@ type LineChart struct {
 type Line struct {
 	Name string
 	// Lead marks the line that matters most: it is drawn thickest.
-	Lead   bool
+	Lead bool
+	// Steps holds each value as far as the next point; the last point only ends the
+	// line. Points carry no dots.
+	Steps  bool
 	Points []LinePoint // at least one, X rising
 }
 
@@ -48,6 +52,7 @@ type Level struct {
 const (
 	mostLines      = 12
 	mostLinePoints = 400
+	mostSteps      = 4000
 )
 
 // InvalidLines lists everything that is wrong with a LineChart.
@@ -70,16 +75,21 @@ func (l LineChart) Validate() error {
 	for i, line := range l.Lines {
 		check(len(line.Name) > longestText, "line %d has a name of %d bytes, at most %d", i, len(line.Name), longestText)
 		check(len(line.Points) == 0, "line %d has no point", i)
-		check(len(line.Points) > mostLinePoints, "line %d has %d points, at most %d", i, len(line.Points), mostLinePoints)
+		most := mostLinePoints
+		if line.Steps {
+			most = mostSteps
+		}
+		check(len(line.Points) > most, "line %d has %d points, at most %d", i, len(line.Points), most)
 		before := math.Inf(-1)
 		for _, p := range line.Points {
 			check(!finite(p.X, p.Y) || p.X <= before, "line %d: (%g, %g) is not a rising finite point", i, p.X, p.Y)
+			check(l.LogY && !(p.Y > 0), "line %d: %g has no place on a logarithmic axis", i, p.Y)
 			before = p.X
 		}
 	}
 	for i, level := range l.Levels {
 		check(len(level.Name) > longestText, "level %d has a name of %d bytes, at most %d", i, len(level.Name), longestText)
-		check(!finite(level.Y), "level %d lies at %g", i, level.Y)
+		check(!finite(level.Y) || l.LogY && !(level.Y > 0), "level %d lies at %g", i, level.Y)
 	}
 	if found != nil {
 		return &InvalidLines{found}

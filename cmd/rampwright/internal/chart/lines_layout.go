@@ -5,17 +5,6 @@ import (
 	"sort"
 )
 
-// linearAxis maps a number to the sheet.
-type linearAxis struct {
-	low, high float64
-	from, to  float64 // places on the sheet
-	ticks     ruler
-}
-
-func (a linearAxis) at(v float64) float64 {
-	return a.from + (v-a.low)/(a.high-a.low)*(a.to-a.from)
-}
-
 // linesLayout is a line chart with every place decided.
 type linesLayout struct {
 	chart LineChart
@@ -72,53 +61,15 @@ func (c LineChart) allNames() []string {
 	return names
 }
 
-// axesIn spans the axes over the data.
-func (c LineChart) axesIn(axes box) (x, y linearAxis) {
-	left, right := c.Low, c.High
-	low, high := math.Inf(1), math.Inf(-1)
-	for _, line := range c.Lines {
-		for _, p := range line.Points {
-			left, right = min(left, p.X), max(right, p.X)
-			low, high = min(low, p.Y), max(high, p.Y)
-		}
-	}
-	for _, level := range c.Levels {
-		low, high = min(low, level.Y), max(high, level.Y)
-	}
-	if low > high { // nothing drawn
-		low, high = 0, 1
-	}
-	left, right = separated(left, right)
-	low, high = separated(low, high)
-	low, high = low-headroom*(high-low), high+headroom*(high-low)
-	x = linearAxis{low: left, high: right, from: axes.x + edgeRoom, to: axes.right() - edgeRoom}
-	y = linearAxis{low: low, high: high, from: axes.bottom(), to: axes.y}
-	step := 70 * (right - left) / (x.to - x.from)
-	if c.WholeX {
-		step = max(1, step)
-	}
-	x.ticks = newRuler(left, right, step)
-	y.ticks = newRuler(low, high, 34*(high-low)/axes.h)
-	return x, y
-}
-
-// separated widens a range without length.
-func separated(low, high float64) (float64, float64) {
-	if least := 1e-9 * max(1, math.Abs(low), math.Abs(high)); high-low < least {
-		half := max(0.5*math.Abs(low), 0.5)
-		return low - half, high + half
-	}
-	return low, high
-}
-
 // nameLines puts the names beside the ends of their lines, one below the other
 // without overlap: pushed down in the order of the ends, then up from the foot of
 // the axes.
 func (l *linesLayout) nameLines(face typeface) {
 	c := &l.chart
 	for i, line := range c.Lines {
-		last := line.Points[len(line.Points)-1]
-		l.names = append(l.names, lineName{line: i, text: line.Name, end: point{l.x.at(last.X), l.y.at(last.Y)}})
+		tracks := l.tracks(line)
+		track := tracks[len(tracks)-1]
+		l.names = append(l.names, lineName{line: i, text: line.Name, end: track[len(track)-1]})
 	}
 	for i, level := range c.Levels {
 		l.names = append(l.names, lineName{line: len(c.Lines) + i, text: level.Name, end: point{l.axes.right(), l.y.at(level.Y)}})
@@ -188,16 +139,34 @@ func (l *linesLayout) placeNote(line int, p LinePoint, face typeface, strokes []
 	l.notes = append(l.notes, placedNote{line, p.Note, best})
 }
 
+// tracks are the strokes of a line, one for each stretch between gaps.
+func (l *linesLayout) tracks(line Line) [][]point {
+	var list [][]point
+	for i, p := range line.Points {
+		at := point{l.x.at(p.X), l.y.at(p.Y)}
+		if i == 0 || p.Gap {
+			list = append(list, []point{at})
+			continue
+		}
+		track := &list[len(list)-1]
+		if line.Steps {
+			*track = append(*track, point{at.x, l.y.at(line.Points[i-1].Y)})
+		}
+		if !line.Steps || i < len(line.Points)-1 {
+			*track = append(*track, at)
+		}
+	}
+	return list
+}
+
 // segments lists every stroke of the lines and levels.
 func (l *linesLayout) segments() []segment {
 	var list []segment
 	for _, line := range l.chart.Lines {
-		for i, p := range line.Points[1:] {
-			if p.Gap {
-				continue
+		for _, track := range l.tracks(line) {
+			for i, p := range track[1:] {
+				list = append(list, segment{track[i], p})
 			}
-			before := line.Points[i]
-			list = append(list, segment{point{l.x.at(before.X), l.y.at(before.Y)}, point{l.x.at(p.X), l.y.at(p.Y)}})
 		}
 	}
 	for _, level := range l.chart.Levels {

@@ -14,8 +14,8 @@ import (
 // returns *InvalidLines for one that cannot be drawn.
 //
 // The root states the mapping of the axes, data-x and data-y, each as "low high
-// from to": a value lies at from + (value - low)/(high - low) (to - from). Each
-// line is a polyline with data-name, one for each stretch between gaps, each level a path with data-name; every
+// from to": a value, or its decimal logarithm where data-y-log is true, lies at from +
+// (value - low)/(high - low) (to - from). Each line is a polyline with data-name, one for each stretch between gaps, each level a path with data-name; every
 // name, note and tick is a group with data-name and data-box (left, top, width,
 // height).
 func WriteLineChart(w io.Writer, chart LineChart) error {
@@ -43,9 +43,15 @@ func (d linesSheet) draw(c LineChart) {
 	head := margin + float64(len(title))*d.faces.title.height() + float64(len(subtitle))*(d.faces.text.height()+3)
 	l := arrangeLines(c, head+aboveAxes/2, d.faces)
 	height := l.axes.bottom() + belowAxes + margin
-	d.Start(sheetWidth, height, fmt.Sprintf(`viewBox="0 0 %g %.*f"`, sheetWidth, sheetDecimals, height),
+	attributes := []string{
+		fmt.Sprintf(`viewBox="0 0 %g %.*f"`, sheetWidth, sheetDecimals, height),
 		`role="img"`, attribute("aria-label", c.Title), attribute("font-family", fontFamily),
-		attribute("data-x", l.x.mapping()), attribute("data-y", l.y.mapping()))
+		attribute("data-x", l.x.mapping()), attribute("data-y", l.y.mapping()),
+	}
+	if c.LogY {
+		attributes = append(attributes, `data-y-log="true"`)
+	}
+	d.Start(sheetWidth, height, attributes...)
 	d.Title(c.Title)
 	d.Desc(describeLines(c))
 	d.Rect(0, 0, sheetWidth, height, attribute("fill", paper))
@@ -79,6 +85,10 @@ func (a linearAxis) mapping() string {
 func describeLines(c LineChart) string {
 	words := []string{fmt.Sprintf("%s against %s.", c.YLabel, c.XLabel)}
 	for _, line := range c.Lines {
+		if line.Steps {
+			words = append(words, describeSteps(line))
+			continue
+		}
 		first, last := line.Points[0], line.Points[len(line.Points)-1]
 		words = append(words, fmt.Sprintf("%s from (%.4g, %.4g) to (%.4g, %.4g).", line.Name, first.X, first.Y, last.X, last.Y))
 	}
@@ -88,23 +98,37 @@ func describeLines(c LineChart) string {
 	return strings.Join(words, " ")
 }
 
+// describeSteps says in words how far a stepped line reaches, and its extremes.
+func describeSteps(line Line) string {
+	held := line.Points[:max(1, len(line.Points)-1)]
+	low, high := held[0], held[0]
+	for _, p := range held {
+		if p.Y < low.Y {
+			low = p
+		}
+		if p.Y > high.Y {
+			high = p
+		}
+	}
+	return fmt.Sprintf("%s from %.4g to %.4g: least %.4g at %.4g, greatest %.4g at %.4g.",
+		line.Name, line.Points[0].X, line.Points[len(line.Points)-1].X, low.Y, low.X, high.Y, high.X)
+}
+
 // grid draws the axes, their ticks and names.
 func (d linesSheet) grid(l linesLayout) {
 	var faint, strong strings.Builder
-	for k := l.y.ticks.from; k <= l.y.ticks.to; k++ {
-		y := l.y.at(l.y.ticks.value(k))
+	for _, mark := range l.y.marks() {
+		y := l.y.at(mark.value)
 		fmt.Fprintf(&faint, "M%.2f %.2fH%.2f", l.axes.x, y, l.axes.right())
-		text := l.y.ticks.text(k)
-		width := d.faces.small.width(text)
-		d.labelled(text, box{l.axes.x - 8 - width, y - d.faces.small.ascent()/2, width, d.faces.small.height()}, d.faces.small, softInk)
+		width := d.faces.small.width(mark.text)
+		d.labelled(mark.text, box{l.axes.x - 8 - width, y - d.faces.small.ascent()/2, width, d.faces.small.height()}, d.faces.small, softInk)
 	}
-	for k := l.x.ticks.from; k <= l.x.ticks.to; k++ {
-		x := l.x.at(l.x.ticks.value(k))
+	for _, mark := range l.x.marks() {
+		x := l.x.at(mark.value)
 		fmt.Fprintf(&faint, "M%.2f %.2fV%.2f", x, l.axes.bottom(), l.axes.y)
 		fmt.Fprintf(&strong, "M%.2f %.2fv5", x, l.axes.bottom())
-		text := l.x.ticks.text(k)
-		width := d.faces.small.width(text)
-		d.labelled(text, box{x - width/2, l.axes.bottom() + 8, width, d.faces.small.height()}, d.faces.small, softInk)
+		width := d.faces.small.width(mark.text)
+		d.labelled(mark.text, box{x - width/2, l.axes.bottom() + 8, width, d.faces.small.height()}, d.faces.small, softInk)
 	}
 	fmt.Fprintf(&strong, "M%.2f %.2fV%.2fH%.2f", l.axes.x, l.axes.y, l.axes.bottom(), l.axes.right())
 	d.Path(faint.String(), attribute("stroke", faintInk), `stroke-width="0.5"`, `fill="none"`)
@@ -127,23 +151,18 @@ func (d linesSheet) levels(l linesLayout) {
 
 func (d linesSheet) line(l linesLayout, i int) {
 	line, s := l.chart.Lines[i], l.stroke(i)
-	var places []point
-	for _, p := range line.Points {
-		places = append(places, point{l.x.at(p.X), l.y.at(p.Y)})
-	}
-	for from := 0; from < len(places); {
-		to := from + 1
-		for to < len(places) && !line.Points[to].Gap {
-			to++
-		}
-		x, y := columns(places[from:to])
+	for _, track := range l.tracks(line) {
+		x, y := columns(track)
 		d.Polyline(x, y, append(s.attributes(), attribute("data-name", line.Name), `fill="none"`, `stroke-linejoin="round"`)...)
-		from = to
 	}
-	for k, p := range line.Points {
-		d.Circle(places[k].x, places[k].y, s.width+1, attribute("fill", s.ink))
+	if line.Steps {
+		return
+	}
+	for _, p := range line.Points {
+		at := point{l.x.at(p.X), l.y.at(p.Y)}
+		d.Circle(at.x, at.y, s.width+1, attribute("fill", s.ink))
 		if p.Mark {
-			d.Circle(places[k].x, places[k].y, s.width+ringWidth, attribute("stroke", cautionInk), `stroke-width="1.6"`, `fill="none"`)
+			d.Circle(at.x, at.y, s.width+ringWidth, attribute("stroke", cautionInk), `stroke-width="1.6"`, `fill="none"`)
 		}
 	}
 }

@@ -135,6 +135,71 @@ func TestLineChartWordsStandApart(t *testing.T) {
 	})
 }
 
+var steppedPicture = LineChart{
+	Title: "pressure along the walls", XLabel: "x, m", YLabel: "p/p0", LogY: true, Low: 0, High: 1.2,
+	Lines: []Line{
+		{Name: "body", Lead: true, Steps: true, Points: []LinePoint{{X: 0, Y: 2.9}, {X: 0.6, Y: 6.8}, {X: 1.1, Y: 1.9}, {X: 1.2, Y: 1.9}}},
+		{Name: "cowl", Steps: true, Points: []LinePoint{{X: 0.9, Y: 0.23}, {X: 1, Y: 13, Gap: true}, {X: 1.1, Y: 20}, {X: 1.2, Y: 20}}},
+	},
+	Levels: []Level{{"free stream", 1}},
+}
+
+// Steps hold their value to the next point, on a logarithmic axis that is read back
+// by its logarithms; ticks and names stand apart.
+func TestStepsOnALogarithmicAxis(t *testing.T) {
+	f := readLineChart(t, steppedPicture)
+	for name, want := range map[string][][2]float64{
+		"body": {{0, 2.9}, {0.6, 2.9}, {0.6, 6.8}, {1.1, 6.8}, {1.1, 1.9}, {1.2, 1.9}},
+		"cowl": {{0.9, 0.23}, {1, 13}, {1.1, 13}, {1.1, 20}, {1.2, 20}},
+	} {
+		if len(f.lines[name]) != len(want) {
+			t.Fatalf("%s: %d corners, want %d", name, len(f.lines[name]), len(want))
+		}
+		for i, at := range f.lines[name] {
+			x, y := value(f.x, at[0]), math.Pow(10, value(f.y, at[1]))
+			if math.Abs(x-want[i][0]) > 1e-4 || math.Abs(y/want[i][1]-1) > 1e-3 {
+				t.Errorf("%s: corner %d reads (%g, %g), want %v", name, i, x, y, want[i])
+			}
+		}
+	}
+	for _, tick := range []string{"0.2", "0.5", "1", "2", "5", "10", "20"} {
+		if f.labels[tick] == nil {
+			t.Errorf("no tick %s", tick)
+		}
+	}
+	for i, a := range f.all {
+		for _, b := range f.all[:i] {
+			if a.overlaps(b) {
+				t.Errorf("%v and %v overlap", a, b)
+			}
+		}
+	}
+	if words := describeLines(steppedPicture); !strings.Contains(words, "cowl from 0.9 to 1.2: least 0.23 at 0.9, greatest 20 at 1.1.") {
+		t.Errorf("the alternative reads %q", words)
+	}
+}
+
+// Ticks of a logarithmic axis lie inside it, rise, and stand apart, whatever its ends.
+func TestDecadeMarks(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		low := rapid.Float64Range(-6, 6).Draw(t, "low")
+		span := rapid.Float64Range(0.45, 9).Draw(t, "decades")
+		a := linearAxis{log: true, low: low, high: low + span, from: linesHeight, to: 0}
+		marks := a.marks()
+		if len(marks) < 3 && span < 2 || len(marks) == 0 {
+			t.Errorf("%d ticks", len(marks))
+		}
+		for i, m := range marks {
+			if l := math.Log10(m.value); l < a.low || l > a.high {
+				t.Errorf("tick %s lies outside", m.text)
+			}
+			if i > 0 && a.at(marks[i-1].value)-a.at(m.value) < markRoom {
+				t.Errorf("ticks %s and %s are too near", marks[i-1].text, m.text)
+			}
+		}
+	})
+}
+
 func TestInvalidLines(t *testing.T) {
 	bad := LineChart{
 		Low: 2, High: 1,
@@ -147,6 +212,7 @@ func TestInvalidLines(t *testing.T) {
 		Levels: make([]Level, mostLines),
 	}
 	bad.Levels[0] = Level{strings.Repeat("x", longestText+1), math.Inf(1)}
+	bad.LogY = true
 	err := WriteLineChart(io.Discard, bad)
 	var invalid *InvalidLines
 	if !errors.As(err, &invalid) {
@@ -154,7 +220,7 @@ func TestInvalidLines(t *testing.T) {
 	}
 	for _, want := range []string{
 		"range of x is 2 to 1", "16 lines", "line 0 has a name of 201", "line 0 has no point", "line 1: (1, 0)", "line 2: (0, NaN)",
-		"line 3 has 401 points", "level 0 has a name", "level 0 lies at +Inf",
+		"line 3 has 401 points", "line 1: 0 has no place on a logarithmic axis", "level 1 lies at 0", "level 0 has a name", "level 0 lies at +Inf",
 	} {
 		if !strings.Contains(err.Error(), want) {
 			t.Errorf("%q is not reported in: %v", want, err)

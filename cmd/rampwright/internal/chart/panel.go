@@ -18,7 +18,7 @@ func (d linesSheet) newPanel(frame box, x, y Span) panel {
 	p := panel{
 		frame:  frame,
 		x:      linearAxis{low: x.Low, high: x.High, from: frame.x, to: frame.right()},
-		y:      linearAxis{y.Low, y.High, frame.bottom(), frame.y, newRuler(y.Low, y.High, 30*(y.High-y.Low)/frame.h)},
+		y:      linearAxis{low: y.Low, high: y.High, from: frame.bottom(), to: frame.y, ticks: newRuler(y.Low, y.High, 30*(y.High-y.Low)/frame.h)},
 		xLabel: x.Label, yLabel: y.Label,
 	}
 	for room := 62.0; ; room *= 2 {

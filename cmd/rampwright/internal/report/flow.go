@@ -31,7 +31,7 @@ func NewFlow(head Head, problem *inlet.Problem, flow *inlet.Flow) *FlowDocument 
 	}
 	d.Inlet = newShape(problem.Definition(), flow, at(d.readings, problems.Geometry))
 	for i := range flow.Points {
-		point := newPoint(&flow.Points[i])
+		point := newPoint(&flow.Points[i], captureArea(problem.Definition(), flow))
 		here := at(d.readings, point.Name)
 		point.Quantities, point.Members, point.Missing = values(here), members(here), missing(here)
 		d.Points = append(d.Points, point)
@@ -146,11 +146,15 @@ type Station struct {
 	TemperatureK           Number `json:"temperature_K"`
 }
 
-func newPoint(flow *inlet.PointFlow) Point {
+// newPoint describes the flow at a point of an inlet of that capture area, m2.
+func newPoint(flow *inlet.PointFlow, area float64) Point {
 	p := Point{
 		Name: flow.Point.Name, Mach: Number(flow.Point.Mach), IncidenceDeg: Number(degrees(flow.Point.Incidence)),
 		PressureKPa: Number(flow.Point.Pressure / pascals), TemperatureK: Number(flow.Point.Temperature),
 		Status: flow.Status(), Traced: flow.Traced, Stations: []Station{}, Trace: newTrace(flow),
+	}
+	if p.Trace != nil {
+		p.Trace.addWalls(flow, area)
 	}
 	for _, s := range flow.Stations {
 		p.Stations = append(p.Stations, Station{
@@ -162,6 +166,11 @@ func newPoint(flow *inlet.PointFlow) Point {
 		})
 	}
 	return p
+}
+
+// captureArea is the height of the lip above the leading edge times the width.
+func captureArea(d inlet.Definition, flow *inlet.Flow) float64 {
+	return (flow.Contour.Lip.Y - flow.Contour.Corners[0].Y) * d.Width
 }
 
 const pascals = 1e3 // in a kilopascal

@@ -185,3 +185,20 @@ func joined(pieces []cell, between string) cell {
 	}
 	return out
 }
+
+// flowTables shows the flight points of a flow, their stations left to the document,
+// and what their traces say.
+func flowTables(c *chapter, s *studyPage) error {
+	err := plainTables(plainList{"points", []string{"name", "mach", "incidence_deg", "pressure_kPa", "temperature_K", "status"}})(c, s)
+	if err != nil {
+		return err
+	}
+	var points []Point
+	if raw, ok := s.fields.Get("points"); ok {
+		if err := json.Unmarshal(raw, &points); err != nil {
+			return err
+		}
+	}
+	c.traces(s.Name, points)
+	return nil
+}

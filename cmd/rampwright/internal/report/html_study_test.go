@@ -9,7 +9,7 @@ import (
 
 const somePicture = `<svg width="10" height="10" viewBox="0 0 10 10" role="img" aria-label="curve"><title>curve</title><defs><pattern id="hatch" width="4" height="4"></pattern></defs><rect width="4" height="4" fill="url(#hatch)"/></svg>`
 
-// studies are one of each a page has room for: three as their commands write
+// studies are one of each a page has room for: four as their commands write
 // them, plain ones.
 func studies(t *testing.T) []StudyFile {
 	t.Helper()
@@ -25,7 +25,9 @@ func studies(t *testing.T) []StudyFile {
 	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "states": {"regular": 40, "flow ends": 3}, "boundary": [` +
 		strings.Repeat(`{"name": "a", "quantity": "b", "closed": true},`, mostRows+1) + `{"name": "last", "points": [[1, 2]]}]}`
 	schedule := `{"format": 1, "brief_hash": "abc", "rows": [{"mach": 4.5, "angle_deg": 3.25, "limits_kept": true, "limits_missed": []}]}`
+	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
 	return []StudyFile{
+		{"flow", NewFlow(head, problem, flow).JSON(), nil},
 		{"ladder", NewLadder(head, ladderFixture(t)).JSON(), picture("ladder")},
 		{"trade", NewTrade(head, tradeFixture(t)).JSON(), nil},
 		{"fits", NewFits(head, fitsFixture(false)).JSON(), nil},
@@ -54,6 +56,7 @@ func TestPageShowsStudies(t *testing.T) {
 		at = next
 	}
 	for _, want := range []string{
+		">Points<", "Static pressure along the walls at ", ">cowl inside<", ">sum, ", " falls inside the lip: ", `aria-label="Pressure along the walls: over"`,
 		"Run for another brief", "The run was cut short", "two thirds of 100 draws", ">Quantities<", ">States<", ">Shock inside the lip<", "envelope.json has all",
 		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, `id="map-hatch"`, `id="waves-1-hatch"`, "pass_<wbr />probability", "knee of the curve", "Number of ramps ", ">40<", ">4.5000<", ">yes<", ">no<",
 	} {

@@ -20,7 +20,7 @@ func TestPageShowsTraces(t *testing.T) {
 	f.Result = compact(design)
 	page := pageOf(t, f)
 	checkPage(t, page, documents(f))
-	for _, want := range []string{`<section id="waves">`, "every quantity of the stream", "comparison with the chain", " ends ahead of the throat: "} {
+	for _, want := range []string{`<section id="waves">`, "every quantity of the stream", "comparison with the chain", " ends ahead of the throat: ", "Pressure along the walls: slow", ">greatest p"} {
 		if !bytes.Contains(page, []byte(want)) {
 			t.Errorf("the page does not hold %q", want)
 		}

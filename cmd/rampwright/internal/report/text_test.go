@@ -106,7 +106,8 @@ func TestStationsAlign(t *testing.T) {
 
 // A wide page shows columns that a narrow one leaves out.
 func TestWidthShowsMore(t *testing.T) {
-	narrow, wide := texts(t, 80)["flow"], texts(t, 140)["flow"]
+	stations := func(width int) string { return strings.Join(section(texts(t, width)["flow"], "Stations"), "\n") }
+	narrow, wide := stations(80), stations(140)
 	for _, head := range []string{"p/p0", "T/T0", "wave to x"} {
 		if strings.Contains(narrow, head) || !strings.Contains(wide, head) {
 			t.Errorf("%s: narrow %v, wide %v", head, strings.Contains(narrow, head), strings.Contains(wide, head))

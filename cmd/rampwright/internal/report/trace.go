@@ -16,13 +16,20 @@ type Trace struct {
 	Threshold  Number `json:"threshold"`   // strength below which a wave is merged
 	Events     int    `json:"events"`
 	// Ending is why the captured stream was not followed to the throat plane.
-	Ending       *Ending        `json:"ending,omitempty"`
-	Capture      Number         `json:"capture"`
-	LipShockMiss Number         `json:"lip_shock_miss"` // negative ahead of the shoulder
-	Throat       Throat         `json:"throat"`
-	Closure      Closure        `json:"closure"`
-	Error        TraceError     `json:"error"`
-	Missing      Object[string] `json:"missing,omitzero"`
+	Ending       *Ending    `json:"ending,omitempty"`
+	Capture      Number     `json:"capture"`
+	LipShockMiss Number     `json:"lip_shock_miss"` // negative ahead of the shoulder
+	Throat       Throat     `json:"throat"`
+	Closure      Closure    `json:"closure"`
+	Error        TraceError `json:"error"`
+	LipShocks    []LipShock `json:"lip_shocks"` // bottom to top
+	// Walls reach as far as the throat plane or the ending, the outer cowl to its
+	// length; Forces sum them up.
+	Walls          []TraceWall    `json:"walls"`
+	Forces         []WallForce    `json:"forces"`
+	ForceSums      []ForceSum     `json:"force_sums"`
+	ForceReference Number         `json:"force_reference_N"` // q0 Ac
+	Missing        Object[string] `json:"missing,omitzero"`
 }
 
 // Ending is where and why a trace ends early.
@@ -47,6 +54,7 @@ type Throat struct {
 	WorstTotalPressure Number `json:"worst_total_pressure_ratio"`
 	BestTotalPressure  Number `json:"best_total_pressure_ratio"`
 	Distortion         Number `json:"distortion"`
+	Tubes              []Tube `json:"tubes"`
 }
 
 // Closure is what mass, momentum and energy of the captured stream tube leave open.
@@ -65,7 +73,8 @@ type TraceError struct {
 	PressureRatio Number `json:"pressure_ratio"`
 }
 
-// newTrace describes the trace of a point, nil where there is none.
+// newTrace describes the trace of a point, but for what addWalls adds; nil where there
+// is none.
 func newTrace(flow *inlet.PointFlow) *Trace {
 	t := flow.Trace
 	if t == nil {
@@ -75,7 +84,7 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 	trace := &Trace{
 		WaveletDeg: Number(degrees(t.Settings.Wavelet)), Threshold: Number(t.Threshold), Events: t.Events,
 		Capture: Number(t.Captured.Capture), LipShockMiss: Number(t.LipShockMiss),
-		Throat:  Throat{Number(t.Stations[0].X), none, none, none, none, none, none, none, none},
+		Throat:  Throat{Number(t.Stations[0].X), none, none, none, none, none, none, none, none, nil},
 		Closure: Closure{none, none, none},
 		Error:   TraceError{Number(t.Error.Capture), Number(t.Error.Spillage), none, none, none},
 	}
@@ -85,7 +94,7 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 	if s := &t.Stations[0]; s.Err == nil {
 		trace.Throat = Throat{
 			Number(s.X), Number(s.Height), Number(s.Recovery), Number(s.Mach), Number(s.Pressure), Number(s.Temperature),
-			Number(s.Worst), Number(s.Best), Number(s.Distortion),
+			Number(s.Worst), Number(s.Best), Number(s.Distortion), nil,
 		}
 		trace.Closure = Closure{Number(s.Closure.Mass), Number(s.Closure.Momentum), Number(s.Closure.Energy)}
 		if len(t.Error.Stations) > 0 {
@@ -123,25 +132,26 @@ func (t *Trace) reasons(from *wave.Trace) Object[string] {
 // text tells the trace of a point in a sentence or two.
 func (t *Trace) text(point *Point) string {
 	settings := fmt.Sprintf("expansion wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
+	chain := !point.Traced && point.Status == attachedStatus // it has an answer of its own
 	if t.Ending != nil {
 		where := fmt.Sprintf("%s at %s, x %s m, y %s m, Mach %s", t.Ending.Reason, t.Ending.Site,
 			significant(float64(t.Ending.PlaceM[0])), significant(float64(t.Ending.PlaceM[1])), significant(float64(t.Ending.Mach)))
-		if point.Traced {
+		if !chain {
 			return fmt.Sprintf("traced (%s). The trace ends ahead of the throat: %s.", settings, where)
 		}
-		return fmt.Sprintf("the lip shock strikes the body %s. Traced on (%s), no regular supersonic flow reaches the throat plane: %s. The throat state of the table leaves that out.",
+		return fmt.Sprintf("%s. Traced on (%s), no regular supersonic flow reaches the throat plane: %s. The throat state of the table leaves that out.",
 			t.missText(), settings, where)
 	}
 	average := fmt.Sprintf("Mach %s, static pressure ratio %s, total pressure ratio %s", significant(float64(t.Throat.Mach)),
 		significant(float64(t.Throat.PressureRatio)), significant(float64(t.Throat.ShockRecovery)))
-	if share := t.share(); finite(share) {
+	if share := t.share(); finite(share) && share >= noise {
 		average += fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
 	}
-	if point.Traced {
+	if !chain {
 		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery. The mass of the captured stream closes to %s.",
 			settings, average, significant(float64(t.Throat.Distortion)), closureText(math.Abs(float64(t.Closure.Mass))))
 	}
-	return fmt.Sprintf("the lip shock strikes the body %s and reflects. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
+	return fmt.Sprintf("%s. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
 		t.missText(), settings, average)
 }
 
@@ -153,15 +163,18 @@ func closureText(open float64) string {
 	return fmt.Sprintf("%.1g", open)
 }
 
+// missText says where the lip shock of a chain of straight shocks goes.
 func (t *Trace) missText() string {
 	miss := float64(t.LipShockMiss)
 	switch {
 	case !finite(miss):
-		return "off the shoulder"
+		return "no lip shock reaches the body"
+	case math.Abs(miss) < noise:
+		return "the lip shock ends at the shoulder"
 	case miss < 0:
-		return significant(-miss) + " capture heights ahead of the shoulder"
+		return "the lip shock strikes the body " + significant(-miss) + " capture heights ahead of the shoulder and reflects"
 	}
-	return significant(miss) + " capture heights behind the shoulder"
+	return "the lip shock strikes the body " + significant(miss) + " capture heights behind the shoulder and reflects"
 }
 
 // share is the error bound of the throat averages over their values.

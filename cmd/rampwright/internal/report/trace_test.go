@@ -24,7 +24,13 @@ func swallowed() inlet.Definition {
 
 const traceKeys = "wavelet_deg threshold events capture lip_shock_miss throat throat.x_m throat.height_m throat.shock_recovery " +
 	"throat.mach throat.pressure_ratio throat.temperature_ratio throat.worst_total_pressure_ratio throat.best_total_pressure_ratio " +
-	"throat.distortion closure closure.mass closure.momentum closure.energy error"
+	"throat.distortion throat.tubes throat.tubes.from_m throat.tubes.to_m throat.tubes.height_m throat.tubes.mach throat.tubes.flow_angle_deg " +
+	"throat.tubes.pressure_ratio throat.tubes.temperature_ratio throat.tubes.total_pressure_ratio throat.tubes.mass_fraction " +
+	"closure closure.mass closure.momentum closure.energy error lip_shocks lip_shocks.name lip_shocks.clearance lip_shocks.inside " +
+	"walls walls.surface walls.segment walls.from_m walls.to_m walls.mach walls.flow_angle_deg walls.pressure_ratio walls.pressure_kPa " +
+	"forces forces.surface forces.segment forces.from_m forces.to_m forces.length_m forces.least_pressure_ratio forces.mean_pressure_ratio " +
+	"forces.greatest_pressure_ratio forces.force_x forces.force_y forces.force_x_N forces.force_y_N " +
+	"force_sums force_sums.surface force_sums.force_x force_sums.force_y force_sums.force_x_N force_sums.force_y_N force_reference_N"
 
 const endingKeys = "ending ending.reason ending.site ending.place_m ending.mach ending.turning_deg"
 
