@@ -55,7 +55,7 @@ p{margin:0 0 10px;max-width:78ch}
 ul{margin:0 0 10px;padding-left:20px;max-width:84ch}
 li{margin-bottom:6px}
 #cautions li{border-left:4px solid var(--alert);list-style:none;padding-left:12px;margin-left:-20px}
-.warning{border-left:4px solid var(--alert);padding-left:12px}
+.warning{border-left:4px solid var(--alert);padding-left:12px;overflow-wrap:anywhere}
 .wide{overflow-x:auto;margin:0 0 16px}
 table{border-collapse:collapse;font-size:13px;min-width:50%}
 caption{text-align:left;font-weight:bold;padding:0 0 5px}

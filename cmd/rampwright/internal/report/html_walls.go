@@ -28,7 +28,8 @@ func (s *chapter) walls(file string, points []Point) {
 	}
 }
 
-// forceTable lists pressures and forces by segment, then the sums by surface.
+// forceTable lists pressures and forces by segment, then the sums by surface of more
+// than one, and over all.
 func (t *Trace) forceTable(point cell, file string, i int) *htmlTable {
 	at := func(key ...any) []any { return append([]any{"points", i, "trace"}, key...) }
 	table := &htmlTable{
@@ -44,8 +45,15 @@ func (t *Trace) forceTable(point cell, file string, i int) *htmlTable {
 			number(f.MostPressure, file, in("greatest_pressure_ratio")...),
 		}, f.cells(file, in())...))
 	}
+	segments := map[string]int{}
+	for _, f := range t.Forces {
+		segments[f.Surface]++
+	}
 	blank := cell{Text: "", Number: true}
 	for k, f := range t.ForceSums {
+		if segments[f.Surface] == 1 {
+			continue
+		}
 		in := at("force_sums", k)
 		row := []cell{{Parts: []cell{words("sum, "), quoted(f.Surface, file, append(in[:len(in):len(in)], "surface")...)}}, blank, blank, blank, blank, blank, blank}
 		table.Rows = append(table.Rows, append(row, f.cells(file, in)...))

@@ -27,7 +27,7 @@ func (p *page) walls(points []Point) {
 		all := trace.ForceSums[len(trace.ForceSums)-1]
 		sum := fixed([]float64{float64(all.X), float64(all.Y)}, forceDecimals)
 		t.add(allSurfaces, "", "", "", "", "", sum[0], sum[1])
-		references = append(references, fmt.Sprintf("%s %s", points[i].Name, significant(float64(trace.ForceReference))))
+		references = append(references, fmt.Sprintf("%s N at %s", significant(float64(trace.ForceReference)), points[i].Name))
 	}
 	if row == 0 {
 		return
@@ -35,7 +35,7 @@ func (p *page) walls(points []Point) {
 	p.heading("Pressure along the walls")
 	p.wrap(indent, "As far as the throat plane or the end of the trace, the outer cowl to its length. Forces are those of p - p0 on the wall over q0 Ac, x downstream, y toward the cowl.", indent)
 	p.table(t)
-	p.wrap(indent, "q0 Ac, N: "+strings.Join(references, ", ")+". Every stretch: --json, --waves.", indent)
+	p.wrap(indent, "q0 Ac: "+strings.Join(references, ", ")+". Every stretch of wall: --json, --waves.", indent)
 	p.lipShocks(points)
 }
 

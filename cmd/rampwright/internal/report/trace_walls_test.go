@@ -260,7 +260,7 @@ func TestWallsInTheText(t *testing.T) {
 				t.Errorf("wider than %d: %q", width, line)
 			}
 		}
-		for _, want := range []string{"[over]", "[beyond]", "[slow]", "body 3", "cowl inside 1", "cowl outside 1", "q0 Ac, N: over ", "beyond: the ramp "} {
+		for _, want := range []string{"[over]", "[beyond]", "[slow]", "body 3", "cowl inside 1", "cowl outside 1", "q0 Ac: ", " N at over,", "beyond: the ramp "} {
 			if !strings.Contains(text, want) {
 				t.Errorf("no %q in\n%s", want, text)
 			}
