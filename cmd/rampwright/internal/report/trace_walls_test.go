@@ -31,7 +31,12 @@ type readTraces struct {
 				Best        float64 `json:"best_total_pressure_ratio"`
 				Tubes       []readTube
 			}
-			Ending  *struct{ Reason string }
+			Ending *struct{ Reason string }
+			Shocks []struct {
+				Name      string
+				Clearance float64
+				Inside    bool
+			} `json:"lip_shocks"`
 			Capture *float64
 			Closure struct{ Momentum *float64 }
 			Walls   []readWall
@@ -227,6 +232,31 @@ func TestTubesAverageToTheThroat(t *testing.T) {
 	}
 	if tested != 2 {
 		t.Errorf("%d traced points", tested)
+	}
+}
+
+// The shocks at the lip are those of the limit on their clearance, inside where it is
+// negative.
+func TestShocksAtTheLip(t *testing.T) {
+	inside := 0
+	for _, p := range tracesOf(t).Points {
+		if p.Trace == nil {
+			continue
+		}
+		least := math.Inf(1)
+		for _, s := range p.Trace.Shocks {
+			least = math.Min(least, s.Clearance)
+			if s.Inside != (s.Clearance < 0) || !strings.HasPrefix(s.Name, "ramp ") {
+				t.Errorf("%s: %+v", p.Name, s)
+			}
+			if s.Inside {
+				inside++
+			}
+		}
+		near(t, p.Name+" least clearance", least, *p.Quantities["lip_clearance"], 1e-9)
+	}
+	if inside == 0 {
+		t.Error("no shock falls inside the lip")
 	}
 }
 
