@@ -27,8 +27,8 @@ var updateGolden = flag.Bool("update-golden", false, "rewrite the recorded files
 const goldenDir = "../../testdata/golden"
 
 // Everything the program writes of a given design is as recorded, to six digits:
-// JSON, CSV, SVG and HTML of the design, of a ladder, a trade curve and learning
-// curves, and of a comparison.
+// JSON, CSV, SVG and HTML of the design, of its waves, of a ladder, a trade curve and
+// learning curves, and of a comparison.
 func TestGolden(t *testing.T) {
 	files := goldenFiles(t)
 	if *updateGolden {
@@ -146,12 +146,32 @@ func goldenFiles(t *testing.T) []file {
 		files = append(files, file{made.name + ".json", made.document.JSON()}, file{made.name + ".csv", made.document.CSV()}, file{made.name + ".svg", picture})
 		folder.Studies = append(folder.Studies, report.StudyFile{Name: made.name, Document: made.document.JSON(), Pictures: []report.StudyPicture{{Name: made.name, Data: picture}}})
 	}
+	waves := goldenWaves(t, of, head, 9, 8)
+	folder.Studies = append(folder.Studies, report.StudyFile{Name: "flow", Document: waves[0].data})
+	files = append(files, waves...)
 	page, err := report.Page(folder)
 	if err != nil {
 		t.Fatal(err)
 	}
 	i := slices.IndexFunc(files, func(f file) bool { return f.name == pageName })
 	files[i].data = page // the one with the studies
+	return files
+}
+
+// goldenWaves are the files of the waves of a given design, flow.json first.
+func goldenWaves(t *testing.T, of *study, head report.Head, x ...float64) []file {
+	t.Helper()
+	flow, err := of.problem.Flow(t.Context(), x)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := wavesFolder("waves").trace(of.problem.Freeze(x), flow); err != nil {
+		t.Fatal(err)
+	}
+	files, err := waveFiles(flow, report.NewFlow(head, of.problem, flow))
+	if err != nil {
+		t.Fatal(err)
+	}
 	return files
 }
 
