@@ -121,10 +121,9 @@ func inTable(v any) string {
 	return fmt.Sprint(v)
 }
 
-// Every front conserves: a slip line has one pressure and direction on both sides, a
-// shock the jump of its normal Mach number (NACA Report 1135 eqs. 128 and 138), and an
-// expansion keeps the total pressure. Shocks run from the flow ahead to a higher
-// pressure behind.
+// A slip line has one pressure and direction on both sides, a shock the pressure jump
+// of the Mach number normal to it (NACA Report 1135 eq. 128), and an expansion keeps
+// the total pressure.
 func TestFrontsHoldTheJumps(t *testing.T) {
 	dir := wavesOf(t, "sorvane-5")
 	kinds := map[string]int{}
@@ -215,7 +214,7 @@ func TestStreamlineEndsAtTheLip(t *testing.T) {
 }
 
 // A chain of straight shocks is traced for the folder: its fronts are those shocks, and
-// what ends ahead of the throat leaves what there is with its reason.
+// the throat is one stream tube.
 func TestWavesOfAChain(t *testing.T) {
 	dir := wavesOf(t, "veyric-6", "--ramp-angle-deg", "8.08,7.22,8.44", "--cowl-angle-deg", "8")
 	var sources []string
