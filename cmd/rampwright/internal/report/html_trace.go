@@ -9,7 +9,7 @@ func (r *result) traceSection() chapter {
 
 // traces tables the traces of a document's points, then the pressures on the walls.
 func (s *chapter) traces(file string, points []Point) {
-	t := &htmlTable{Head: columnHeads(2, "flight point", "used for", "throat Mach", "p/p free stream", "pt/pt free stream", "distortion", "capture", "mass left open", "error of Mach")}
+	t := &htmlTable{Head: columnHeads(2, "flight point", "used for", "throat Mach", "p/p free stream", "pt/pt free stream", "distortion", "capture", "error of Mach")}
 	var notes [][]cell
 	for i := range points {
 		p := &points[i]
@@ -26,7 +26,7 @@ func (s *chapter) traces(file string, points []Point) {
 			name, words("%s", use),
 			number(p.Trace.Throat.Mach, file, at("throat", "mach")...), number(p.Trace.Throat.PressureRatio, file, at("throat", "pressure_ratio")...),
 			number(p.Trace.Throat.ShockRecovery, file, at("throat", "shock_recovery")...), number(p.Trace.Throat.Distortion, file, at("throat", "distortion")...),
-			number(p.Trace.Capture, file, at("capture")...), number(p.Trace.Closure.Mass, file, at("closure", "mass")...),
+			number(p.Trace.Capture, file, at("capture")...),
 			number(p.Trace.Error.Mach, file, at("error", "mach")...),
 		})
 		if e := p.Trace.Ending; e != nil {
@@ -49,5 +49,38 @@ func (s *chapter) traces(file string, points []Point) {
 	if len(t.Rows) > 0 {
 		s.say(words("Every shock, fan and slip line followed through the contour; averages over the throat plane. A point the chain of straight shocks answers is traced as well where its lip shock misses the shoulder; its throat state leaves the reflections out."))
 	}
+	s.balances(file, points)
 	s.walls(file, points)
+}
+
+// balances tables what the stream tubes of the traced points leave open, and capture
+// and spillage drag by two routes.
+func (s *chapter) balances(file string, points []Point) {
+	t := &htmlTable{
+		Caption: []cell{words("What the traces leave open")},
+		Head: columnHeads(1, "flight point", "captured mass", "captured momentum", "captured energy", "spilled mass", "spilled momentum", "spilled energy",
+			"capture by mass", "capture by streamline", "spillage drag by streamline", "spillage drag by momentum"),
+	}
+	for i := range points {
+		trace := points[i].Trace
+		if trace == nil || !finite(float64(trace.Capture)) {
+			continue
+		}
+		at := func(key ...any) []any { return append([]any{"points", i, "trace"}, key...) }
+		row := []cell{quoted(points[i].Name, file, "points", i, "name")}
+		for _, tube := range []struct {
+			key  string
+			open Closure
+		}{{"closure", trace.Closure}, {"spilled_closure", trace.SpilledClosure}} {
+			row = append(row, number(tube.open.Mass, file, at(tube.key, "mass")...), number(tube.open.Momentum, file, at(tube.key, "momentum")...), number(tube.open.Energy, file, at(tube.key, "energy")...))
+		}
+		t.Rows = append(t.Rows, append(row,
+			number(trace.Capture, file, at("capture")...), number(trace.CaptureByStreamline, file, at("capture_by_streamline")...),
+			number(trace.Spillage, file, at("spillage_drag")...), number(trace.SpillageByMomentum, file, at("spillage_drag_by_momentum")...)))
+	}
+	if len(t.Rows) == 0 {
+		return
+	}
+	s.table(t)
+	s.say(words("Captured: the stream tube under the lip as far as the throat plane; spilled: the one over it. Mass and energy are over those of the free stream through the capture area, momentum and drag over q0 Ac."))
 }

@@ -30,6 +30,7 @@ func (d *DesignDocument) Text(width int) string {
 		p.contour(d.Inlet)
 		p.stations(d.Points)
 		p.traces(d.Points)
+		p.balances(d.Points)
 		p.quantities(d.readings, d.Points)
 	} else {
 		d.plainQuantities(p)

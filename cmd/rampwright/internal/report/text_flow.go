@@ -18,6 +18,7 @@ func (d *FlowDocument) Text(width int) string {
 	p.contour(&d.Inlet)
 	p.stations(d.Points)
 	p.traces(d.Points)
+	p.balances(d.Points)
 	p.walls(d.Points)
 	p.quantities(d.readings, d.Points)
 	p.assumptions(d.Assumptions)

@@ -16,13 +16,19 @@ type Trace struct {
 	Threshold  Number `json:"threshold"`   // strength below which a wave is merged
 	Events     int    `json:"events"`
 	// Ending is why the captured stream was not followed to the throat plane.
-	Ending       *Ending    `json:"ending,omitempty"`
-	Capture      Number     `json:"capture"`
-	LipShockMiss Number     `json:"lip_shock_miss"` // negative ahead of the shoulder
-	Throat       Throat     `json:"throat"`
-	Closure      Closure    `json:"closure"`
-	Error        TraceError `json:"error"`
-	LipShocks    []LipShock `json:"lip_shocks"` // bottom to top
+	Ending *Ending `json:"ending,omitempty"`
+	// Capture is by the mass under the lip and by following the lip streamline, the
+	// spillage drag by the pressures along that streamline and by momentum.
+	Capture             Number     `json:"capture"`
+	CaptureByStreamline Number     `json:"capture_by_streamline"`
+	Spillage            Number     `json:"spillage_drag"`
+	SpillageByMomentum  Number     `json:"spillage_drag_by_momentum"`
+	LipShockMiss        Number     `json:"lip_shock_miss"` // negative ahead of the shoulder
+	Throat              Throat     `json:"throat"`
+	Closure             Closure    `json:"closure"`
+	SpilledClosure      Closure    `json:"spilled_closure"`
+	Error               TraceError `json:"error"`
+	LipShocks           []LipShock `json:"lip_shocks"` // bottom to top
 	// Walls reach as far as the throat plane or the ending, the outer cowl to its
 	// length; Forces sum them up.
 	Walls          []TraceWall    `json:"walls"`
@@ -57,7 +63,8 @@ type Throat struct {
 	Tubes              []Tube `json:"tubes"`
 }
 
-// Closure is what mass, momentum and energy of the captured stream tube leave open.
+// Closure is what mass, momentum and energy of a stream tube leave open: of the
+// captured one as far as the throat plane, or of the one spilled over the lip.
 type Closure struct {
 	Mass     Number `json:"mass"`
 	Momentum Number `json:"momentum"`
@@ -83,7 +90,9 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 	none := Number(math.NaN())
 	trace := &Trace{
 		WaveletDeg: Number(degrees(t.Settings.Wavelet)), Threshold: Number(t.Threshold), Events: t.Events,
-		Capture: Number(t.Captured.Capture), LipShockMiss: Number(t.LipShockMiss),
+		Capture: Number(t.Captured.Capture), CaptureByStreamline: Number(t.Captured.Traced),
+		Spillage: Number(t.Captured.Spillage), SpillageByMomentum: Number(t.Captured.Balance),
+		LipShockMiss: Number(t.LipShockMiss), SpilledClosure: newClosure(t.Spilled),
 		Throat:  Throat{Number(t.Stations[0].X), none, none, none, none, none, none, none, none, nil},
 		Closure: Closure{none, none, none},
 		Error:   TraceError{Number(t.Error.Capture), Number(t.Error.Spillage), none, none, none},
@@ -96,7 +105,7 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 			Number(s.X), Number(s.Height), Number(s.Recovery), Number(s.Mach), Number(s.Pressure), Number(s.Temperature),
 			Number(s.Worst), Number(s.Best), Number(s.Distortion), nil,
 		}
-		trace.Closure = Closure{Number(s.Closure.Mass), Number(s.Closure.Momentum), Number(s.Closure.Energy)}
+		trace.Closure = newClosure(s.Closure)
 		if len(t.Error.Stations) > 0 {
 			e := t.Error.Stations[0]
 			trace.Error.ShockRecovery, trace.Error.Mach, trace.Error.PressureRatio = Number(e.Recovery), Number(e.Mach), Number(e.Pressure)
@@ -104,6 +113,10 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 	}
 	trace.Missing = trace.reasons(t)
 	return trace
+}
+
+func newClosure(c wave.Closure) Closure {
+	return Closure{Number(c.Mass), Number(c.Momentum), Number(c.Energy)}
 }
 
 // reasons says why numbers of a trace are null.
@@ -116,9 +129,13 @@ func (t *Trace) reasons(from *wave.Trace) Object[string] {
 	}
 	ended := "the trace ended ahead of it"
 	add("capture", !finite(float64(t.Capture)), ended)
+	add("capture_by_streamline", !finite(float64(t.CaptureByStreamline)), ended)
+	add("spillage_drag", !finite(float64(t.Spillage)), ended)
+	add("spillage_drag_by_momentum", !finite(float64(t.SpillageByMomentum)), ended)
 	add("lip_shock_miss", !finite(float64(t.LipShockMiss)), "no lip shock reaches the body")
 	add("throat", from.Stations[0].Err != nil, ended)
 	add("closure", from.Stations[0].Err != nil, ended)
+	add("spilled_closure", !finite(float64(t.SpilledClosure.Mass)), "the flow over the cowl was not followed to its end")
 	bounds := []Number{t.Error.Capture, t.Error.SpillageDrag, t.Error.ShockRecovery, t.Error.Mach, t.Error.PressureRatio}
 	for _, b := range bounds {
 		if !finite(float64(b)) {
@@ -148,19 +165,11 @@ func (t *Trace) text(point *Point) string {
 		average += fmt.Sprintf(", within %s %%", plain(roundUp(100*share)))
 	}
 	if !chain {
-		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery. The mass of the captured stream closes to %s.",
-			settings, average, significant(float64(t.Throat.Distortion)), closureText(math.Abs(float64(t.Closure.Mass))))
+		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery.",
+			settings, average, significant(float64(t.Throat.Distortion)))
 	}
 	return fmt.Sprintf("%s. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
 		t.missText(), settings, average)
-}
-
-// closureText writes what a balance leaves open.
-func closureText(open float64) string {
-	if open < 1e-12 {
-		return "rounding"
-	}
-	return fmt.Sprintf("%.1g", open)
 }
 
 // missText says where the lip shock of a chain of straight shocks goes.

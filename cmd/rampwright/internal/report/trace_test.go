@@ -2,6 +2,7 @@ package report
 
 import (
 	"encoding/json"
+	"math"
 	"slices"
 	"strings"
 	"testing"
@@ -22,11 +23,11 @@ func swallowed() inlet.Definition {
 	return d
 }
 
-const traceKeys = "wavelet_deg threshold events capture lip_shock_miss throat throat.x_m throat.height_m throat.shock_recovery " +
+const traceKeys = "wavelet_deg threshold events capture capture_by_streamline spillage_drag spillage_drag_by_momentum lip_shock_miss throat throat.x_m throat.height_m throat.shock_recovery " +
 	"throat.mach throat.pressure_ratio throat.temperature_ratio throat.worst_total_pressure_ratio throat.best_total_pressure_ratio " +
 	"throat.distortion throat.tubes throat.tubes.from_m throat.tubes.to_m throat.tubes.height_m throat.tubes.mach throat.tubes.flow_angle_deg " +
 	"throat.tubes.pressure_ratio throat.tubes.temperature_ratio throat.tubes.total_pressure_ratio throat.tubes.mass_fraction " +
-	"closure closure.mass closure.momentum closure.energy error lip_shocks lip_shocks.name lip_shocks.clearance lip_shocks.inside " +
+	"closure closure.mass closure.momentum closure.energy spilled_closure spilled_closure.mass spilled_closure.momentum spilled_closure.energy error lip_shocks lip_shocks.name lip_shocks.clearance lip_shocks.inside " +
 	"walls walls.surface walls.segment walls.from_m walls.to_m walls.mach walls.flow_angle_deg walls.pressure_ratio walls.pressure_kPa " +
 	"forces forces.surface forces.segment forces.from_m forces.to_m forces.length_m forces.least_pressure_ratio forces.mean_pressure_ratio " +
 	"forces.greatest_pressure_ratio forces.force_x forces.force_y forces.force_x_N forces.force_y_N " +
@@ -126,5 +127,58 @@ func TestOutlineInTheFlow(t *testing.T) {
 		if c.Rule == "shock_on_lip" {
 			t.Errorf("a caution on a setback that is not there: %s", c.Text)
 		}
+	}
+}
+
+// Both stream tubes close, and both routes to capture and spillage drag agree, in
+// what a script reads; what was not reached is null with its reason.
+func TestBalancesOfATrace(t *testing.T) {
+	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
+	document := NewFlow(head, problem, flow)
+	var read struct {
+		Points []struct {
+			Name  string
+			Trace *struct {
+				Capture      *float64
+				ByStreamline *float64            `json:"capture_by_streamline"`
+				Spillage     *float64            `json:"spillage_drag"`
+				ByMomentum   *float64            `json:"spillage_drag_by_momentum"`
+				Captured     map[string]*float64 `json:"closure"`
+				Spilled      map[string]*float64 `json:"spilled_closure"`
+				Missing      map[string]string
+			}
+		}
+	}
+	if err := json.Unmarshal(document.JSON(), &read); err != nil {
+		t.Fatal(err)
+	}
+	text := document.Text(100)
+	seen := 0
+	for _, p := range read.Points {
+		trace := p.Trace
+		if trace == nil || trace.Capture == nil {
+			continue
+		}
+		if d := *trace.Capture - *trace.ByStreamline; math.Abs(d) > 1e-9 {
+			t.Errorf("%s: captures differ by %g", p.Name, d)
+		}
+		if d := *trace.Spillage - *trace.ByMomentum; math.Abs(d) > 1e-4 {
+			t.Errorf("%s: spillage drags differ by %g", p.Name, d)
+		}
+		for name, tube := range map[string]map[string]*float64{"closure": trace.Captured, "spilled_closure": trace.Spilled} {
+			for law, open := range tube {
+				switch {
+				case open == nil && trace.Missing[name] == "":
+					t.Errorf("%s: %s %s is null without a reason", p.Name, name, law)
+				case open != nil && math.Abs(*open) > map[string]float64{"mass": 1e-12, "energy": 1e-12, "momentum": 1e-3}[law]:
+					t.Errorf("%s: %s of %s leaves %g open", p.Name, law, name, *open)
+				case open != nil:
+					seen++
+				}
+			}
+		}
+	}
+	if seen < 12 || !strings.Contains(text, "What the traces leave open") {
+		t.Errorf("%d balances; text:\n%s", seen, text)
 	}
 }
