@@ -1,7 +1,9 @@
 package inlet
 
 import (
+	"cmp"
 	"math"
+	"slices"
 
 	"rampwright/problems"
 	"rampwright/problems/contour"
@@ -45,6 +47,25 @@ func (o *Outline) Geometry(outerLength float64) wave.Geometry {
 
 // ramps is the number of straight stretches of the body ahead of the shoulder.
 func (o *Outline) ramps() int { return o.shoulder() }
+
+// Crossing returns where body and inner cowl meet behind the throat plane, as far as
+// both are given, and the first corner at or behind that place.
+func (o *Outline) Crossing() (meeting float64, corner contour.Point, ok bool) {
+	corners := slices.Concat(o.Body, o.CowlInner)
+	slices.SortStableFunc(corners, func(a, b contour.Point) int { return cmp.Compare(a.X, b.X) })
+	end := min(o.Body[len(o.Body)-1].X, o.CowlInner[len(o.CowlInner)-1].X)
+	x, open := o.ThroatX, heightBetween(o.Body, o.CowlInner, o.ThroatX)
+	for _, c := range corners {
+		if !(c.X > x) || c.X > end {
+			continue
+		}
+		ahead, before := x, open
+		if x, open = c.X, heightBetween(o.Body, o.CowlInner, c.X); !(open > 0) {
+			return ahead + (x-ahead)*before/(before-open), c, true
+		}
+	}
+	return 0, contour.Point{}, false
+}
 
 // heightBetween is the vertical distance of the walls at x: the throat height of an
 // outline.

@@ -8,6 +8,8 @@ import (
 	"strings"
 	"testing"
 
+	"pgregory.net/rapid"
+
 	"rampwright/problems"
 	"rampwright/problems/contour"
 	"rampwright/problems/wave"
@@ -134,6 +136,33 @@ func TestImpossibleOutlines(t *testing.T) {
 			t.Errorf("%v does not say %q", err, want)
 		}
 	}
+}
+
+// Walls that cross behind the throat plane meet where their straight lines do; those
+// that open or end before do not.
+func TestWallsCrossBehindTheThroat(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		rise := rapid.Float64Range(-0.2, 1).Draw(t, "rise of the body")
+		fall := rapid.Float64Range(-0.2, 1).Draw(t, "fall of the cowl")
+		ends := rapid.Float64Range(1.05, 4).Draw(t, "end of the cowl")
+		o := &Outline{
+			Body:      []contour.Point{{}, {X: 1, Y: 0.1}, {X: 5, Y: 0.1 + 4*rise}},
+			CowlInner: []contour.Point{{X: 0.6, Y: 0.3}, {X: 1, Y: 0.3}, {X: ends, Y: 0.3 - (ends-1)*fall}},
+			ThroatX:   1,
+		}
+		want := math.Inf(1) // of 0.1 + rise s = 0.3 - fall s
+		if rise+fall > 0 {
+			want = 1 + 0.2/(rise+fall)
+		}
+		x, corner, ok := o.Crossing()
+		switch {
+		case math.Abs(want-ends) < 1e-9: // to rounding at the end of the cowl
+		case ok != (want < ends):
+			t.Fatalf("crossing %t at %v, the lines meet at %v, the cowl ends at %v", ok, x, want, ends)
+		case ok && (math.Abs(x-want) > 1e-9*want || corner != o.CowlInner[2]):
+			t.Fatalf("crossing at %v ahead of %v, want %v", x, corner, want)
+		}
+	})
 }
 
 // The trace beside the chain tells the throat behind a lip shock that misses the

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"rampwright/problems/contour"
 	"rampwright/problems/inlet"
@@ -45,6 +46,9 @@ func (r *reader) readOutline(inletNode *node) {
 		return
 	}
 	r.checkOutline(part, o)
+	if len(r.problems) == before {
+		r.checkDuct(part, o)
+	}
 	d.CaptureHeight = o.CowlInner[0].Y
 }
 
@@ -143,6 +147,24 @@ func (r *reader) checkOutline(part *node, o *inlet.Outline) {
 			}
 		}
 	}
+}
+
+// checkDuct refuses walls that cross behind the throat plane: no flow leaves there,
+// which a trace that ends at the plane would not notice.
+func (r *reader) checkDuct(part *node, o *inlet.Outline) {
+	x, corner, crossed := o.Crossing()
+	if !crossed {
+		return
+	}
+	wall, index := part.get("body_m"), slices.Index(o.Body, corner)
+	if index < 0 {
+		wall, index = part.get("cowl_inner_m"), slices.Index(o.CowlInner, corner)
+	}
+	r.add(wall.items[index], Problem{
+		Message: fmt.Sprintf("body and inner cowl cross behind the throat plane, at x %.6g m", x),
+		Value:   pointText(corner), Allowed: "the cowl above the body as far as both walls reach",
+		Hint: "end a wall ahead of the crossing, or turn it",
+	})
 }
 
 // faults takes joined errors apart.

@@ -14,6 +14,7 @@ type reader struct {
 	lines    []string
 	problems Problems
 	brief    *Brief
+	outlined bool // the inlet is given by its outline
 }
 
 // Read reads the bytes of a brief and sets the overrides on top: a flag wins
@@ -51,6 +52,8 @@ func (r *reader) readBrief(root *node) {
 		return
 	}
 	if r.brief.Analytic == nil {
+		part := root.get(inletPart)
+		r.outlined = part != nil && part.has(outlinePart)
 		r.readGas(root)
 		r.readFlight(root) // a dynamic pressure needs the gas
 		r.readInlet(root)
@@ -147,8 +150,8 @@ func inSection(section string) string {
 	}
 }
 
-// keyHint helps with an unknown key: its unit, its spelling, or the section it
-// belongs to.
+// keyHint helps with an unknown key: its unit, its spelling, the name it begins, or
+// the section it belongs to.
 func keyHint(section, typed string) string {
 	var names []named
 	elsewhere := ""
@@ -160,6 +163,11 @@ func keyHint(section, typed string) string {
 		}
 	}
 	hint := nameHint(typed, names)
+	for _, n := range names {
+		if hint == "" && strings.HasPrefix(n.name, typed+"_") {
+			hint = "did you mean " + n.name + "?"
+		}
+	}
 	if hint == "" && elsewhere != "" {
 		return typed + " belongs in " + elsewhere
 	}

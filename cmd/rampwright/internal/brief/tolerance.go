@@ -57,7 +57,27 @@ func (r *reader) readTolerance(root *node) {
 		}
 	}
 	r.brief.Tolerance = t
+	r.checkWalls(part)
 	r.checkSlowest(part)
+}
+
+// checkWalls refuses a scatter of what a given outline does not have.
+func (r *reader) checkWalls(part *node) {
+	if !r.outlined {
+		return
+	}
+	t := &r.brief.Tolerance
+	for _, angle := range []struct {
+		name      string
+		deviation float64
+	}{{"ramp_angle_deg", t.RampAngleDeg}, {"cowl_angle_deg", t.CowlAngleDeg}, {"lip_setback", t.LipSetback}} {
+		if angle.deviation > 0 {
+			r.add(part.get(angle.name), Problem{
+				Message: angle.name + " does not scatter: the walls of an outline stay as given",
+				Value:   exactNumber(angle.deviation), Allowed: "0", Hint: "mach and incidence_deg scatter",
+			})
+		}
+	}
 }
 
 // checkSlowest refuses a scatter of Mach that leaves supersonic flow.
