@@ -7,6 +7,7 @@ import (
 
 	"rampwright/cmd/rampwright/internal/brief"
 	"rampwright/cmd/rampwright/internal/report"
+	"rampwright/problems/inlet"
 )
 
 func (a *app) checkCommand() *cobra.Command {
@@ -52,6 +53,7 @@ func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 			Name: c.Name, Mach: c.Mach, IncidenceDeg: c.IncidenceDeg, Weight: c.Weight,
 			PressureKPa: c.PressureKPa, TemperatureK: c.TemperatureK, AltitudeKm: report.Number(c.AltitudeKm),
 			DynamicPressure: gas.DynamicPressure(c.PressureKPa, c.Mach), Stated: c.Stated,
+			Throat: c.Throat(), ThroatBecause: throatBecause(b, c),
 		})
 	}
 	for _, v := range b.Values() {
@@ -64,6 +66,22 @@ func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 		out.Refused = append(out.Refused, r.Message)
 	}
 	return out
+}
+
+// throatBecause says why the throat of a point is taken from the chain of straight
+// shocks or from a trace.
+func throatBecause(b *brief.Brief, c brief.Condition) string {
+	d := &b.Definition
+	onLip := d.ShockOnLip == inlet.Fixed(c.Mach) && d.LipSetback == inlet.Fixed(0) && c.IncidenceDeg == b.Flight[0].IncidenceDeg
+	switch {
+	case d.Outline != nil:
+		return "the inlet is given by its outline"
+	case c.Traced:
+		return "the brief asks for it"
+	case onLip:
+		return "exact at shock-on-lip"
+	}
+	return "the state just behind the straight lip shock; traced all the same where ramp shocks cross ahead of the lip or fall inside it"
 }
 
 // aimText is the aim as a phrase.

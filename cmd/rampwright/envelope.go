@@ -40,7 +40,9 @@ boundaries between them, each followed along the zero of its margin. Values the
 brief searches are fixed by flags or by --of DIR, as for flow. The ambient air
 is that of the design point: its dynamic pressure is held where the brief states
 one, its pressure and temperature otherwise. The limits of one flight point hold
-over the whole map.`,
+over the whole map. If the brief says throat: traced at any flight point, every
+condition is traced wave by wave; else those that the chain of straight shocks does
+not answer.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			study, err := read(cmd, args[0])
 			if err != nil {

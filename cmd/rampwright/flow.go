@@ -28,11 +28,12 @@ Values the brief searches are fixed by flags (--ramp-angle-deg 8.08,7.22,8.44
 --cowl-angle-deg 8) or taken from a result folder (--of DIR), a flag winning. A
 detached shock is an answer, not an error: --strict turns it into exit code 4.
 
-Where ramp shocks cross ahead of the lip or fall inside it, and for an inlet given
-by its outline, every wave is traced and the throat is an average. --svg draws the
-waves of one flight point. --waves traces every flight point and writes its fronts,
-wall pressures, forces, stream tubes of the throat plane and lip streamline as CSV
-files, with this result as flow.json, into a new folder.`,
+Where ramp shocks cross ahead of the lip or fall inside it, where the brief says
+throat: traced, and for an inlet given by its outline, every wave is traced and the
+throat is an average. --svg draws the waves of one flight point. --waves traces
+every flight point and writes its fronts, wall pressures, forces, stream tubes of
+the throat plane and lip streamline as CSV files, with this result as flow.json,
+into a new folder.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			study, err := read(cmd, args[0])
 			if err != nil {

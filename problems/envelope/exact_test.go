@@ -37,12 +37,18 @@ func threeRamps(t *testing.T, more ...inlet.Point) (*inlet.Problem, inlet.Defini
 var heldAir = envelope.Air{Pressure: 1984, Temperature: 223.18}
 
 // TestTheMapIsTheFlow compares the map with the evaluation of the same inlet at
-// flight points put there: to the last bit, chain or trace.
+// flight points put there: to the last bit, chain or trace, and traced throughout if
+// the points ask for it.
 func TestTheMapIsTheFlow(t *testing.T) {
+	t.Run("as it comes", func(t *testing.T) { compareMap(t, false) })
+	t.Run("traced", func(t *testing.T) { compareMap(t, true) })
+}
+
+func compareMap(t *testing.T, asked bool) {
 	conditions := []envelope.Condition{{Mach: 4.7, Incidence: 1.5 * degree}, {Mach: 5.9}, {Mach: 6.4, Incidence: -3 * degree}, {Mach: 5.7, Incidence: 4 * degree}, {Mach: 2.1}}
 	var points []inlet.Point
 	for _, at := range conditions {
-		points = append(points, inlet.Point{Name: "p" + string(rune('a'+len(points))), Mach: at.Mach, Incidence: at.Incidence, Pressure: 1984, Temperature: 223.18})
+		points = append(points, inlet.Point{Name: "p" + string(rune('a'+len(points))), Mach: at.Mach, Incidence: at.Incidence, Pressure: 1984, Temperature: 223.18, Traced: asked})
 	}
 	problem, _ := threeRamps(t, points...)
 	whole := problems.NewEvaluation(len(problem.Quantities()))
@@ -53,8 +59,12 @@ func TestTheMapIsTheFlow(t *testing.T) {
 	n := len(frozen.Quantities())
 	for k, at := range conditions {
 		got := problems.NewEvaluation(n)
-		if _, err := frozen.At(context.Background(), at, got); err != nil {
+		outcome, err := frozen.At(context.Background(), at, got)
+		if err != nil {
 			t.Fatal(err)
+		}
+		if asked && !outcome.Traced {
+			t.Errorf("%+v is not traced", at)
 		}
 		for i, q := range frozen.Quantities() {
 			want := whole.Values[(k+1)*n+i]

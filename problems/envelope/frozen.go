@@ -9,7 +9,9 @@ import (
 )
 
 // Frozen is the inlet of a problem at fixed values of its variables, as a Model:
-// the chain of straight shocks where it holds, a trace elsewhere.
+// the chain of straight shocks where it holds, a trace elsewhere. If a flight point
+// of the problem asks for a trace, every condition is traced, so that a map is of
+// one kind.
 type Frozen struct {
 	inlet      *inlet.Frozen
 	definition inlet.Definition
@@ -45,7 +47,9 @@ func (f *Frozen) Quantities() []problems.Quantity { return f.quantities }
 // Point is a condition in the air it is met in.
 func (f *Frozen) Point(at Condition) (inlet.Point, error) {
 	p, t, err := f.air.At(f.definition.Gas, at.Mach)
-	return inlet.Point{Name: "condition", Mach: at.Mach, Incidence: at.Incidence, Pressure: p, Temperature: t}, err
+	return inlet.Point{
+		Name: "condition", Mach: at.Mach, Incidence: at.Incidence, Pressure: p, Temperature: t, Traced: f.definition.Traces(),
+	}, err
 }
 
 // At computes the inlet at one condition.

@@ -3,7 +3,11 @@
 // of quantities, capture, spillage, starting, and the default limits.
 package inlet
 
-import "rampwright/problems/gas"
+import (
+	"slices"
+
+	"rampwright/problems/gas"
+)
 
 // Setting is one number of a design: fixed at Value, or searched within
 // [Low, High]. It stays in the unit of the brief key it comes from (degrees for
@@ -29,6 +33,10 @@ type Point struct {
 	Incidence   float64 // rad
 	Pressure    float64 // Pa, static
 	Temperature float64 // K, static
+	// Traced asks for a trace of every wave here, whether or not the chain of straight
+	// shocks holds: the throat is then an average behind what the lip shock reflects,
+	// not the state just behind it.
+	Traced bool
 }
 
 // Definition is an inlet to be designed and the conditions it meets. The first
@@ -52,6 +60,11 @@ type Definition struct {
 	// cowl angle or lip turning then, and CaptureHeight is that of its lip.
 	Outline *Outline
 	Points  []Point
+}
+
+// Traces reports whether a flight point asks for a trace.
+func (d *Definition) Traces() bool {
+	return slices.ContainsFunc(d.Points, func(p Point) bool { return p.Traced })
 }
 
 // ramps is the number of ramps, of a given outline that of its straight stretches

@@ -41,8 +41,8 @@ type PointFlow struct {
 	Stations   []Station
 	Shocks     []Segment
 	Streamline []contour.Point // of the lip, from ahead of the first shock to the lip; empty where unknown
-	// Traced says that the chain of straight shocks has no answer here and that the
-	// quantities of the captured stream are those of Trace.
+	// Traced says that the quantities of the captured stream are those of Trace: the
+	// chain of straight shocks has no answer here, or the point asks for the trace.
 	Traced bool
 	// Trace is every wave through the contour: of a traced point, and in Flow beside
 	// the chain where its lip shock misses the shoulder; else nil.
@@ -170,9 +170,9 @@ func (f *Frozen) Contour() (contour.Inlet, error) { return f.shape.Inlet, f.shap
 func (f *Frozen) Geometry() wave.Geometry { return f.shape.geometry(&f.problem.definition) }
 
 // At computes the inlet at any condition: the chain of straight shocks where it
-// holds, else a trace by the settings given. A flow that ends early is an answer
-// with its reason in Err (and, of a traced one, its place in Trace.Ending); the
-// error is that of the context.
+// holds and no trace is asked for, else a trace by the settings given. A flow that
+// ends early is an answer with its reason in Err (and, of a traced one, its place in
+// Trace.Ending); the error is that of the context.
 func (f *Frozen) At(ctx context.Context, point Point, settings wave.Settings) (*PointFlow, error) {
 	if err := ctx.Err(); err != nil {
 		return nil, err

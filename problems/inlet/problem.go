@@ -95,15 +95,16 @@ type workspace struct {
 }
 
 // Evaluate computes every quantity at x by the first exact route; points beyond the
-// chain of straight shocks are traced with the settings of a search.
+// chain of straight shocks, and those that ask for it, are traced with the settings
+// of a search.
 func (p *Problem) Evaluate(ctx context.Context, x []float64, dst *problems.Evaluation) error {
 	return p.evaluate(ctx, first{}, x, dst)
 }
 
-// Verify computes every quantity at x by the second exact route. Points beyond the
-// chain are traced with the settings of verification, capture and spillage drag
-// come from the balances of the trace, and dst.Bounds says how far a value may lie
-// from that of Evaluate by the error bounds of both traces.
+// Verify computes every quantity at x by the second exact route. The same points are
+// traced with the settings of verification, capture and spillage drag come from the
+// balances of the trace, and dst.Bounds says how far a value may lie from that of
+// Evaluate by the error bounds of both traces.
 func (p *Problem) Verify(ctx context.Context, x []float64, dst *problems.Evaluation) error {
 	return p.evaluate(ctx, second{}, x, dst)
 }

@@ -21,7 +21,8 @@ func SearchTrace() wave.Settings {
 func VerifyTrace() wave.Settings { return wave.Fine() }
 
 // beyondChain reports whether the straight shocks of the ramps do not tell the
-// flow of the captured stream: they cross in it, or a shock falls inside the lip.
+// flow of the captured stream: they cross in it, a shock falls inside the lip, or
+// the point asks for more than they tell.
 func (a *analysis) beyondChain() bool {
 	switch a.placeErr {
 	case error(errInside), error(errCross), error(errFocusWave):
@@ -31,15 +32,17 @@ func (a *analysis) beyondChain() bool {
 	return a.shape.err == nil && (a.alwaysTraced() || a.throatErr == error(errLipOff))
 }
 
-// alwaysTraced reports whether no chain tells the flow: of a given outline, and of an
-// inlet with a part turned on its hinge.
-func (a *analysis) alwaysTraced() bool { return a.def.Outline != nil || a.shape.moved != nil }
+// alwaysTraced reports whether the chain is not to tell the flow: of a given outline,
+// of an inlet with a part turned on its hinge, and at a point that asks for a trace.
+func (a *analysis) alwaysTraced() bool {
+	return a.point.Traced || a.def.Outline != nil || a.shape.moved != nil
+}
 
 // follow traces the contour and takes every quantity the trace knows from it.
 func (a *analysis) follow(settings wave.Settings) {
 	t, err := a.tracing(settings)
 	if err != nil {
-		if a.alwaysTraced() { // of a design the status of the chain stands
+		if a.alwaysTraced() { // elsewhere the status of the chain stands
 			a.fail(&problems.Status{Phrase: "cannot be traced: " + err.Error()})
 		}
 		return

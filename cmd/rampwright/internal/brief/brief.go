@@ -45,8 +45,17 @@ type Condition struct {
 	PressureKPa  float64
 	TemperatureK float64
 	Weight       float64
+	Traced       bool    // every wave: the throat is an average of the trace
 	AltitudeKm   float64 // geopotential, NaN when pressure and temperature are stated
 	Stated       string  // how the state was given: "dynamic_pressure_kPa 60"
+}
+
+// Throat is what the throat of the point is taken from: chain or traced.
+func (c Condition) Throat() string {
+	if c.Traced {
+		return traced
+	}
+	return chain
 }
 
 // point converts to SI units and radians.
@@ -57,6 +66,7 @@ func (c Condition) point() inlet.Point {
 		Incidence:   c.IncidenceDeg * (math.Pi / 180),
 		Pressure:    c.PressureKPa * 1000,
 		Temperature: c.TemperatureK,
+		Traced:      c.Traced,
 	}
 }
 

@@ -125,6 +125,10 @@ var brokenBriefs = []broken{
 	{"pressure out of range", "altitude_km: 22.8", "pressure_kPa: 3e6, temperature_K: 220", "^3e6", "pressure_kPa is out of range", "0.0001 to 1000 kPa", ""},
 	{"dynamic pressure below ground", "dynamic_pressure_kPa: 50, weight: 1}", "dynamic_pressure_kPa: 50, weight: 1}\n  - {name: low, mach: 1.5, dynamic_pressure_kPa: 200}", "^200", "no altitude of the standard atmosphere", "159.6 kPa at this Mach", "127 kPa static"},
 	{"dynamic pressure above the air", "dynamic_pressure_kPa: 50", "dynamic_pressure_kPa: 0.01", "^0.01", "no altitude of the standard atmosphere", "kPa at this Mach", ""},
+	{"throat of no kind", "altitude_km: 22.8", "altitude_km: 22.8, throat: tracd", "throat: ^tracd", "neither chain nor traced", "chain, traced", "did you mean traced?"},
+	{"throat in truth", "altitude_km: 22.8", "altitude_km: 22.8, throat: true", "throat: ^true", "neither chain nor traced", "chain, traced", ""},
+	{"throat in a list", "altitude_km: 22.8", "altitude_km: 22.8, throat: [traced]", "throat: ^[traced]", "throat must be one value, not a list", "", ""},
+	{"throat left empty", "altitude_km: 22.8", "altitude_km: 22.8, throat: ", "^throat: ", "throat has no value", "", ""},
 	{"negative weight", "weight: 1}", "weight: -1}", "^-1", "weight is out of range", "", ""},
 
 	{"gas to come", "model: perfect", "model: air", "^air", "not available yet", "perfect", ""},

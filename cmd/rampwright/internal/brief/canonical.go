@@ -48,8 +48,8 @@ func (b *Brief) ResolvedYAML() []byte {
 func (b *Brief) writeFlight(w *bytes.Buffer) {
 	w.WriteString("flight:\n")
 	for _, c := range b.Flight {
-		fmt.Fprintf(w, "  - {name: %s, mach: %s, pressure_kPa: %s, temperature_K: %s, incidence_deg: %s, weight: %s}",
-			word(c.Name), exactNumber(c.Mach), exactNumber(c.PressureKPa), exactNumber(c.TemperatureK), exactNumber(c.IncidenceDeg), exactNumber(c.Weight))
+		fmt.Fprintf(w, "  - {name: %s, mach: %s, pressure_kPa: %s, temperature_K: %s, incidence_deg: %s, throat: %s, weight: %s}",
+			word(c.Name), exactNumber(c.Mach), exactNumber(c.PressureKPa), exactNumber(c.TemperatureK), exactNumber(c.IncidenceDeg), c.Throat(), exactNumber(c.Weight))
 		if !math.IsNaN(c.AltitudeKm) {
 			fmt.Fprintf(w, " # from %s", c.Stated)
 		}
@@ -172,6 +172,7 @@ type canonicalPoint struct {
 	TemperatureK float64 `json:"temperature_K"`
 	IncidenceDeg float64 `json:"incidence_deg"`
 	Weight       float64 `json:"weight"`
+	Throat       string  `json:"throat,omitempty"` // traced, where a point of a design asks for it
 }
 
 type canonicalLimit struct {
@@ -254,7 +255,11 @@ func (b *Brief) canonicalJSON() []byte {
 		c.Inlet.RampAngle = append(c.Inlet.RampAngle, canonicalSettingOf(s))
 	}
 	for _, p := range b.Flight {
-		c.Flight = append(c.Flight, canonicalPoint{p.Name, p.Mach, p.PressureKPa, p.TemperatureK, p.IncidenceDeg, p.Weight})
+		point := canonicalPoint{p.Name, p.Mach, p.PressureKPa, p.TemperatureK, p.IncidenceDeg, p.Weight, ""}
+		if p.Traced && d.Outline == nil {
+			point.Throat = traced
+		}
+		c.Flight = append(c.Flight, point)
 	}
 	for _, l := range b.Limits {
 		c.Limits = append(c.Limits, canonicalLimit{l.Quantity, l.Point, oneSide(l.Low), oneSide(l.High)})

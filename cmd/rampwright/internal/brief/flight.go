@@ -64,12 +64,36 @@ func (r *reader) readCondition(entry *node, c *Condition) {
 	c.Mach = r.number(entry, known(flight, "mach"), path+"mach")
 	r.readState(entry, c)
 	c.IncidenceDeg = r.number(entry, known(flight, "incidence_deg"), path+"incidence_deg")
+	c.Traced = r.readThroat(entry, path)
 	k := known(flight, "weight")
 	n := r.value(entry, k)
 	if n != nil {
 		c.Weight, _ = r.decimalOf(n, k, k.Name)
 	}
 	r.record(path+k.Name, exactNumber(c.Weight), "", n)
+}
+
+// readThroat reports whether every wave of a point is traced: of an outline always,
+// and of a design where the point asks for it.
+func (r *reader) readThroat(entry *node, path string) bool {
+	k := known(flight, "throat")
+	n, text := r.value(entry, k), k.Default
+	if r.outlined {
+		text = traced
+	}
+	switch {
+	case n == nil:
+	case !contains(k.Choices, n.text):
+		r.add(n, Problem{Message: "throat is neither chain nor traced", Value: n.shown(), Allowed: k.Allowed(), Hint: nearestHint(n.text, k.Choices)})
+		return false
+	case r.outlined && n.text == chain:
+		r.add(n, Problem{Message: "an outline has no chain of straight shocks: every point of it is traced", Value: n.shown(), Allowed: traced, Hint: "leave throat out"})
+		return false
+	default:
+		text = n.text
+	}
+	r.record(path+k.Name, text, "", n)
+	return text == traced
 }
 
 // ways are the keys that each state the ambient air.

@@ -85,6 +85,7 @@ var keys = []Key{
 	{Section: flight, Name: "pressure_kPa", Form: Number, Unit: "kPa", Low: 0.0001, High: 1000, Meaning: "free-stream static pressure, with temperature_K"},
 	{Section: flight, Name: "temperature_K", Form: Number, Unit: "K", Low: 40, High: 1000, Meaning: "free-stream static temperature, with pressure_kPa"},
 	{Section: flight, Name: "incidence_deg", Form: Number, Unit: "deg", Low: -10, High: 10, Default: "0", Meaning: "incidence; positive turns the free stream toward the ramp"},
+	{Section: flight, Name: "throat", Form: Choice, Choices: []string{chain, traced}, Default: chain, Meaning: "what the throat is: chain, the state just behind the straight lip shock (all the same traced where ramp shocks cross ahead of the lip or fall inside it); traced, the average behind every wave in the duct, for a point flown off shock-on-lip, whose lip shock misses the shoulder and reflects. An outline is always traced"},
 	{Section: flight, Name: "weight", Form: Number, Low: 0, High: 1e6, Default: "1 if no point states one, else 0", Meaning: "weight of the point in the mean of an aim"},
 
 	{Section: gasModel, Name: "model", Form: Choice, Choices: []string{perfect}, Default: perfect, Meaning: "model of the gas"},
@@ -138,6 +139,12 @@ var keys = []Key{
 }
 
 const perfect = "perfect"
+
+// What the throat of a flight point is taken from.
+const (
+	chain  = "chain"
+	traced = "traced"
+)
 
 // Samples and infill asked for when the brief states none, a searched value:
 // common practice.

@@ -55,6 +55,20 @@ func TestOutlineInTheHash(t *testing.T) {
 	}
 }
 
+// Every point of an outline is traced, asked for or not, and hashes alike.
+func TestOutlineIsTraced(t *testing.T) {
+	asked := strings.Replace(sorvane(t), "mach: 4.2,", "mach: 4.2, throat: traced,", 1)
+	b, same := read(t, sorvane(t), nil), read(t, asked, nil)
+	for i, p := range b.Definition.Points {
+		if !p.Traced || !same.Definition.Points[i].Traced {
+			t.Errorf("%s is not traced", p.Name)
+		}
+	}
+	if b.Hash() != same.Hash() || b.Source("flight.climb.throat") != "default" || same.Source("flight.climb.throat") != "line 12" {
+		t.Errorf("hashes %s, %s; sources %s, %s", b.Hash(), same.Hash(), b.Source("flight.climb.throat"), same.Source("flight.climb.throat"))
+	}
+}
+
 // There is nothing to search in an outline, whatever else the brief asks.
 func TestOutlineIsNotSearched(t *testing.T) {
 	b := read(t, sorvane(t)+"aim: {highest: recovery}\nlimits:\n  - {quantity: total_turning_deg, at_least: 3}\n", nil)

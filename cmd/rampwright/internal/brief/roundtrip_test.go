@@ -72,7 +72,7 @@ func drawBrief(t *rapid.T) string {
 			"dynamic_pressure_kPa: "+number("q", 1, 100), "pressure_kPa: "+number("p", 0.01, 100)+", temperature_K: "+number("t", 100, 400))
 		fmt.Fprintf(&w, "  - {name: %q, mach: %s, %s", name, number("mach", 1.5, 10), state)
 		if rapid.Bool().Draw(t, "more") {
-			fmt.Fprintf(&w, ", incidence_deg: %s, weight: %s", number("incidence", -10, 10), number("weight", 0.5, 10))
+			fmt.Fprintf(&w, ", incidence_deg: %s, throat: %s, weight: %s", number("incidence", -10, 10), pick("throat", "chain", "traced"), number("weight", 0.5, 10))
 		} else if i == 0 {
 			w.WriteString(", weight: 1")
 		}
@@ -144,6 +144,7 @@ func TestHashSeesEveryValue(t *testing.T) {
 	for _, edit := range [][2]string{
 		{"A test inlet", "Another"}, {"cruise, mach: 6", "cruise, mach: 6.1"}, {"altitude_km: 22.8", "altitude_km: 22.9"}, {"weight: 1}", "weight: 2}"},
 		{"takeover", "climb"}, {"altitude_km: 22.8", "altitude_km: 22.8, incidence_deg: 1"},
+		{"altitude_km: 22.8", "altitude_km: 22.8, throat: traced"}, {"weight: 1}", "weight: 1, throat: traced}"},
 		{"heats: 1.4", "heats: 1.39"}, {"0.16", "0.17"}, {"0.20", "0.21"}, {"ramps: 3", "ramps: 4"}, {"from: 3, to: 16", "from: 3, to: 17"},
 		{"{from: 2, to: 12}", "5"}, {"cowl_angle_deg", "lip_turning_deg"}, {"cowl_wedge_deg: 4", "cowl_wedge_deg: 5"},
 		{"terminal_shock: false", "terminal_shock: true"}, {"terminal_shock: false", "duct_factor: 0.9"}, {"terminal_shock: false", "lip_setback: 0.1"},
@@ -160,7 +161,7 @@ func TestHashSeesEveryValue(t *testing.T) {
 		}
 		seen[hash] = strings.Join(edit[:], " -> ")
 	}
-	same := edited(t, "A test inlet", "A test inlet # a comment", "width_m: 0.20", "width_m: 0.2")
+	same := edited(t, "A test inlet", "A test inlet # a comment", "width_m: 0.20", "width_m: 0.2", "altitude_km: 22.8", "altitude_km: 22.8, throat: chain")
 	if seen[read(t, same, nil).Hash()] != "nothing" {
 		t.Error("comment or spelling of a number changes the hash")
 	}

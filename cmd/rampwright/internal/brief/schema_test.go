@@ -215,7 +215,7 @@ var beyondSchema = map[string]string{
 	"angles-for-the-ramps": elsewhere, "weights-all-zero": elsewhere, "limit-of-geometry-at-a-point": elsewhere,
 	"range-reversed": elsewhere, "limit-crossed": elsewhere, "cowl-steeper-than-the-ramps": elsewhere, "no-such-altitude": elsewhere,
 	"outline-order": elsewhere, "outline-closed": elsewhere, "outline-throat-ahead": elsewhere, "outline-throat-behind": elsewhere, "outline-origin": elsewhere,
-	"outline-crossing": elsewhere, "outline-scatter": elsewhere,
+	"outline-crossing": elsewhere, "outline-scatter": elsewhere, "outline-chain": elsewhere,
 	"confidence-of-nothing": elsewhere, "scatter-below-sonic": elsewhere,
 
 	"aim-misspelt": grammar, "aim-of-numbers": grammar, "formula-arguments": grammar, "formula-function": grammar,

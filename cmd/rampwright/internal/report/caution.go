@@ -149,7 +149,7 @@ func traced(in *inspection, p *inlet.PointFlow) (float64, string, string) {
 	settings := fmt.Sprintf("expansions in wavelets of %s deg, waves below %s merged", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
 	share := t.share()
 	if !finite(share) {
-		return math.MaxFloat64, fmt.Sprintf("The shocks of %s cross ahead of the lip or fall inside it: its flow is traced wave by wave (%s), with no error bound, because a coarser trace does not reach the throat.",
+		return math.MaxFloat64, fmt.Sprintf("The flow at %s is traced wave by wave (%s), with no error bound, because a coarser trace does not reach the throat.",
 			p.Point.Name, settings), "no bound"
 	}
 	percent := plain(roundUp(100 * share))
@@ -213,7 +213,7 @@ func lipShockMiss(in *inspection, p *inlet.PointFlow) (float64, string, string) 
 	if p.Traced { // the throat is an average behind the reflections
 		return 0, "", ""
 	}
-	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.%s",
+	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.%s Write throat: traced at this flight point to take its throat, and what the limits hold there, from the trace.",
 		p.Point.Name, miss, largestMiss, in.tracedThroat(p)), fmt.Sprintf("%.3g", miss)
 }
 

@@ -101,6 +101,27 @@ func TestFlowCautions(t *testing.T) {
 	}
 }
 
+// A lip shock that misses the shoulder is a caution of the chain, which names what
+// to ask for; where that was asked the trace is what the reader is told of.
+func TestLipShockMissAsksForTheTrace(t *testing.T) {
+	gentle := []float64{8, 5, 5, 3}
+	missed, ok := raised(flowCase{ramjet, nil, gentle}.cautions(t), "lip_shock_miss")
+	if !ok || missed.Point != "takeover" || !strings.Contains(missed.Text, "throat: traced") || !strings.Contains(missed.Text, "Also: cruise 0.0") {
+		t.Fatalf("%+v", missed)
+	}
+	asked := flowCase{ramjet, func(d *inlet.Definition) {
+		for i := range d.Points {
+			d.Points[i].Traced = d.Points[i].Name != "climb"
+		}
+	}, gentle}.cautions(t)
+	if left, ok := raised(asked, "lip_shock_miss"); !ok || left.Point != "climb" || strings.Contains(left.Text, "Also") {
+		t.Errorf("with all but climb traced: %+v", left)
+	}
+	if traced, ok := raised(asked, "traced"); !ok || !strings.Contains(traced.Text, "cruise") {
+		t.Errorf("nothing said of the traces: %+v", traced)
+	}
+}
+
 // One caution a rule names every point that raises it.
 func TestCautionNamesEveryPoint(t *testing.T) {
 	problem, flow := flowOf(t, ramjet(), 8, 5, 5, 3)

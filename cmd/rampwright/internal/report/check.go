@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"rampwright/problems"
 )
@@ -31,6 +32,8 @@ type CheckedPoint struct {
 	AltitudeKm      Number  `json:"altitude_km"` // geopotential; null where the state was given
 	DynamicPressure float64 `json:"dynamic_pressure_kPa"`
 	Stated          string  `json:"stated"`
+	Throat          string  `json:"throat"` // chain or traced
+	ThroatBecause   string  `json:"throat_because"`
 }
 
 // CheckedValue is one value of the brief and where it came from.
@@ -160,6 +163,24 @@ func (d *CheckDocument) flightTable(p *page) {
 			significant(float64(c.AltitudeKm)), significant(c.DynamicPressure), c.Stated)
 	}
 	p.table(t)
+	d.throats(p)
+}
+
+// throats says which points are traced, and why, those alike in one sentence.
+func (d *CheckDocument) throats(p *page) {
+	type kind struct{ throat, because string }
+	points := map[kind][]string{}
+	var order []kind
+	for _, c := range d.Points {
+		k := kind{c.Throat, c.ThroatBecause}
+		if points[k] == nil {
+			order = append(order, k)
+		}
+		points[k] = append(points[k], c.Name)
+	}
+	for _, k := range order {
+		p.wrap(indent, fmt.Sprintf("throat at %s: %s (%s)", strings.Join(points[k], ", "), k.throat, k.because), indent+indent)
+	}
 }
 
 // limitTable writes the limits in force, those that differ in their point only

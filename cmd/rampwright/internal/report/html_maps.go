@@ -74,6 +74,14 @@ func (r *result) axis(name string) chart.Span {
 	return chart.Span{Label: name}
 }
 
+// tracedCurve says that a curve is traced throughout.
+func tracedCurve(o *OffDesign) string {
+	if !o.Traced {
+		return ""
+	}
+	return " Every Mach number is traced, as the brief asks at a flight point; one that keeps the chain may lie off its table."
+}
+
 // offDesignSection draws the frozen inlet between the Mach numbers flown.
 func (r *result) offDesignSection() chapter {
 	s := chapter{ID: "off-design", Head: "Off design"}
@@ -107,7 +115,7 @@ func (r *result) offDesignSection() chapter {
 		}
 	}
 	s.figures(false, htmlFigure{Picture: drawn(func(w io.Writer) error { return chart.WriteLineChart(w, c) }),
-		Caption: []cell{words("Ringed: flight points of the brief at this incidence.")}})
+		Caption: []cell{words("Ringed: flight points of the brief at this incidence."), words("%s", tracedCurve(o))}})
 	var gaps [][]cell
 	for i, status := range o.Status {
 		if status != "attached" && (i == 0 || o.Status[i-1] != status) {

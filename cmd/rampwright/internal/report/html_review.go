@@ -67,6 +67,7 @@ type MapField struct {
 // point.
 type OffDesign struct {
 	IncidenceDeg Number    `json:"incidence_deg"`
+	Traced       bool      `json:"traced,omitempty"` // at every Mach number
 	Mach         []Number  `json:"mach"`
 	Recovery     []Number  `json:"recovery"`
 	Capture      []Number  `json:"capture"`
@@ -308,13 +309,14 @@ func (r *aimReader) part(i int, values []float64) float64 {
 }
 
 // offDesign computes the frozen inlet between the lowest and the highest Mach
-// number flown; nil for one Mach number alone, or no inlet.
+// number flown, traced at each if the brief asks for a trace at a point; nil for one
+// Mach number alone, or no inlet.
 func (s *Study) offDesign(ctx context.Context) (*OffDesign, error) {
 	if s.Problem == nil || s.Flow == nil || s.Flow.ContourErr != nil {
 		return nil, nil
 	}
 	definition := s.Problem.Definition()
-	design := definition.Points[0]
+	design, traced := definition.Points[0], definition.Traces()
 	var flown []float64
 	for _, p := range definition.Points {
 		flown = append(flown, p.Mach)
@@ -333,7 +335,7 @@ func (s *Study) offDesign(ctx context.Context) (*OffDesign, error) {
 	definition.Points = []inlet.Point{design}
 	for i, mach := range machs {
 		p := design
-		p.Name, p.Mach = fmt.Sprintf("m%d", i), mach
+		p.Name, p.Mach, p.Traced = fmt.Sprintf("m%d", i), mach, traced
 		definition.Points = append(definition.Points, p)
 	}
 	problem, err := inlet.New(definition)
@@ -345,7 +347,7 @@ func (s *Study) offDesign(ctx context.Context) (*OffDesign, error) {
 		return nil, err
 	}
 	list := readings(problem.Quantities(), flow.Evaluation)
-	out := &OffDesign{IncidenceDeg: Number(degrees(design.Incidence)), Mach: numbers(machs), Own: []OwnMach{}}
+	out := &OffDesign{IncidenceDeg: Number(degrees(design.Incidence)), Traced: traced, Mach: numbers(machs), Own: []OwnMach{}}
 	for i := range machs {
 		p := &flow.Points[i+1]
 		out.Recovery = append(out.Recovery, Number(find(list, "recovery", p.Point.Name).value))

@@ -47,7 +47,7 @@ func (s *chapter) traces(file string, points []Point) {
 	s.table(t)
 	s.list(notes)
 	if len(t.Rows) > 0 {
-		s.say(words("Every shock, fan and slip line followed through the contour; averages over the throat plane. A point the chain of straight shocks answers is traced as well where its lip shock misses the shoulder; its throat state leaves the reflections out."))
+		s.say(words("Every shock, fan and slip line followed through the contour; averages over the throat plane. Where the lip shock of a point that keeps the chain of straight shocks misses the shoulder, its throat state leaves the reflections out and the trace stands beside it; throat: traced in the brief takes the throat from the trace."))
 	}
 	s.balances(file, points)
 	s.walls(file, points)

@@ -3,6 +3,7 @@ package report
 import (
 	"math"
 	"slices"
+	"strings"
 
 	"rampwright/problems/inlet"
 )
@@ -183,6 +184,24 @@ const asBuilt = "A draw changes the built geometry and is never focused again: r
 // outlineAsBuilt says the same of a given outline.
 const outlineAsBuilt = "The walls stay as given; Mach number and incidence are off by the same at every flight point. Every draw is traced wave by wave, coarsely: throat averages within 1 %."
 
+// asBuilt says how the inlet of the study is built, and where its draws are traced.
+func (s *SpreadStudy) asBuilt() string {
+	definition := s.Problem.Definition()
+	var traced []string
+	for _, p := range definition.Points {
+		if p.Traced {
+			traced = append(traced, p.Name)
+		}
+	}
+	switch {
+	case definition.Outline != nil:
+		return outlineAsBuilt
+	case traced != nil:
+		return asBuilt + " So is every draw at " + strings.Join(traced, ", ") + ", as the brief asks."
+	}
+	return asBuilt
+}
+
 // sensitivityMethod names the estimators.
 const sensitivityMethod = "first order by Saltelli et al. (2010), total by Jansen (1999), on exact draws"
 
@@ -199,10 +218,7 @@ func NewSpread(head Head, study SpreadStudy, truncatedAt int) *SpreadDocument {
 		PerLimit: study.Limits, ShockInsideLip: study.Inside, Unanswered: append([]SpreadReason{}, study.Reasons...),
 		Sensitivity: append([]SpreadIndex{}, study.Sensitivity...), SensitivityBy: sensitivityMethod,
 		Fits: append([]SpreadFit{}, study.Fits...), Evaluations: study.Evaluations,
-		GeometryAsBuilt: asBuilt, Assumptions: assumptions(study.Problem.Definition()), study: study,
-	}
-	if study.outline() {
-		d.GeometryAsBuilt = outlineAsBuilt
+		GeometryAsBuilt: study.asBuilt(), Assumptions: assumptions(study.Problem.Definition()), study: study,
 	}
 	for i := range d.Quantities {
 		q := &d.Quantities[i]

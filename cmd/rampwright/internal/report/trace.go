@@ -9,8 +9,8 @@ import (
 )
 
 // Trace is what a trace of every wave says of one flight point: the source of its
-// quantities where the chain of straight shocks has no answer, a comparison beside
-// the chain where its lip shock misses the shoulder.
+// quantities where the chain of straight shocks has no answer or the brief asks for
+// the trace, a comparison beside the chain where its lip shock misses the shoulder.
 type Trace struct {
 	WaveletDeg Number `json:"wavelet_deg"` // turning of one expansion wavelet
 	Threshold  Number `json:"threshold"`   // strength below which a wave is merged
