@@ -218,6 +218,14 @@ func TestScenarioValues(t *testing.T) {
 	if d := h.Definition; d.ShockOnLip != inlet.Between(4.5, 5) || h.Searched() != 5 {
 		t.Errorf("halcyre-45: %+v", d)
 	}
+	for point, traced := range map[*Condition]bool{
+		&o.Flight[0]: true, &o.Flight[1]: true, &o.Flight[2]: true, &o.Flight[3]: false,
+		&h.Flight[0]: false, &h.Flight[1]: true, &h.Flight[2]: true, &h.Flight[3]: false,
+	} {
+		if point.Traced != traced {
+			t.Errorf("%s at Mach %v: traced %t", point.Name, point.Mach, point.Traced)
+		}
+	}
 	for _, c := range h.Flight {
 		if q := 0.7 * c.PressureKPa * c.Mach * c.Mach; math.Abs(q-60) > 1e-12*60 {
 			t.Errorf("halcyre-45 at %s: %v kPa dynamic pressure", c.Name, q)
