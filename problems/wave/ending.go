@@ -38,7 +38,7 @@ const (
 var reasons = map[Reason]string{
 	Detached: "detached shock", MachReflection: "Mach reflection", Irregular: "irregular crossing",
 	SubsonicPocket: "subsonic pocket", SteepWave: "wave leans upstream of the sweep",
-	Evacuated: "expansion to vacuum", FrontBudget: "front budget spent", EventBudget: "event budget spent",
+	Evacuated: "expansion to vacuum", FrontBudget: "more waves than are traced", EventBudget: "more wave crossings than are traced",
 }
 
 // String returns the phrase of a status line.
@@ -62,6 +62,10 @@ func (e *Ending) Error() string {
 	where := "behind"
 	if e.BehindLip < 0 {
 		where = "ahead of"
+	}
+	if e.Reason == FrontBudget || e.Reason == EventBudget { // no wall or crossing is to blame
+		return fmt.Sprintf("%v, up to x %.5g m, y %.5g m, %.3g capture heights %s the lip, Mach %.4g",
+			e.Reason, e.Place.X, e.Place.Y, math.Abs(e.BehindLip), where, e.State.Mach)
 	}
 	return fmt.Sprintf("%v at %s, x %.5g m, y %.5g m, %.3g capture heights %s the lip, Mach %.4g, turning %.3g deg",
 		e.Reason, e.Site, e.Place.X, e.Place.Y, math.Abs(e.BehindLip), where, e.State.Mach, e.Turning*degreesPerRadian)

@@ -126,6 +126,8 @@ func TestBudgets(t *testing.T) {
 	r := fly(t, g, 7, 0, wave.Settings{Events: 100})
 	if r.Ending == nil || r.Ending.Reason != wave.EventBudget || r.Events > 101 {
 		t.Errorf("%d events, ending %v", r.Events, r.Ending)
+	} else if got := r.Ending.Error(); !strings.HasPrefix(got, "more wave crossings than are traced, up to x ") || strings.Contains(got, "turning") {
+		t.Errorf("the ending reads %q", got)
 	}
 	if !(r.Threshold > wave.DefaultThreshold) || full.Threshold < wave.DefaultThreshold {
 		t.Errorf("threshold %v, with a full budget %v", r.Threshold, full.Threshold)
