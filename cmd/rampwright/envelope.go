@@ -95,7 +95,7 @@ func (a *app) envelope(study *study, flags envelopeFlags) error {
 	ctx, interruption := watch(0)
 	defer interruption.stop()
 	shown := a.progress()
-	plan.settings.Observe = shown.showing("condition")
+	plan.settings.Observe = shown.showing()
 	survey, err := envelope.Run(ctx, plan.frozen, plan.settings)
 	shown.end()
 	if err != nil {
@@ -306,9 +306,9 @@ func (s *study) shown(texts []string) ([]envelope.Condition, error) {
 const mostShown = 12
 
 // showing returns an observer of the phases of a survey.
-func (p *progress) showing(unit string) func(envelope.Event) {
+func (p *progress) showing() func(envelope.Event) {
 	return func(e envelope.Event) {
-		p.show(stage{phase: e.Phase, done: e.Done, total: e.Total, unit: unit})
+		p.show(stage{phase: e.Phase, done: e.Done, total: e.Total, unit: e.Unit})
 	}
 }
 

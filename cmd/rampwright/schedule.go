@@ -97,7 +97,7 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 	ctx, interruption := watch(0)
 	defer interruption.stop()
 	shown := a.progress()
-	plan.settings.Observe = shown.showing("Mach number")
+	plan.settings.Observe = shown.showing()
 	found, err := envelope.Plan(ctx, plan.moving, plan.settings)
 	shown.end()
 	if err != nil {

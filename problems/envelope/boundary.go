@@ -109,7 +109,7 @@ func (s *survey) trace(ctx context.Context, samples []Sample) ([]Line, error) {
 			roots = append(roots, rootTask{t, k})
 		}
 	}
-	if err := s.each(ctx, "boundary points", len(roots), func(i int) error { return roots[i].solve() }); err != nil {
+	if err := s.each(ctx, "boundary points", "point", len(roots), func(i int) error { return roots[i].solve() }); err != nil {
 		return nil, err
 	}
 	var pieces []*piece
@@ -117,7 +117,7 @@ func (s *survey) trace(ctx context.Context, samples []Sample) ([]Line, error) {
 		t.pieces = t.assemble()
 		pieces = append(pieces, t.pieces...)
 	}
-	if err := s.each(ctx, "boundary lines", len(pieces), func(i int) error { return pieces[i].draw() }); err != nil {
+	if err := s.each(ctx, "boundary lines", "line", len(pieces), func(i int) error { return pieces[i].draw() }); err != nil {
 		return nil, err
 	}
 	var lines []Line

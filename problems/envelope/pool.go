@@ -10,7 +10,8 @@ import (
 // goroutine.
 type Event struct {
 	Phase       string
-	Done, Total int // of this phase
+	Unit        string // what is counted, such as "condition"
+	Done, Total int    // of this phase
 }
 
 // each runs task(0..n-1) on several workers, each filling its own slot, and

@@ -133,7 +133,7 @@ func Plan(ctx context.Context, mover Mover, settings ScheduleSettings) (*Schedul
 	done := 0
 	err := each(ctx, settings.Jobs, settings.Points, func() {
 		if done++; settings.Observe != nil {
-			settings.Observe(Event{"schedule", done, settings.Points})
+			settings.Observe(Event{"schedule", "Mach number", done, settings.Points})
 		}
 	}, func(i int) (err error) {
 		mach := settings.LowMach + float64(i)/float64(settings.Points-1)*(settings.HighMach-settings.LowMach)

@@ -152,7 +152,7 @@ func Run(ctx context.Context, model Model, settings Settings) (*Survey, error) {
 // grid evaluates a model at every point of the grid.
 func (s *survey) grid(ctx context.Context, phase string, model Model) ([]Sample, error) {
 	samples := make([]Sample, s.settings.MachPoints*s.settings.IncidencePoints)
-	return samples, s.each(ctx, phase, len(samples), func(i int) (err error) {
+	return samples, s.each(ctx, phase, "condition", len(samples), func(i int) (err error) {
 		node := place{float64(i / s.settings.IncidencePoints), float64(i % s.settings.IncidencePoints)}
 		samples[i], err = s.sample(ctx, model, s.condition(node))
 		return err
@@ -190,11 +190,11 @@ func (s *survey) condition(p place) Condition {
 }
 
 // each shares tasks out among the workers and tells the observer.
-func (s *survey) each(ctx context.Context, phase string, n int, task func(i int) error) error {
+func (s *survey) each(ctx context.Context, phase, unit string, n int, task func(i int) error) error {
 	done := 0
 	return each(ctx, s.settings.Jobs, n, func() {
 		if done++; s.settings.Observe != nil {
-			s.settings.Observe(Event{phase, done, n})
+			s.settings.Observe(Event{phase, unit, done, n})
 		}
 	}, task)
 }
