@@ -97,11 +97,18 @@ func (s *studyPage) numbers(of Object[json.RawMessage], path ...any) *htmlTable 
 			if whole(f.Value) {
 				value.Text = value.Value
 			}
-			t.Rows = append(t.Rows, []cell{words("%s", f.Name), value})
+			name := f.Name
+			if unit := unitOf[name]; unit != "" {
+				name += ", " + unit
+			}
+			t.Rows = append(t.Rows, []cell{words("%s", name), value})
 		}
 	}
 	return t
 }
+
+// unitOf is the unit of a number whose name does not state it.
+var unitOf = map[string]string{"truncated_at": "standard deviations"}
 
 // bookkeeping are numbers that say nothing of the inlet.
 var bookkeeping = []string{"format", "seed"}
