@@ -171,8 +171,12 @@ func (d linesSheet) line(l linesLayout, i int) {
 func (d linesSheet) words(l linesLayout) {
 	for _, n := range l.names {
 		ink := l.stroke(n.line).ink
-		d.Path(fmt.Sprintf("M%.2f %.2fL%.2f %.2f", n.end.x+5, n.end.y, n.box.x-3, n.box.centre().y),
-			attribute("stroke", ink), `stroke-width="0.7"`, `fill="none"`)
+		if n.led {
+			d.Path(fmt.Sprintf("M%.2f %.2fL%.2f %.2f", n.end.x+5, n.end.y, n.box.x-3, n.box.centre().y),
+				attribute("stroke", ink), `stroke-width="0.7"`, `fill="none"`)
+		} else { // above the grid
+			d.Rect(n.box.x, n.box.y, n.box.w, n.box.h, attribute("fill", paper), `fill-opacity="0.82"`)
+		}
 		d.labelled(n.text, n.box, d.faces.label, ink)
 	}
 	for _, n := range l.notes {

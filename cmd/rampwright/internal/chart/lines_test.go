@@ -200,6 +200,38 @@ func TestDecadeMarks(t *testing.T) {
 	})
 }
 
+// A line that ends far from the right of the axes has its name beside it, where no
+// stroke runs, one that ends there at their right.
+func TestNamesOfShortLines(t *testing.T) {
+	picture := LineChart{
+		Title: "t", XLabel: "x", YLabel: "y", Low: 0, High: 10,
+		Lines: []Line{
+			{Name: "short", Points: []LinePoint{{X: 0, Y: 1}, {X: 3, Y: 2}}},
+			{Name: "long", Points: []LinePoint{{X: 0, Y: 3}, {X: 10, Y: 4}}},
+		},
+	}
+	l := arrangeLines(picture, 50, newTypefaces())
+	for _, n := range l.names {
+		inside := n.box.right() < l.axes.right()
+		if short := n.text == "short"; n.led == short || inside != short {
+			t.Errorf("%s stands at %v, led: %v", n.text, n.box, n.led)
+		}
+		for _, s := range l.segments() {
+			if !n.led && n.box.meets(s) {
+				t.Errorf("%s lies on a line", n.text)
+			}
+		}
+	}
+	for i := range 60 { // levels all over
+		picture.Levels = append(picture.Levels, Level{Name: "level", Y: float64(i) / 10})
+	}
+	for _, n := range arrangeLines(picture, 50, newTypefaces()).names {
+		if !n.led {
+			t.Errorf("%s stands at %v, where levels run", n.text, n.box)
+		}
+	}
+}
+
 func TestInvalidLines(t *testing.T) {
 	bad := LineChart{
 		Low: 2, High: 1,
