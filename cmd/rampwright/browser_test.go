@@ -6,6 +6,7 @@ import (
 	"net/url"
 	"os/exec"
 	"path/filepath"
+	"strings"
 	"testing"
 	"time"
 
@@ -26,7 +27,7 @@ type browser struct {
 // browserPatience ends a browser that hangs; it judges no speed.
 const browserPatience = 3 * time.Minute
 
-func openBrowser(t *testing.T) *browser {
+func openBrowser(t *testing.T, more ...chromedp.ExecAllocatorOption) *browser {
 	t.Helper()
 	path, err := exec.LookPath("chromium")
 	if err != nil {
@@ -43,7 +44,7 @@ func openBrowser(t *testing.T) *browser {
 	} {
 		options = append(options, chromedp.Flag(flag, true))
 	}
-	allocator, stop := chromedp.NewExecAllocator(patience, options...)
+	allocator, stop := chromedp.NewExecAllocator(patience, append(options, more...)...)
 	t.Cleanup(stop)
 	ctx, end := chromedp.NewContext(allocator)
 	t.Cleanup(end)
@@ -61,7 +62,7 @@ type tab struct {
 	requests []string
 }
 
-// open loads a file into a new tab.
+// open loads a file into a new tab, with its fonts.
 func (b *browser) open(t *testing.T, file string) *tab {
 	t.Helper()
 	ctx, end := chromedp.NewContext(b.ctx)
@@ -82,10 +83,15 @@ func (b *browser) open(t *testing.T, file string) *tab {
 		t.Fatal(err)
 	}
 	p.do(chromedp.Navigate((&url.URL{Scheme: "file", Path: filepath.ToSlash(absolute)}).String()))
+	const lettered = `document.documentElement.getBoundingClientRect(), document.fonts.ready.then(() => true)`
+	if _, err := chromedp.Run(p.ctx, chromedp.Evaluate[bool](lettered, chromedp.EvalAwaitPromise)); err != nil {
+		t.Fatal(err)
+	}
 	return p
 }
 
-// listen keeps complaints and requests; a page asks for itself.
+// listen keeps complaints and requests; a page asks for itself. What it carries as
+// data asks for nothing.
 func (p *tab) listen(event any) {
 	switch e := event.(type) {
 	case *log.EventEntryAdded:
@@ -95,7 +101,9 @@ func (p *tab) listen(event any) {
 	case *runtime.EventExceptionThrown:
 		p.console = append(p.console, e.ExceptionDetails.Text)
 	case *network.EventRequestWillBeSent:
-		p.requests = append(p.requests, e.Request.URL)
+		if !strings.HasPrefix(e.Request.URL, "data:") {
+			p.requests = append(p.requests, e.Request.URL)
+		}
 	}
 }
 

@@ -1,8 +1,8 @@
 package main
 
 import (
-	"bytes"
 	"fmt"
+	"io"
 	"math"
 
 	"rampwright/cmd/rampwright/internal/chart"
@@ -27,11 +27,7 @@ func wavesViews(title string, at envelope.Condition, geometry wave.Geometry, tra
 const ductLead = 0.3
 
 func sheetOf(view chart.SideView) ([]byte, error) {
-	var out bytes.Buffer
-	if err := chart.WriteSideView(&out, view); err != nil {
-		return nil, err
-	}
-	return out.Bytes(), nil
+	return chart.Alone(func(w io.Writer) error { return chart.WriteSideView(w, view) })
 }
 
 func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trace *wave.Trace) chart.SideView {

@@ -64,13 +64,19 @@ func TestPagesInABrowser(t *testing.T) {
 				}
 			}
 			p.print(name)
-			if len(p.console) > 0 {
-				t.Errorf("the console says %q", p.console)
-			}
-			if len(p.requests) != 1 || !strings.HasSuffix(p.requests[0], filepath.Base(file)) {
-				t.Errorf("asked for %q", p.requests)
-			}
+			p.quiet(t, file)
 		})
+	}
+}
+
+// quiet fails a test for complaints and for requests beyond the file itself.
+func (p *tab) quiet(t *testing.T, file string) {
+	t.Helper()
+	if len(p.console) > 0 {
+		t.Errorf("the console says %q", p.console)
+	}
+	if len(p.requests) != 1 || !strings.HasSuffix(p.requests[0], filepath.Base(file)) {
+		t.Errorf("asked for %q", p.requests)
 	}
 }
 

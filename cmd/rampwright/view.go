@@ -3,6 +3,7 @@ package main
 import (
 	"bytes"
 	"fmt"
+	"io"
 	"math"
 	"strings"
 
@@ -36,11 +37,7 @@ func sideView(title, caution string, flow *inlet.Flow, at *inlet.PointFlow) ([]b
 	for _, p := range at.Streamline {
 		view.LipStreamline = append(view.LipStreamline, vertex("", p))
 	}
-	var out bytes.Buffer
-	if err := chart.WriteSideView(&out, view); err != nil {
-		return nil, err
-	}
-	return out.Bytes(), nil
+	return chart.Alone(func(w io.Writer) error { return chart.WriteSideView(w, view) })
 }
 
 // walls are the body and the inner cowl as drawn, named where a label is due.

@@ -85,7 +85,7 @@ func WriteMarginScale(w io.Writer) error {
 	d.Decimals = sheetDecimals
 	const height = 30.0
 	label := "margin in per cent of the limit, logarithmic: violated to the left, met to the right, comfortable from ten"
-	d.Start(barWidth, height, fmt.Sprintf(`viewBox="0 0 %g %g"`, barWidth, height), `role="img"`, attribute("aria-label", label), attribute("font-family", fontFamily), `class="bar"`)
+	d.Start(barWidth, height, fmt.Sprintf(`viewBox="0 0 %g %g"`, barWidth, height), `role="img"`, attribute("aria-label", label), lettering, `class="bar"`)
 	d.Title(label)
 	for _, word := range []struct {
 		text string

@@ -56,7 +56,7 @@ func (d learningSheet) draw(picture LearningCurves) {
 	head := margin + float64(len(title))*d.faces.title.height() + float64(len(lines))*(d.faces.text.height()+3)
 	height := head + float64(len(picture.Panels))*(aboveAxes+panelHeight+belowAxes) + margin
 	d.Start(sheetWidth, height, fmt.Sprintf(`viewBox="0 0 %g %.*f"`, sheetWidth, sheetDecimals, height),
-		`role="img"`, attribute("aria-label", picture.Title), attribute("font-family", fontFamily))
+		`role="img"`, attribute("aria-label", picture.Title), lettering)
 	d.Title(picture.Title)
 	d.Desc("Learning curves: error against number of samples, both axes logarithmic. " + strings.Join(picture.Subtitle, " "))
 	d.Rect(0, 0, sheetWidth, height, attribute("fill", paper))

@@ -45,7 +45,7 @@ func (d linesSheet) draw(c LineChart) {
 	height := l.axes.bottom() + belowAxes + margin
 	attributes := []string{
 		fmt.Sprintf(`viewBox="0 0 %g %.*f"`, sheetWidth, sheetDecimals, height),
-		`role="img"`, attribute("aria-label", c.Title), attribute("font-family", fontFamily),
+		`role="img"`, attribute("aria-label", c.Title), lettering,
 		attribute("data-x", l.x.mapping()), attribute("data-y", l.y.mapping()),
 	}
 	if c.LogY {

@@ -79,7 +79,7 @@ func (d linesSheet) outline(p panel) {
 func (d linesSheet) start(width, height float64, title, description string, more ...string) {
 	d.Decimals = sheetDecimals
 	attributes := append([]string{fmt.Sprintf(`viewBox="0 0 %g %.*f"`, width, sheetDecimals, height),
-		`role="img"`, attribute("aria-label", title), attribute("font-family", fontFamily)}, more...)
+		`role="img"`, attribute("aria-label", title), lettering}, more...)
 	d.Start(width, height, attributes...)
 	d.Title(title)
 	d.Desc(description)

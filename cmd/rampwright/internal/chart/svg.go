@@ -63,7 +63,7 @@ func (d drawing) open() {
 	d.Start(sheetWidth, d.height(),
 		fmt.Sprintf(`viewBox="0 0 %g %.*f"`, sheetWidth, sheetDecimals, d.height()),
 		`role="img"`, attribute("aria-label", d.view.Title),
-		attribute("font-family", fontFamily),
+		lettering,
 		`data-unit="m"`, attribute("data-scale", number(d.frame.scale)),
 		attribute("data-origin-x", number(d.frame.origin.x)),
 		attribute("data-origin-y", number(d.frame.origin.y)))

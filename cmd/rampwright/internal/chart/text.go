@@ -7,10 +7,6 @@ import (
 	"gonum.org/v1/plot/font/liberation"
 )
 
-// fontFamily names the face the text is measured in first, then faces of the
-// same widths, then whatever there is.
-const fontFamily = "Liberation Sans, Arial, Helvetica, sans-serif"
-
 // typeface measures text of one size in drawing units.
 type typeface struct {
 	size float64

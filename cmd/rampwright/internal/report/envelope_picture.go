@@ -1,8 +1,8 @@
 package report
 
 import (
-	"bytes"
 	"fmt"
+	"io"
 	"math"
 
 	"rampwright/cmd/rampwright/internal/chart"
@@ -42,9 +42,7 @@ func (d *EnvelopeDocument) Map() ([]byte, error) {
 			m.Places = append(m.Places, chart.Vertex{Name: p.Name, X: p.Mach, Y: degrees(p.Incidence)})
 		}
 	}
-	var out bytes.Buffer
-	err := chart.WriteRegionMap(&out, m)
-	return out.Bytes(), err
+	return chart.Alone(func(w io.Writer) error { return chart.WriteRegionMap(w, m) })
 }
 
 func (d *EnvelopeDocument) machSpan() chart.Span {
@@ -98,7 +96,5 @@ func (d *EnvelopeDocument) Against(quantity, label string) ([]byte, error) {
 			c.Lines = append(c.Lines, line)
 		}
 	}
-	var out bytes.Buffer
-	err := chart.WriteLineChart(&out, c)
-	return out.Bytes(), err
+	return drawLines(c)
 }

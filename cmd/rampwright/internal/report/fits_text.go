@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/csv"
 	"fmt"
+	"io"
 	"math"
 	"slices"
 	"strconv"
@@ -239,9 +240,5 @@ func (d *FitsDocument) Picture() ([]byte, error) {
 			picture.Panels = append(picture.Panels, panel)
 		}
 	}
-	var out bytes.Buffer
-	if err := chart.WriteLearningCurves(&out, picture); err != nil {
-		return nil, err
-	}
-	return out.Bytes(), nil
+	return chart.Alone(func(w io.Writer) error { return chart.WriteLearningCurves(w, picture) })
 }

@@ -33,7 +33,7 @@ func (r *result) sideViewSection() chapter {
 		}
 		return s
 	}
-	s.figures(false, htmlFigure{Picture: template.HTML(r.sideView), Caption: []cell{words(
+	s.figures(false, htmlFigure{Picture: foreign("inlet", r.sideView), Caption: []cell{words(
 		"The inlet to scale at the design point, lengths in metres: shocks, the streamline that meets the lip, and where each station lies.")}})
 	return s
 }

@@ -9,6 +9,8 @@ import (
 	"regexp"
 	"slices"
 	"strings"
+
+	"rampwright/cmd/rampwright/internal/chart"
 )
 
 // drawingElements are all a picture of this program is made of.
@@ -17,8 +19,9 @@ var drawingElements = []string{
 }
 
 // foreign is a picture read from a file, or why it is left out: it may hold
-// nothing but shapes and words. Its ids are made its own.
+// nothing but shapes and words. Its ids are made its own, its face is the page's.
 func foreign(name string, picture []byte) template.HTML {
+	picture = chart.Bare(picture)
 	return drawn(func(w io.Writer) error {
 		if err := onlyDrawing(picture); err != nil {
 			return fmt.Errorf("%s.svg: %w", name, err)

@@ -3,8 +3,11 @@ package report
 import (
 	"bytes"
 	"errors"
+	"io"
 	"strings"
 	"testing"
+
+	"rampwright/cmd/rampwright/internal/chart"
 )
 
 const somePicture = `<svg width="10" height="10" viewBox="0 0 10 10" role="img" aria-label="curve"><title>curve</title><defs><pattern id="hatch" width="4" height="4"></pattern></defs><rect width="4" height="4" fill="url(#hatch)"/></svg>`
@@ -97,7 +100,7 @@ func TestForeignPictures(t *testing.T) {
 	for _, c := range []string{
 		`<svg><script>alert(1)</script></svg>`, `<svg onload="x()"/>`, `<svg><a href="http://example.org"/></svg>`,
 		`<svg><rect fill="url(http://example.org/x)"/></svg>`, `<svg><image/></svg>`, `<svg><foreignObject/></svg>`,
-		`<svg><rect style="background:url(x)"/></svg>`, `<!DOCTYPE svg><svg/>`, `<svg/><svg/>`, `<p/>`, `<svg>`, ``, `plain`,
+		`<svg><rect style="background:url(x)"/></svg>`, `<svg><style>x</style><g/></svg>`, `<!DOCTYPE svg><svg/>`, `<svg/><svg/>`, `<p/>`, `<svg>`, ``, `plain`,
 	} {
 		if got := string(foreign("ladder", []byte(c))); !strings.Contains(got, "Not drawn: ladder.svg: ") || strings.Contains(got, "<svg") {
 			t.Errorf("%s became %s", c, got)
@@ -105,5 +108,9 @@ func TestForeignPictures(t *testing.T) {
 	}
 	if got := string(foreign("ladder", []byte(somePicture))); got != strings.ReplaceAll(somePicture, "hatch", "ladder-hatch") {
 		t.Error(got)
+	}
+	alone, err := chart.Alone(func(w io.Writer) error { _, err := io.WriteString(w, somePicture+"\n"); return err })
+	if got := string(foreign("ladder", alone)); err != nil || got != strings.ReplaceAll(somePicture, "hatch", "ladder-hatch")+"\n" {
+		t.Errorf("with its face it became %.400s, %v", got, err)
 	}
 }

@@ -15,7 +15,7 @@ func (s *sheet) write() ([]byte, error) {
 	err := pageTemplate.Execute(&b, struct {
 		*sheet
 		Style template.CSS
-	}{s, template.CSS(pageStyle + darkStyle())})
+	}{s, template.CSS(chart.FaceStyle() + pageStyle + darkStyle())})
 	return b.Bytes(), err
 }
 
@@ -37,7 +37,7 @@ const pageStyle = `
 :root{--ground:#eceae4;--sheet:#fdfdfb;--ink:#1c2530;--soft:#55616d;--line:#c3c9ce;--tint:#f1f2ef;--alert:#a63d00;--good:#00735a;--mark:#005f9e}
 *{box-sizing:border-box}
 html{-webkit-text-size-adjust:100%}
-body{margin:0;background:var(--ground);color:var(--ink);font:15px/1.5 "Liberation Sans",Arial,Helvetica,sans-serif;font-variant-numeric:tabular-nums}
+body{margin:0;background:var(--ground);color:var(--ink);font:15px/1.5 "` + chart.Family + `","Liberation Sans",Arial,Helvetica,sans-serif;font-variant-numeric:tabular-nums}
 main{max-width:1320px;margin:18px auto;background:var(--sheet);border:2px solid var(--ink);outline:1px solid var(--line);outline-offset:-8px;padding:30px 34px}
 header{display:grid;grid-template-columns:1fr minmax(260px,380px);gap:28px;align-items:start;border-bottom:2px solid var(--ink);padding-bottom:20px}
 h1{font-size:27px;line-height:1.2;margin:0 0 10px}

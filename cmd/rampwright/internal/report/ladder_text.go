@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/csv"
 	"fmt"
+	"io"
 	"math"
 	"strings"
 
@@ -238,11 +239,9 @@ func (d *LadderDocument) Picture() ([]byte, error) {
 	return drawLines(picture)
 }
 
-// drawLines returns a picture as SVG.
+// drawLines returns a picture as a file of SVG.
 func drawLines(picture chart.LineChart) ([]byte, error) {
-	var b bytes.Buffer
-	err := chart.WriteLineChart(&b, picture)
-	return b.Bytes(), err
+	return chart.Alone(func(w io.Writer) error { return chart.WriteLineChart(w, picture) })
 }
 
 func extreme(highest bool) string {

@@ -1,7 +1,6 @@
 package report
 
 import (
-	"bytes"
 	"fmt"
 	"math"
 	"strings"
@@ -311,7 +310,5 @@ func (d *ScheduleDocument) Picture() ([]byte, error) {
 			c.Lines = append(c.Lines, line)
 		}
 	}
-	var out bytes.Buffer
-	err := chart.WriteLineChart(&out, c)
-	return out.Bytes(), err
+	return drawLines(c)
 }

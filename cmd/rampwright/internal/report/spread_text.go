@@ -1,8 +1,8 @@
 package report
 
 import (
-	"bytes"
 	"fmt"
+	"io"
 	"math"
 	"slices"
 
@@ -306,7 +306,5 @@ func (d *SpreadDocument) Picture() ([]byte, error) {
 	if moved > mostStrips {
 		picture.Subtitle = append(picture.Subtitle, fmt.Sprintf("The %d limits that hold most rarely, of %d that tolerances move.", mostStrips, moved))
 	}
-	var b bytes.Buffer
-	err := chart.WriteStripChart(&b, picture)
-	return b.Bytes(), err
+	return chart.Alone(func(w io.Writer) error { return chart.WriteStripChart(w, picture) })
 }
