@@ -26,9 +26,10 @@ type RegionLine struct {
 	Points [][2]float64
 }
 
+// What a map has at most: points of its grid along an axis, and lines.
 const (
 	mostRegionPoints = 400
-	mostRegionLines  = 200
+	MostRegionLines  = 200
 )
 
 // Validate returns *InvalidChart with all defects at once, or nil.
@@ -49,7 +50,7 @@ func (m RegionMap) Validate() error {
 			break
 		}
 	}
-	check(len(m.Lines) > mostRegionLines, "%d lines, at most %d", len(m.Lines), mostRegionLines)
+	check(len(m.Lines) > MostRegionLines, "%d lines, at most %d", len(m.Lines), MostRegionLines)
 	for i, line := range m.Lines {
 		check(len(line.Name) > longestText, "line %d has a name of %d bytes, at most %d", i, len(line.Name), longestText)
 		check(len(line.Points) == 0, "line %d has no point", i)

@@ -1,9 +1,11 @@
 package report
 
 import (
+	"cmp"
 	"fmt"
 	"io"
 	"math"
+	"slices"
 
 	"rampwright/cmd/rampwright/internal/chart"
 	"rampwright/problems/envelope"
@@ -36,6 +38,10 @@ func (d *EnvelopeDocument) Map() ([]byte, error) {
 		}
 		m.Lines = append(m.Lines, chart.RegionLine{Name: line.Name, Strong: line.Kind != string(envelope.LimitViolated), Points: points})
 	}
+	if all := len(m.Lines); all > chart.MostRegionLines {
+		m.Lines = longestLines(m, chart.MostRegionLines)
+		m.Subtitle = append(m.Subtitle, fmt.Sprintf("The %d longest of %d lines are drawn; boundary.csv has all.", len(m.Lines), all))
+	}
 	for _, p := range d.study.Definition.Points {
 		inside := p.Mach >= s.LowMach && p.Mach <= s.HighMach && p.Incidence >= s.LowIncidence && p.Incidence <= s.HighIncidence
 		if inside {
@@ -43,6 +49,30 @@ func (d *EnvelopeDocument) Map() ([]byte, error) {
 		}
 	}
 	return chart.Alone(func(w io.Writer) error { return chart.WriteRegionMap(w, m) })
+}
+
+// longestLines are n lines of a map in their order: those that run farthest, in
+// shares of its sides.
+func longestLines(m chart.RegionMap, n int) []chart.RegionLine {
+	lengths := make([]float64, len(m.Lines))
+	for i, line := range m.Lines {
+		for k := 1; k < len(line.Points); k++ {
+			p, q := line.Points[k-1], line.Points[k]
+			lengths[i] += math.Hypot((q[0]-p[0])/(m.X.High-m.X.Low), (q[1]-p[1])/(m.Y.High-m.Y.Low))
+		}
+	}
+	order := make([]int, len(m.Lines))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(lengths[b], lengths[a]) })
+	kept := order[:n]
+	slices.Sort(kept)
+	lines := make([]chart.RegionLine, n)
+	for i, k := range kept {
+		lines[i] = m.Lines[k]
+	}
+	return lines
 }
 
 func (d *EnvelopeDocument) machSpan() chart.Span {

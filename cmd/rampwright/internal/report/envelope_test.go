@@ -3,11 +3,13 @@ package report
 import (
 	"context"
 	"encoding/json"
+	"fmt"
 	"math"
 	"reflect"
 	"strings"
 	"testing"
 
+	"rampwright/cmd/rampwright/internal/chart"
 	"rampwright/problems"
 	"rampwright/problems/envelope"
 	"rampwright/problems/gas"
@@ -116,6 +118,16 @@ func TestEnvelopeText(t *testing.T) {
 	picture, err := d.Map()
 	if err != nil || !strings.Contains(string(picture), `data-name="cruise"`) {
 		t.Errorf("map.svg: %v", err)
+	}
+	for range chart.MostRegionLines { // specks beside the lines there are
+		at := d.Boundary[0].Points[0]
+		d.Boundary = append(d.Boundary, d.Boundary[0])
+		d.Boundary[len(d.Boundary)-1].Name, d.Boundary[len(d.Boundary)-1].Points = "speck", [][2]Number{at, at}
+	}
+	note := fmt.Sprintf("The %d longest of %d lines are drawn", chart.MostRegionLines, len(d.Boundary))
+	crowded, err := d.Map()
+	if err != nil || !strings.Contains(string(crowded), note) || strings.Count(string(crowded), `data-name="`+d.Boundary[0].Name+`"`) != strings.Count(string(picture), `data-name="`+d.Boundary[0].Name+`"`) {
+		t.Errorf("map.svg of %d lines: %v", len(d.Boundary), err)
 	}
 	curve, err := d.Against("recovery", "recovery")
 	if err != nil || !strings.Contains(string(curve), "incidence -2 deg") {
