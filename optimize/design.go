@@ -44,11 +44,15 @@ type designer struct {
 	radius     float64   // of the trust region
 	stepErrors []float64 // of the corrected model at the latest step, by quantity
 
+	success     *success     // of the model, nil where it never failed
+	acquisition *acquisition // of the latest search for an improvement
+
 	unexplained bool // the wide surfaces are no guide to the aim
 	idle        bool // the last round improved the best design by next to nothing
 
 	audited   *audit
 	confirmed *sample // a center at rest whose slopes were probed once more
+	unprobed  int     // probes it lacks, no room in the rounds so far
 	refined   int     // rounds of refinement
 	counts    Counts
 	history   []Step
@@ -99,7 +103,7 @@ func (d *designer) sample(ctx context.Context) error {
 	points := slices.Concat(d.plan.starts, d.plan.design(d.settings.Samples, d.settings.Seed))
 	// In slices, so that an interruption loses little and progress shows.
 	for len(points) > 0 {
-		part := points[:min(len(points), sampleSlice)]
+		part := points[:min(len(points), max(sampleSlice, d.settings.Batch))]
 		points = points[len(part):]
 		samples, err := d.plan.evaluate(ctx, d.settings.Jobs, part)
 		d.samples = append(d.samples, samples...)
@@ -113,12 +117,14 @@ func (d *designer) sample(ctx context.Context) error {
 	return nil
 }
 
-// sampleSlice is how many samples are evaluated between two signs of progress.
+// sampleSlice is how many samples are evaluated between two signs of progress, a
+// batch at least.
 const sampleSlice = 16
 
 // fit brings the surrogates up to the samples: those around the center always,
 // those over the whole box while it is searched.
 func (d *designer) fit(ctx context.Context) error {
+	d.success = d.plan.newSuccess(d.training)
 	if d.exploring() || d.unexplained {
 		if err := d.fitWide(ctx); err != nil {
 			return err
@@ -168,6 +174,9 @@ func (d *designer) evaluate(ctx context.Context, proposals []*proposal) error {
 	samples, err := d.plan.evaluate(ctx, d.settings.Jobs, points)
 	d.samples = append(d.samples, samples...)
 	d.counts.Infill += len(samples)
+	if len(samples) > 0 {
+		d.counts.Rounds++
+	}
 	if err != nil {
 		return err
 	}
@@ -205,13 +214,15 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 		return nil, errors.Join(ErrNothingEvaluated, ctx.Err())
 	}
 	r := &Result{Rows: d.plan.rows, History: d.history, Why: d.why}
-	finalists := d.finalists()
-	for _, s := range finalists {
+	for _, s := range d.finalists() {
 		candidate, err := d.candidate(ctx, s)
 		if err != nil {
 			return nil, err
 		}
 		r.Candidates = append(r.Candidates, candidate)
+	}
+	if err := d.verify(ctx, r.Candidates); err != nil {
+		return nil, err
 	}
 	r.Best = r.Candidates[0]
 	if ctx.Err() == nil { // else the fits of the last round stand

@@ -179,9 +179,11 @@ func TestDesignDoesNotDependOnJobs(t *testing.T) {
 		"edge": cliff(), "worst": charalambous3(),
 		"valleys": {Problem: valleys, Limits: valleys.OwnLimits(), Aim: valleys.Aim()},
 	} {
-		want := mustDesign(t, task, Settings{Jobs: 1})
 		for _, jobs := range []int{2, 7} {
-			got := mustDesign(t, task, Settings{Jobs: jobs})
+			settings := Settings{Jobs: 1, Batch: []int{0, 4}[jobs/7]}
+			want := mustDesign(t, task, settings)
+			settings.Jobs = jobs
+			got := mustDesign(t, task, settings)
 			if !reflect.DeepEqual(got.Best.X, want.Best.X) || got.Best.SurrogateError != want.Best.SurrogateError || got.Counts != want.Counts || len(got.Samples) != len(want.Samples) {
 				t.Fatalf("%s with %d jobs: %v after %+v, with one %v after %+v", name, jobs, got.Best.X, got.Counts, want.Best.X, want.Counts)
 			}

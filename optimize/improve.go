@@ -24,13 +24,23 @@ func (d *designer) improve(ctx context.Context) (*proposal, error) {
 	if a == nil || err != nil {
 		return nil, err
 	}
+	d.acquisition = a
+	return d.improveOn(ctx, a, nil)
+}
+
+// improveOn is improve on an acquisition at hand, apart from points of the same round.
+func (d *designer) improveOn(ctx context.Context, a *acquisition, round []*proposal) (*proposal, error) {
+	reach := improveApart
+	if a.best == nil { // what is believed of the aim does not keep points apart
+		reach = math.Max(reach, spacing(d.training)/2)
+	}
 	var seeds [][]float64
 	for _, s := range a.members[:min(len(a.members), improveSeeds)] {
 		seeds = append(seeds, s.u)
 	}
 	found, err := global.Minimize(ctx, d.plan.dimension(), func(u []float64) (f, violation float64) {
-		return -a.at(u), d.plan.linearViolation(u)
-	}, global.Settings{Seed: uint64(d.settings.Seed) + uint64(len(d.samples)), Seeds: seeds, Generations: improveGenerations})
+		return -a.at(u), d.plan.linearViolation(u) + crowding(u, round, reach)
+	}, global.Settings{Seed: uint64(d.settings.Seed) + uint64(len(d.samples)+len(round)), Seeds: seeds, Generations: improveGenerations})
 	if err != nil {
 		return nil, err
 	}
@@ -41,7 +51,18 @@ func (d *designer) improve(ctx context.Context) (*proposal, error) {
 	return d.proposal(found.X, d.wide), nil
 }
 
+// crowding sums how far u lies inside the reach of points of the same round.
+func crowding(u []float64, round []*proposal, reach float64) float64 {
+	sum := 0.0
+	for _, p := range round {
+		sum += math.Max(0, reach-distance(u, p.u))
+	}
+	return sum
+}
+
 const (
+	// improveApart is the least distance of a point from others of its round.
+	improveApart       = 10 * apart
 	improveSeeds       = 10
 	improveGenerations = 80
 	// improveGain is the expected improvement, relative to the aim of the best
@@ -55,11 +76,25 @@ type acquisition struct {
 	plan    *plan
 	best    *sample      // nil before the first feasible one
 	members []*sample    // the best first
-	aims    []*windowed  // by quantity index; nil where the aim does not read a fitted one
+	aims    []*aimFit    // by quantity index; nil where the aim does not read a fitted one
 	limits  map[int]*Fit // by quantity index
 	land    *surrogateLandscape
 	success *success
 	values  []float64
+}
+
+// aimFit is the process of a quantity that the aim reads, with what it is fitted to.
+type aimFit struct {
+	*windowed
+	kind surrogate.Model
+	x    [][]float64
+	y    []float64
+}
+
+// refit fits the process anew.
+func (f *aimFit) refit(ctx context.Context) (err error) {
+	f.windowed, err = windowAround(f.x).fit(ctx, f.kind, f.x, f.y)
+	return err
 }
 
 // newAcquisition fits what the acquisition reads: the wide surfaces for limits,
@@ -72,8 +107,8 @@ func (d *designer) newAcquisition(ctx context.Context) (*acquisition, error) {
 	}
 	a := &acquisition{
 		plan: d.plan, best: d.best(), members: d.promising(),
-		aims: make([]*windowed, len(d.plan.quantities)), limits: map[int]*Fit{},
-		land: d.plan.surrogates(d.wide.fits, nil), success: d.plan.newSuccess(d.training),
+		aims: make([]*aimFit, len(d.plan.quantities)), limits: map[int]*Fit{},
+		land: d.plan.surrogates(d.wide.fits, nil), success: d.success,
 		values: make([]float64, len(d.plan.quantities)),
 	}
 	for k := range d.wide.fits {
@@ -83,26 +118,37 @@ func (d *designer) newAcquisition(ctx context.Context) (*acquisition, error) {
 		if !slices.Contains(d.plan.fitted, i) {
 			continue
 		}
-		var x [][]float64
-		var y []float64
+		f := &aimFit{kind: gpr.Config{Kernel: gpr.Matern52, Seed: d.settings.Seed}}
 		for _, s := range a.members {
 			if v := s.values[i]; !math.IsNaN(v) && !math.IsInf(v, 0) {
-				x, y = append(x, s.u), append(y, v)
+				f.x, f.y = append(f.x, s.u), append(f.y, v)
 			}
 		}
-		if len(y) < leastPromising(d.plan.dimension()) {
+		if len(f.y) < leastPromising(d.plan.dimension()) {
 			return nil, nil
 		}
-		fitted, err := windowAround(x).fit(ctx, improveKind(d.settings.Seed), x, y)
-		if err != nil {
+		if err := f.refit(ctx); err != nil {
 			return nil, err
 		}
-		a.aims[i] = fitted
+		a.aims[i] = f
 	}
 	return a, nil
 }
 
-func improveKind(seed int64) surrogate.Model { return gpr.Config{Kernel: gpr.Matern52, Seed: seed} }
+// believe takes a point as evaluated, with the values predicted.
+func (a *acquisition) believe(ctx context.Context, u []float64) error {
+	for _, f := range a.aims {
+		if f == nil {
+			continue
+		}
+		mean, _ := f.predict(u)
+		f.x, f.y = append(f.x, u), append(f.y, mean)
+		if err := f.refit(ctx); err != nil {
+			return err
+		}
+	}
+	return nil
+}
 
 // leastPromising is how many samples an aim is fitted to at least.
 func leastPromising(n int) int { return n + 2 }

@@ -9,10 +9,11 @@ import (
 // takes the new samples into the training set or the correction.
 func (d *designer) learn(proposals []*proposal) {
 	before, fitted := d.anchor, len(d.training)
+	if step := d.judged(proposals); step != nil {
+		d.radius = step.radius
+		d.judgeStep(step)
+	}
 	for _, p := range proposals {
-		if p.exploit {
-			d.judgeStep(p)
-		}
 		if d.apartFromTraining(p.sample.u) {
 			d.training = append(d.training, p.sample)
 		}
@@ -25,6 +26,27 @@ func (d *designer) learn(proposals []*proposal) {
 	d.idle = d.standsStill()
 	d.note(proposals)
 	d.tell("infill")
+}
+
+// judged is the step of a round that the trust region follows: the one of best merit,
+// or the shortest where none betters the center; nil without a step.
+func (d *designer) judged(round []*proposal) *proposal {
+	var best, shortest *proposal
+	for _, p := range round {
+		if p.purpose != stepping {
+			continue
+		}
+		if best == nil || d.merit(p.sample) < d.merit(best.sample) {
+			best = p
+		}
+		if shortest == nil || p.radius < shortest.radius {
+			shortest = p
+		}
+	}
+	if best != nil && !(d.merit(best.sample) < d.merit(d.anchor.sample)) {
+		return shortest
+	}
+	return best
 }
 
 // judgeStep compares the gain of a step with the gain expected (trust-region
@@ -40,15 +62,12 @@ func (d *designer) judgeStep(p *proposal) {
 	}
 	expected := d.merit(d.anchor.sample) - p.expected
 	gained := d.merit(d.anchor.sample) - d.merit(p.sample)
-	length := 0.0
-	for j := range p.u {
-		length = math.Max(length, math.Abs(p.u[j]-d.anchor.sample.u[j]))
-	}
+	length := extent(p.u, d.anchor.sample.u)
 	switch ratio := gained / expected; {
 	case !(expected > 0):
 	case ratio < 0.25:
 		d.radius = math.Max(leastRadius, 0.5*d.radius)
-	case ratio > 0.75 && length > 0.9*d.radius:
+	case ratio > 0.75 && length > heldBack*d.radius:
 		d.radius = math.Min(1, 2*d.radius)
 	}
 }
@@ -76,7 +95,7 @@ func (d *designer) reopen(before *sample) {
 
 // apartFromTraining reports whether u is far enough from every training sample.
 func (d *designer) apartFromTraining(u []float64) bool {
-	least := math.Min(apart, d.radius/apartOfRadius)
+	least := d.leastApart()
 	for _, s := range d.training {
 		if distance(s.u, u) < least {
 			return false
@@ -84,6 +103,9 @@ func (d *designer) apartFromTraining(u []float64) bool {
 	}
 	return true
 }
+
+// leastApart is the distance from which on two samples tell something different.
+func (d *designer) leastApart() float64 { return math.Min(apart, d.radius/apartOfRadius) }
 
 // apartOfRadius relates the distance of training samples to the trust region, once
 // that is small: its model has to follow what happens within it.
@@ -107,7 +129,7 @@ func (d *designer) note(proposals []*proposal) {
 		step.Aim = best.aim
 	}
 	for _, p := range proposals {
-		if p.exploit {
+		if p.purpose == stepping && math.IsNaN(step.Error) {
 			step.Error = d.surrogateError(p.sample, p.predicted)
 		}
 	}

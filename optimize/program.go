@@ -3,6 +3,7 @@ package optimize
 import (
 	"context"
 	"math"
+	"slices"
 
 	"rampwright/optimize/global"
 	"rampwright/optimize/local"
@@ -16,10 +17,13 @@ type searcher struct {
 	plan      *plan
 	land      landscape
 	aimScale  float64
-	blind     bool      // the aim cannot be predicted: look for feasibility alone
-	scale     []float64 // of each curved row, in the quantity's unit
-	inside    []float64 // extra back-off of each curved row, in units of its Row.Scale
-	vector    []float64 // values by quantity index
+	blind     bool       // the aim cannot be predicted: look for feasibility alone
+	scale     []float64  // of each curved row, in the quantity's unit
+	cuts      local.Rows // linear rows beside those of the plan, one a failure
+	failures  []*sample  // that cut the search short
+	avoid     *success   // of the model: explore keeps out of where it is likely to fail
+	inside    []float64  // extra back-off of each curved row, in units of its Row.Scale
+	vector    []float64  // values by quantity index
 	rows      [][]float64
 	workspace local.Workspace
 }
@@ -65,19 +69,20 @@ func (s *searcher) polish(ctx context.Context, start, low, high []float64, setti
 	if err != nil {
 		return nil, err
 	}
-	n := s.plan.dimension()
-	out := &solution{
-		u:      append([]float64(nil), result.X[:n]...),
-		values: make([]float64, len(s.vector)),
-		status: result.Status,
-		prices: s.prices(result),
-	}
+	out := s.at(append([]float64(nil), result.X[:s.plan.dimension()]...))
+	out.status, out.prices = result.Status, s.prices(result)
+	return out, nil
+}
+
+// at is a point as a solution, without prices.
+func (s *searcher) at(u []float64) *solution {
+	out := &solution{u: u, values: make([]float64, len(s.vector))}
 	s.values(out.u)
 	copy(out.values, s.vector)
 	out.aim = s.plan.objective.value(out.values)
 	out.violation = s.violation()
 	out.excess = s.excess()
-	return out, nil
+	return out
 }
 
 // tight returns settings whose feasibility lies within the back-off of every row:
@@ -101,7 +106,7 @@ func (s *searcher) explore(ctx context.Context, seeds [][]float64, seed uint64, 
 	p := s.plan
 	result, err := global.Minimize(ctx, p.dimension(), func(u []float64) (f, violation float64) {
 		s.values(u)
-		violation = p.linearViolation(u) + s.violation()
+		violation = p.linearViolation(u) + s.violation() + math.Max(0, leastSuccess-s.avoid.at(u))
 		if s.blind {
 			return 0, violation
 		}
@@ -130,7 +135,7 @@ func (s *searcher) program(start, low, high []float64) (local.Program, []float64
 		m += len(p.rows[r].Bounds())
 	}
 	program := local.Program{
-		Low: low, High: high, AtMost: p.linear, Inequalities: m,
+		Low: low, High: high, AtMost: s.straight(), Inequalities: m,
 		Value:    func(u, c []float64) float64 { return s.value(u, c) },
 		Gradient: func(u, grad, jac []float64) { s.gradient(u, grad, jac) },
 	}
@@ -140,13 +145,21 @@ func (s *searcher) program(start, low, high []float64) (local.Program, []float64
 	program.Inequalities += len(p.objective.parts)
 	program.Low = append(append([]float64(nil), low...), math.Inf(-1))
 	program.High = append(append([]float64(nil), high...), math.Inf(1))
-	program.AtMost = widen(p.linear, n)
+	program.AtMost = widen(program.AtMost, n)
 	s.values(start)
 	t := p.objective.value(s.vector) / s.aimScale
 	if math.IsNaN(t) {
 		t = 0
 	}
 	return program, append(append([]float64(nil), start...), t)
+}
+
+// straight are the linear rows of the plan and the cuts.
+func (s *searcher) straight() local.Rows {
+	if len(s.cuts.B) == 0 {
+		return s.plan.linear
+	}
+	return local.Rows{A: slices.Concat(s.plan.linear.A, s.cuts.A), B: slices.Concat(s.plan.linear.B, s.cuts.B)}
 }
 
 // widen adds a zero column to linear rows.

@@ -2,12 +2,8 @@ package optimize
 
 import (
 	"context"
-	"fmt"
 	"math"
 	"slices"
-
-	"rampwright/constraints"
-	"rampwright/surrogate/doe"
 )
 
 // proposal is a point the search wants evaluated, and what the surrogates say of
@@ -17,16 +13,38 @@ type proposal struct {
 	predicted []float64 // by quantity index, plain surrogates
 	aim       float64   // plain prediction
 	expected  float64   // merit by the model that proposed it
-	exploit   bool      // a step from the center, judged by the trust region
-	sample    *sample   // once evaluated
+	purpose   purpose
+	radius    float64 // of the region of a step, of the cloud of a scout or probe
+	cut       bool    // a step that failures of the model cut short
+	sample    *sample // once evaluated
 }
 
-// propose returns the points to evaluate next: a step of the corrected surrogates
+// purpose is why a point is evaluated.
+type purpose int
+
+const (
+	improving purpose = iota // the best found over the whole box
+	stepping                 // from the center, judged by the trust region
+	scouting                 // where the surrogates know least
+	probing                  // the slopes at a center at rest
+)
+
+// propose returns the points of the next round, distinct ones that the infill left
+// can pay for. None means that the search is done.
+func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
+	points, err := d.choose(ctx)
+	if err == nil && d.settings.Batch > 0 && len(points) > 0 {
+		points, err = d.fill(ctx, points)
+	}
+	return points[:min(len(points), d.settings.Infill-d.counts.Infill)], err
+}
+
+// choose returns the points that matter most now: a step of the corrected surrogates
 // from the center; beside it, while the whole box is searched, the best point of
 // the surrogates there or a point near the center they know least; beside it or
 // alone, while they do not explain the aim, the point of largest expected
-// improvement. None means that the search is done.
-func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
+// improvement.
+func (d *designer) choose(ctx context.Context) ([]*proposal, error) {
 	center := d.anchor.sample
 	step, err := d.exploit(ctx, center)
 	if err != nil {
@@ -37,7 +55,10 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		return nil, err
 	}
 	if elsewhere != nil && (d.idle || d.atRest(step)) {
-		return d.affordable([]*proposal{elsewhere}), nil
+		if d.settings.Batch > 0 && !d.atRest(step) && !d.repeats(step.u) {
+			return []*proposal{elsewhere, step}, nil
+		}
+		return []*proposal{elsewhere}, nil
 	}
 	if d.atRest(step) {
 		if err := d.audit(ctx, center); err != nil {
@@ -46,10 +67,9 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 		switch {
 		case d.audited.err > d.settings.Agreement:
 			return d.refine(center), nil
-		case d.confirmed != center:
-			d.confirmed = center
-			if probes := d.scouts(center, d.probes(), leastScout); len(probes) > 0 {
-				return d.affordable(probes), nil
+		case d.confirmed != center || d.unprobed > 0:
+			if probes := d.probe(center); len(probes) > 0 {
+				return probes, nil
 			}
 		}
 		return d.challenge(ctx, center)
@@ -57,11 +77,11 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 	if d.repeats(step.u) {
 		// The model failed there, or nothing came of it: learn around the center.
 		d.radius = math.Max(leastRadius, 0.5*d.radius)
-		return d.affordable(d.scouts(center, 2, math.Max(leastScout, math.Min(d.radius, scoutRadius)))), nil
+		return d.scouts(center, 2, math.Max(leastScout, math.Min(d.radius, scoutRadius))), nil
 	}
 	proposals := []*proposal{step}
 	if elsewhere != nil {
-		return d.affordable(append(proposals, elsewhere)), nil
+		return append(proposals, elsewhere), nil
 	}
 	if d.exploring() {
 		wide, err := d.search(ctx)
@@ -69,11 +89,11 @@ func (d *designer) propose(ctx context.Context) ([]*proposal, error) {
 			return nil, err
 		}
 		if d.worthEvaluating(wide, step) {
-			return d.affordable(append(proposals, wide)), nil
+			return append(proposals, wide), nil
 		}
 		proposals = append(proposals, d.scouts(center, 1, math.Min(d.radius, scoutRadius))...)
 	}
-	return d.affordable(proposals), nil
+	return proposals, nil
 }
 
 // lookElsewhere returns the point of largest expected improvement while the wide
@@ -87,7 +107,7 @@ func (d *designer) lookElsewhere(ctx context.Context, step *proposal) (*proposal
 	}
 	p, err := d.improve(ctx)
 	d.unexplained = p != nil
-	if p != nil && distance(p.u, step.u) < 10*apart {
+	if p != nil && distance(p.u, step.u) < improveApart {
 		return nil, err
 	}
 	return p, err
@@ -123,6 +143,23 @@ func (d *designer) probes() int {
 	return 2
 }
 
+// probe returns the probes that a center at rest still lacks, as many as a round
+// holds.
+func (d *designer) probe(center *sample) []*proposal {
+	if d.confirmed != center {
+		d.confirmed, d.unprobed = center, d.probes()
+	}
+	probes := d.scouts(center, d.unprobed, leastScout)
+	for _, p := range probes {
+		p.purpose = probing
+	}
+	d.unprobed = 0
+	if most := d.settings.Batch; most > 0 && len(probes) > most {
+		probes, d.unprobed = probes[:most], len(probes)-most
+	}
+	return probes
+}
+
 // exploring reports whether the box is still searched widely: in the first
 // rounds.
 func (d *designer) exploring() bool { return len(d.history) < wideRounds }
@@ -134,30 +171,42 @@ const wideRounds = 2
 func (d *designer) refine(center *sample) []*proposal {
 	d.refined++
 	radius := math.Max(leastScout, scoutRadius*math.Pow(0.8, float64(d.refined)))
-	return d.affordable(d.scouts(center, 2, radius))
+	return d.scouts(center, 2, radius)
 }
 
-// affordable cuts proposals to the infill left.
-func (d *designer) affordable(proposals []*proposal) []*proposal {
-	return proposals[:min(len(proposals), d.settings.Infill-d.counts.Infill)]
-}
-
-// exploit searches the corrected surrogates within the trust region.
+// exploit searches the corrected surrogates within the trust region, and moves the
+// weights of the merit after what it found.
 func (d *designer) exploit(ctx context.Context, center *sample) (*proposal, error) {
+	p, found, err := d.stepOf(ctx, center, d.radius, halfway)
+	if err == nil {
+		d.penalty.follow(d.plan, center, found)
+		p.expected = d.expectedMerit(found)
+	}
+	return p, err
+}
+
+// stepOf searches the corrected surrogates within a radius of the center, and where
+// that leads among failures of the model, no further than a share of the way there.
+func (d *designer) stepOf(ctx context.Context, center *sample, radius, share float64) (*proposal, *solution, error) {
 	land := d.plan.surrogates(d.near.fits, d.anchor)
 	s := d.newSearcher(land)
 	s.blind = d.blind(d.near)
 	d.stayInside(s)
-	found, err := d.stepWithin(ctx, s, center, d.radius)
-	if err != nil {
-		return nil, err
+	found, err := d.stepWithin(ctx, s, center, radius)
+	for err == nil && d.amongFailures(found.u) {
+		failure := d.nearestFailure(found.u)
+		if distance(failure.u, center.u) < d.leastApart() || !s.cutShort(center, failure, share) {
+			break // close enough: see whether it goes on behind
+		}
+		found, err = d.stepWithin(ctx, s, center, radius)
 	}
 	d.counts.Surrogate += land.calls
-	d.penalty.follow(d.plan, center, found)
+	if err != nil {
+		return nil, nil, err
+	}
 	p := d.proposal(found.u, d.near)
-	p.exploit = true
-	p.expected = d.expectedMerit(found)
-	return p, nil
+	p.purpose, p.radius, p.cut, p.expected = stepping, radius, len(s.cuts.B) > 0, d.expectedMerit(found)
+	return p, found, nil
 }
 
 // stepWithin searches around the center. A solution that the model itself calls
@@ -248,7 +297,7 @@ func (d *designer) search(ctx context.Context) (*proposal, error) {
 	land := d.plan.surrogates(d.wide.fits, nil)
 	center := d.center()
 	s := d.newSearcher(land)
-	s.blind = d.blind(d.wide)
+	s.blind, s.avoid = d.blind(d.wide), d.success
 	starts, err := s.explore(ctx, [][]float64{center.u}, uint64(d.settings.Seed)+uint64(len(d.samples)), wideGenerations)
 	if err != nil {
 		return nil, err
@@ -260,6 +309,9 @@ func (d *designer) search(ctx context.Context) (*proposal, error) {
 		found, err := s.polish(ctx, start, low, high, surrogateSearch)
 		if err != nil {
 			return nil, err
+		}
+		if d.success.at(found.u) < leastSuccess {
+			found = s.at(start)
 		}
 		if !math.IsNaN(found.aim) && (best == nil || d.expectedMerit(found) < d.expectedMerit(best)) {
 			best = found
@@ -282,7 +334,7 @@ const (
 // worthEvaluating reports whether a point found over the whole box promises more
 // than the step, and is not the same point.
 func (d *designer) worthEvaluating(wide, step *proposal) bool {
-	return wide != nil && distance(wide.u, step.u) > 10*apart && d.fresh(wide.u)
+	return wide != nil && distance(wide.u, step.u) > improveApart && d.fresh(wide.u)
 }
 
 // fresh reports whether no sample stands at u already.
@@ -295,10 +347,11 @@ func (d *designer) fresh(u []float64) bool {
 	return true
 }
 
-// repeats reports whether u was evaluated before.
+// repeats reports whether u was evaluated before, or as good as, where the model
+// failed.
 func (d *designer) repeats(u []float64) bool {
 	for _, s := range d.samples {
-		if distance(s.u, u) < samePoint {
+		if gap := distance(s.u, u); gap < samePoint || gap < sameFailure && d.plan.lacks(s) {
 			return true
 		}
 	}
@@ -306,76 +359,8 @@ func (d *designer) repeats(u []float64) bool {
 }
 
 // samePoint is the distance in the unit cube below which an evaluation would
-// repeat another.
-const samePoint = 1e-12
-
-// scouts are up to n points near the center that the surrogates know least: of a
-// cloud within the radius, those with the largest scaled deviation over aim and
-// limits that keep the linear rows and stand apart.
-func (d *designer) scouts(center *sample, n int, radius float64) []*proposal {
-	source := doe.Stream(d.settings.Seed, fmt.Sprintf("scouts %d", d.counts.Infill))
-	cloud := doe.RandomLatinHypercube(scoutCloud, len(center.u), source)
-	doubts := make([]float64, len(cloud))
-	for i, u := range cloud {
-		for j := range u {
-			u[j] = math.Min(1, math.Max(0, center.u[j]+(2*u[j]-1)*radius))
-		}
-		if d.plan.insideLinear(u) && d.fresh(u) {
-			doubts[i] = d.doubt(u)
-		}
-	}
-	var chosen []*proposal
-	for len(chosen) < n {
-		best := -1
-		for i, doubt := range doubts {
-			if doubt > 0 && (best < 0 || doubt > doubts[best]) {
-				best = i
-			}
-		}
-		if best < 0 {
-			break
-		}
-		chosen = append(chosen, d.proposal(cloud[best], d.near))
-		for i, u := range cloud {
-			if distance(u, cloud[best]) < radius/2 {
-				doubts[i] = 0
-			}
-		}
-	}
-	return chosen
-}
-
+// repeat another, sameFailure that below which it would fail as another did.
 const (
-	scoutCloud  = 64
-	leastScout  = 4 * apart
-	scoutRadius = 0.1
+	samePoint   = 1e-12
+	sameFailure = 1e-6
 )
-
-// doubt is the largest scaled deviation of the surrogates at u.
-func (d *designer) doubt(u []float64) float64 {
-	most := 0.0
-	for k := range d.near.fits {
-		fit := &d.near.fits[k]
-		if !fit.usable() {
-			continue
-		}
-		most = math.Max(most, fit.deviation(u)/d.unit(fit.Quantity))
-	}
-	return most
-}
-
-// unit is the scale of a quantity: of the first row on it, or the aim's. A limit
-// at 0 has no scale of its own; what is usual stands in.
-func (d *designer) unit(quantity int) float64 {
-	for _, r := range d.plan.curved {
-		row := &d.plan.rows[r]
-		if row.Index != quantity {
-			continue
-		}
-		if slices.ContainsFunc(row.Bounds(), func(b constraints.Bound) bool { return b.At != 0 }) {
-			return row.Scale
-		}
-		return d.penalty.usual[r]
-	}
-	return d.penalty.aimScale
-}

@@ -3,6 +3,7 @@ package optimize_test
 import (
 	"context"
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 	"testing"
@@ -155,9 +156,13 @@ const never = 999 // evaluations: not reached
 // smallDesign is a first design of two points more than variables.
 func smallDesign(n int) optimize.Settings { return optimize.Settings{Samples: n + 2, Infill: 30 * n} }
 
-// evaluations runs a yardstick from seeds 1 to n and returns, ascending, after how
-// many evaluations it came within 1e-4 and 1e-6, and how many were spent.
-func (y yardstick) evaluations(t testing.TB, settings optimize.Settings, seeds int64) (coarse, close, spent []int) {
+// cost is what a yardstick took from each of some seeds, each list ascending: the
+// evaluations, and the rounds after the samples, to 1e-4 and to 1e-6, and the
+// evaluations spent in all.
+type cost struct{ coarse, close, coarseRounds, closeRounds, spent []int }
+
+// evaluations runs a yardstick from seeds 1 to n.
+func (y yardstick) evaluations(t testing.TB, settings optimize.Settings, seeds int64) (c cost) {
 	t.Helper()
 	for seed := int64(1); seed <= seeds; seed++ {
 		settings.Seed, settings.Jobs = seed, 2
@@ -166,15 +171,39 @@ func (y yardstick) evaluations(t testing.TB, settings optimize.Settings, seeds i
 			t.Fatal(err)
 		}
 		reached := y.reached(result, 1e-4, 1e-6)
-		coarse, close, spent = append(coarse, reached[0]), append(close, reached[1]), append(spent, len(result.Samples))
+		c.coarse, c.close, c.spent = append(c.coarse, reached[0]), append(c.close, reached[1]), append(c.spent, len(result.Samples))
+		c.coarseRounds = append(c.coarseRounds, roundOf(result, reached[0]))
+		c.closeRounds = append(c.closeRounds, roundOf(result, reached[1]))
 		if reached[0] == never {
 			t.Logf("seed %d ends at %g, best %g: %s", seed, result.Best.AimExact, y.best, result.Why)
 		}
 	}
-	for _, list := range [][]int{coarse, close, spent} {
+	for _, list := range [][]int{c.coarse, c.close, c.coarseRounds, c.closeRounds, c.spent} {
 		slices.Sort(list)
 	}
-	return coarse, close, spent
+	return c
+}
+
+// roundOf is the round after the samples in which an evaluation was made.
+func roundOf(result *optimize.Result, evaluation int) int {
+	if evaluation == never {
+		return never
+	}
+	if evaluation <= result.Counts.Samples {
+		return 0
+	}
+	for i, step := range result.History {
+		if step.Evaluations >= evaluation {
+			return i + 1
+		}
+	}
+	return len(result.History) + 1
+}
+
+// median of an ascending list.
+func median(list []int) float64 {
+	n := len(list)
+	return float64(list[(n-1)/2]+list[n/2]) / 2
 }
 
 // From a small first design the optimum is reached in no more evaluations than by
@@ -191,31 +220,57 @@ func TestFewEvaluationsReachTheOptimum(t *testing.T) {
 		}
 		settings := smallDesign(len(y.task.Problem.Variables()))
 		settings.Infill = max(y.coarse, y.close) // later ones are not asked about
-		coarse, close, _ := y.evaluations(t, settings, int64(seeds))
+		c := y.evaluations(t, settings, int64(seeds))
+		coarse, close := c.coarse, c.close
 		if coarse[(seeds-1)/2] > y.coarse || y.close > 0 && close[(seeds-1)/2] > y.close {
 			t.Errorf("%s: to 1e-4 in %v evaluations, to 1e-6 in %v; medians wanted %d and %d", y.name, coarse, close, y.coarse, y.close)
 		}
 	}
 }
 
-// BenchmarkEvaluationsToTheOptimum reports, for every yardstick and for a small
-// first design and the default one, the median evaluations to 1e-4 and 1e-6 over
-// ten seeds, those spent, and how many seeds missed 1e-4. Run it with -benchtime 1x.
+// Four points a round lead to the optimum in two thirds of the rounds at most, and
+// from every seed (here half the seeds of the benchmark and two yardsticks).
+func TestBatchSavesRoundsToTheOptimum(t *testing.T) {
+	for _, y := range yardsticks(t) {
+		if !slices.Contains([]string{"turning", "mach"}, y.name) {
+			continue
+		}
+		settings := smallDesign(len(y.task.Problem.Variables()))
+		alone := y.evaluations(t, settings, 5)
+		settings.Batch = 4
+		batch := y.evaluations(t, settings, 5)
+		if 3*batch.coarseRounds[2] > 2*alone.coarseRounds[2] || batch.coarse[4] == never {
+			t.Errorf("%s: to 1e-4 in %v rounds of four, in %v without a batch", y.name, batch.coarseRounds, alone.coarseRounds)
+		}
+	}
+}
+
+// BenchmarkEvaluationsToTheOptimum reports, for every yardstick, for a small first
+// design with and without batches and for the default effort, medians over ten
+// seeds: evaluations and rounds after the samples to 1e-4 and 1e-6, evaluations
+// spent; and how many seeds missed 1e-4. Run it with -benchtime 1x.
 func BenchmarkEvaluationsToTheOptimum(b *testing.B) {
 	const seeds = 10
 	for _, y := range yardsticks(b) {
-		for _, effort := range []struct {
-			name     string
-			settings optimize.Settings
-		}{{"small", smallDesign(len(y.task.Problem.Variables()))}, {"default", optimize.Settings{}}} {
-			b.Run(y.name+"/"+effort.name, func(b *testing.B) {
+		small := smallDesign(len(y.task.Problem.Variables()))
+		efforts := map[string]optimize.Settings{"default": {}, "small": small}
+		for _, batch := range []int{1, 4, 8} {
+			small.Batch = batch
+			if batch == 4 { // and for 8
+				small.Infill *= 2
+			}
+			efforts[fmt.Sprintf("small,batch=%d", batch)] = small
+		}
+		for _, name := range slices.Sorted(maps.Keys(efforts)) {
+			b.Run(y.name+"/"+name, func(b *testing.B) {
 				for b.Loop() {
-					coarse, close, spent := y.evaluations(b, effort.settings, seeds)
-					misses := len(coarse) - len(slices.DeleteFunc(slices.Clone(coarse), func(n int) bool { return n == never }))
-					b.ReportMetric(float64(coarse[seeds/2-1]+coarse[seeds/2])/2, "to-1e-4")
-					b.ReportMetric(float64(close[seeds/2-1]+close[seeds/2])/2, "to-1e-6")
-					b.ReportMetric(float64(spent[seeds/2-1]+spent[seeds/2])/2, "spent")
-					b.ReportMetric(float64(misses), "misses")
+					c := y.evaluations(b, efforts[name], seeds)
+					b.ReportMetric(median(c.coarse), "to-1e-4")
+					b.ReportMetric(median(c.close), "to-1e-6")
+					b.ReportMetric(median(c.coarseRounds), "rounds-to-1e-4")
+					b.ReportMetric(median(c.closeRounds), "rounds-to-1e-6")
+					b.ReportMetric(median(c.spent), "spent")
+					b.ReportMetric(float64(seeds-slices.IndexFunc(append(c.coarse, never), func(n int) bool { return n == never })), "misses")
 				}
 			})
 		}

@@ -95,6 +95,7 @@ type Sample struct {
 type Counts struct {
 	Samples   int
 	Infill    int
+	Rounds    int // of infill: what a round proposes is evaluated side by side
 	Verify    int // by the second route
 	Surrogate int
 }

@@ -35,12 +35,20 @@ func (e *BadStart) Error() string {
 
 // Settings steer a design. The zero value asks for the defaults.
 type Settings struct {
-	Samples   int     // exact evaluations before the first fit; default 15 a variable
-	Infill    int     // exact evaluations the search may add; default 10 a variable
-	Seed      int64   // of every random choice; default 1
+	Samples int   // exact evaluations before the first fit; default 15 a variable
+	Infill  int   // exact evaluations the search may add; default 10 a variable
+	Seed    int64 // of every random choice; default 1
+	// Batch is how many exact evaluations a round proposes, for models that run side
+	// by side: it saves rounds at the price of evaluations. 0 leaves it to the search,
+	// one or two a round. Unlike Jobs it decides what is evaluated.
+	Batch     int
 	Agreement float64 // largest error of the surrogates at the optimum, scaled; default 1e-3
 	Jobs      int     // evaluations and fits run side by side; default 1. No result depends on it
 }
+
+// MostBatch bounds the evaluations of a round: beyond it a round learns nothing that
+// the next would not choose better.
+const MostBatch = 32
 
 const (
 	defaultAgreement = 1e-3
@@ -79,6 +87,9 @@ func (s Settings) Validate(n int) error {
 	}
 	if !(s.Agreement > 0 && s.Agreement < 1) {
 		wrong = append(wrong, fmt.Errorf("agreement %g is not within (0, 1)", s.Agreement))
+	}
+	if s.Batch < 0 || s.Batch > MostBatch {
+		wrong = append(wrong, fmt.Errorf("batch %d is not within 0 to %d", s.Batch, MostBatch))
 	}
 	if s.Jobs < 1 {
 		wrong = append(wrong, fmt.Errorf("jobs %d: at least one", s.Jobs))

@@ -12,7 +12,8 @@ import (
 // of a verified design.
 const RouteAgreement = 1e-10
 
-// candidate closes the evidence on a sample: the second route, margins, prices.
+// candidate gathers what is known of a sample: margins, prices, what the surrogates
+// say of it.
 func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) {
 	c := Candidate{
 		X: s.x, Exact: s.evaluation, AimExact: s.aim, AimPredicted: math.NaN(), SurrogateError: math.Inf(1),
@@ -31,13 +32,24 @@ func (d *designer) candidate(ctx context.Context, s *sample) (Candidate, error) 
 	} else {
 		c.Predicted = unpredicted(len(d.plan.quantities))
 	}
-	if err := c.verify(ctx, d.plan.problem); err != nil {
-		return c, err
-	}
-	if c.Second != nil || c.Repetition != NotRepeated {
-		d.counts.Verify++
-	}
 	return c, nil
+}
+
+// verify computes the candidates once more, side by side.
+func (d *designer) verify(ctx context.Context, candidates []Candidate) error {
+	failures := make([]error, len(candidates))
+	inSlots(d.settings.Jobs, len(candidates), func(i int) {
+		failures[i] = candidates[i].verify(ctx, d.plan.problem)
+	})
+	for i := range candidates {
+		if c := &candidates[i]; c.Second != nil || c.Repetition != NotRepeated {
+			d.counts.Verify++
+		}
+		if failures[i] != nil {
+			return failures[i]
+		}
+	}
+	return nil
 }
 
 // unpredicted is a prediction of nothing.

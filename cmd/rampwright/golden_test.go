@@ -223,7 +223,7 @@ func goldenDesign(t *testing.T, of *study, x ...float64) *report.Study {
 	}
 	result := &optimize.Result{
 		Status: optimize.NotVerified, Rows: rows, Why: "the design is given",
-		Counts: optimize.Counts{Samples: 16, Infill: 1, Verify: 1, Surrogate: 40},
+		Counts: optimize.Counts{Samples: 16, Infill: 1, Rounds: 1, Verify: 1, Surrogate: 40},
 	}
 	for i := range 16 {
 		u := []float64{float64(i%4) / 3, float64(i/4) / 3}

@@ -12,7 +12,7 @@ import (
 type CheckedBrief struct {
 	Head      Head
 	Aim       string // "highest recovery at cruise"
-	Effort    string // "60 samples, 40 infill, seed 1, agreement 0.001"
+	Effort    string // "60 samples, 40 infill, seed 1, agreement 0.001", and a batch where one is asked for
 	Points    []CheckedPoint
 	Variables []problems.Variable
 	Limits    []problems.Limit

@@ -140,6 +140,7 @@ type ExactSearch struct {
 type Evaluations struct {
 	Samples   int `json:"samples"`
 	Infill    int `json:"infill"`
+	Rounds    int `json:"rounds"` // of infill, each evaluated side by side
 	Verify    int `json:"verify"`
 	Surrogate int `json:"surrogate"`
 }

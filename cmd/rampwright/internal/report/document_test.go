@@ -97,7 +97,7 @@ func TestDesignKeys(t *testing.T) {
 		[]string{"candidates"}, under("candidates", candidateKeys),
 		[]string{"fits"}, under("fits", "quantity member at kind transform description samples q2 rmse"),
 		[]string{"exact_search"}, under("exact_search", "status aim variables evaluations ratio"),
-		[]string{"evaluations"}, under("evaluations", "samples infill verify surrogate"),
+		[]string{"evaluations"}, under("evaluations", "samples infill rounds verify surrogate"),
 		strings.Fields("conflicts relaxation rounded play notes history"), under("history", "evaluations aim violation error radius"),
 		[]string{"inlet"}, under("inlet", shapeKeys),
 		[]string{"points"}, under("points", "name mach incidence_deg pressure_kPa temperature_K status traced stations"),

@@ -236,6 +236,7 @@ func (r *result) provenanceSection() chapter {
 	}{
 		{"exact evaluations of the first design of experiments", "samples", r.Evaluations.Samples},
 		{"exact evaluations chosen by the search", "infill", r.Evaluations.Infill},
+		{"rounds of the search, each evaluated side by side", "rounds", r.Evaluations.Rounds},
 		{"evaluations by the second exact route", "verify", r.Evaluations.Verify},
 		{"evaluations of surrogates", "surrogate", r.Evaluations.Surrogate},
 	} {

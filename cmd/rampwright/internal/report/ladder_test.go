@@ -53,7 +53,7 @@ func TestLadderKeys(t *testing.T) {
 			"conflicts"), under("rows.conflicts", "members"),
 		under("rows", "relaxation"), under("rows.relaxation", "quantity at side bound enough"),
 		under("rows", "equal_strength evidence evidence.route_gap evidence.surrogate_error evidence.missing evaluations evaluations.samples "+
-			"evaluations.infill evaluations.verify evaluations.surrogate missing"),
+			"evaluations.infill evaluations.rounds evaluations.verify evaluations.surrogate missing"),
 		strings.Fields("advice standard_recovery equal_strength_rule cautions"), under("cautions", "rows text rule"), []string{"assumptions"})
 	got := keyPaths(t, NewLadder(head, ladderFixture(t)).JSON())
 	slices.Sort(got)

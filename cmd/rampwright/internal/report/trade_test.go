@@ -32,7 +32,7 @@ func TestTradeKeys(t *testing.T) {
 	want := slices.Concat(
 		strings.Fields("format program title seed brief_hash status between"), under("between", "quantity at unit highest"),
 		[]string{"curve"}, under("curve", "values status knee variables exact predicted rate active evidence evidence.route_gap "+
-			"evidence.surrogate_error evaluations evaluations.samples evaluations.infill evaluations.verify evaluations.surrogate missing"),
+			"evidence.surrogate_error evaluations evaluations.samples evaluations.infill evaluations.rounds evaluations.verify evaluations.surrogate missing"),
 		under("curve.values", "recovery length_m"), under("reference", "recovery length_m"),
 		strings.Fields("dominated hypervolume hypervolume_share reference knee_rule why conflicts relaxation cautions"),
 		under("cautions", "rows text rule"), []string{"assumptions"})
