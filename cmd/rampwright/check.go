@@ -47,6 +47,9 @@ func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 		Head: s.head(b.Effort.Seed), Aim: aimText(b), Variables: s.model.Variables(), Limits: s.limits,
 		Effort: fmt.Sprintf("%d samples, %d infill, seed %d, agreement %g", b.Effort.Samples, b.Effort.Infill, b.Effort.Seed, b.Effort.Agreement),
 	}
+	if b.Effort.Batch > 0 {
+		out.Effort += fmt.Sprintf(", batch %d", b.Effort.Batch)
+	}
 	for _, c := range b.Flight {
 		gas := b.Definition.Gas
 		out.Points = append(out.Points, report.CheckedPoint{

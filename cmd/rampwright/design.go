@@ -74,7 +74,7 @@ func (a *app) limit() (time.Duration, error) {
 func (a *app) settings(study *study) optimize.Settings {
 	effort := study.brief.Effort
 	return optimize.Settings{
-		Samples: effort.Samples, Infill: effort.Infill, Seed: effort.Seed, Agreement: effort.Agreement, Jobs: a.jobs,
+		Samples: effort.Samples, Infill: effort.Infill, Batch: effort.Batch, Seed: effort.Seed, Agreement: effort.Agreement, Jobs: a.jobs,
 	}
 }
 
@@ -108,12 +108,13 @@ func (a *app) design(study *study, dir string) (err error) {
 	cached, counter := runstore.Cached(study.model, folder.Ledger(), model)
 	task := optimize.Task{Problem: cached, Limits: study.limits, Aim: study.brief.Aim}
 	settings := a.settings(study)
-	progress := a.progress()
+	progress, searching := a.progress(), time.Now()
 	result, err := optimize.Design(ctx, task, settings, progress.observe)
 	progress.end()
 	if err != nil {
 		return a.cutShort(err, interruption)
 	}
+	a.hintBatch(settings, result.Counts, time.Since(searching))
 	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
 	if err := a.followUp(ctx, study, cached, settings, &finished); err != nil {
 		return err

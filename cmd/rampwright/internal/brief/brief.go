@@ -74,6 +74,7 @@ func (c Condition) point() inlet.Point {
 type Effort struct {
 	Samples   int     `json:"samples"`
 	Infill    int     `json:"infill"`
+	Batch     int     `json:"batch,omitempty"` // evaluations a round; 0 leaves it to the search
 	Seed      int64   `json:"seed"`
 	Agreement float64 `json:"agreement"` // largest relative error of the surrogates at the optimum
 }

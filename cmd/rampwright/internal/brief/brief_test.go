@@ -48,7 +48,7 @@ func TestValuesOfTheSoundBrief(t *testing.T) {
 	if d.ShockOnLip != inlet.Fixed(6) || d.LipSetback != inlet.Fixed(0) {
 		t.Errorf("shock on lip %+v, setback %+v", d.ShockOnLip, d.LipSetback)
 	}
-	if b.Effort != (Effort{60, 40, 1, 1e-3}) || b.Tolerance != (Tolerance{RampAngleDeg: 0.1, Mach: 0.03, IncidenceDeg: 0.5, Confidence: 0.95}) || !b.Tolerance.Any() {
+	if b.Effort != (Effort{Samples: 60, Infill: 40, Seed: 1, Agreement: 1e-3}) || b.Tolerance != (Tolerance{RampAngleDeg: 0.1, Mach: 0.03, IncidenceDeg: 0.5, Confidence: 0.95}) || !b.Tolerance.Any() {
 		t.Errorf("effort %+v, tolerance %+v", b.Effort, b.Tolerance)
 	}
 	if b.Flight[0].Weight != 1 || b.Flight[1].Weight != 0 {
@@ -182,8 +182,8 @@ func TestOverrides(t *testing.T) {
 	if b.Definition.RampAngle[1] != inlet.Between(5, 6) {
 		t.Errorf("ramp 2 is %+v, want 5 to 6", b.Definition.RampAngle[1])
 	}
-	b = read(t, edited(t, "effort: {samples: 60, infill: 40, seed: 1, agreement: 1e-3}\n", ""), Overrides{"seed": "7", "defaults": "false"})
-	if b.Effort != (Effort{60, 40, 7, 1e-3}) || b.Defaults {
+	b = read(t, edited(t, "effort: {samples: 60, infill: 40, seed: 1, agreement: 1e-3}\n", ""), Overrides{"seed": "7", "batch": "4", "defaults": "false"})
+	if b.Effort != (Effort{Samples: 60, Infill: 40, Batch: 4, Seed: 7, Agreement: 1e-3}) || b.Defaults {
 		t.Errorf("effort %+v, defaults %v", b.Effort, b.Defaults)
 	}
 }

@@ -41,7 +41,11 @@ func (b *Brief) ResolvedYAML() []byte {
 		b.writeTolerance(&w)
 	}
 	e := b.Effort
-	fmt.Fprintf(&w, "effort: {samples: %d, infill: %d, seed: %d, agreement: %s}\n", e.Samples, e.Infill, e.Seed, exactNumber(e.Agreement))
+	fmt.Fprintf(&w, "effort: {samples: %d, infill: %d", e.Samples, e.Infill)
+	if e.Batch > 0 {
+		fmt.Fprintf(&w, ", batch: %d", e.Batch)
+	}
+	fmt.Fprintf(&w, ", seed: %d, agreement: %s}\n", e.Seed, exactNumber(e.Agreement))
 	return w.Bytes()
 }
 

@@ -5,6 +5,7 @@ import (
 	"math"
 	"strconv"
 
+	"rampwright/optimize"
 	"rampwright/problems/analytic"
 )
 
@@ -131,6 +132,7 @@ var keys = []Key{
 
 	{Section: effort, Name: "samples", Form: Whole, Low: 2, High: 100000, Default: "15 per searched value", Flag: true, Meaning: "exact evaluations of the first design of experiments"},
 	{Section: effort, Name: "infill", Form: Whole, Low: 1, High: 100000, Default: "10 per searched value", Flag: true, Meaning: "exact evaluations chosen by the search"},
+	{Section: effort, Name: "batch", Form: Whole, Low: 1, High: optimize.MostBatch, Default: "one or two, as the search needs", Flag: true, Meaning: "evaluations the search chooses together, round by round, for a slow model that runs so many side by side"},
 	{Section: effort, Name: "seed", Form: Whole, Low: 1, High: 1<<53 - 1, Default: "1", Flag: true, Meaning: "seed of every random stream"},
 	{Section: effort, Name: "agreement", Form: Number, Low: 1e-9, High: 0.1, Default: "1e-3", Flag: true, Meaning: "largest error of the surrogates at the optimum, relative"},
 

@@ -111,7 +111,7 @@ func drawBrief(t *rapid.T) string {
 	w.WriteString(pick("defaults", "", "defaults: false\n"))
 	w.WriteString(pick("tolerance", "", "tolerance: {mach: "+number("sigma", 0, 0.12)+"}\n",
 		"tolerance: {cowl_angle_deg: "+number("cowl off", 0.01, 2)+", lip_setback: "+number("lip off", 0, 0.1)+", confidence: "+number("confidence", 0.5, 0.999)+"}\n"))
-	w.WriteString(pick("effort", "", "effort: {seed: 9007199254740991, agreement: "+number("agreement", 1e-8, 0.1)+"}\n"))
+	w.WriteString(pick("effort", "", "effort: {batch: 8}\n", "effort: {seed: 9007199254740991, agreement: "+number("agreement", 1e-8, 0.1)+"}\n"))
 	return w.String()
 }
 
@@ -151,6 +151,7 @@ func TestHashSeesEveryValue(t *testing.T) {
 		{"terminal_shock: false", "cowl_length: 0.1"}, {"terminal_shock: false", "shock_on_lip_mach: 5"},
 		{"highest", "lowest"}, {"highest: recovery", "highest: shock_recovery"}, {"at: cruise", "at: worst"}, {"at_least: 780", "at_least: 781"},
 		{"at_most: 1000", "at_most: none"}, {"at: every", "at: takeover"}, {"defaults: true", "defaults: false"}, {"0.03", "0.04"}, {"samples: 60", "samples: 61"}, {"seed: 1", "seed: 2"},
+		{"infill: 40", "infill: 40, batch: 1"}, {"infill: 40", "infill: 40, batch: 4"},
 	} {
 		hash := read(t, edited(t, edit[0], edit[1]), nil).Hash()
 		if before, ok := seen[hash]; ok {
@@ -160,6 +161,10 @@ func TestHashSeesEveryValue(t *testing.T) {
 			t.Errorf("hash %q", hash)
 		}
 		seen[hash] = strings.Join(edit[:], " -> ")
+	}
+	// A brief of before the key keeps its hash.
+	if text := read(t, sound, nil).canonicalJSON(); bytes.Contains(text, []byte("batch")) {
+		t.Errorf("a batch nobody asked for is hashed: %s", text)
 	}
 	same := edited(t, "A test inlet", "A test inlet # a comment", "width_m: 0.20", "width_m: 0.2", "altitude_km: 22.8", "altitude_km: 22.8, throat: chain")
 	if seen[read(t, same, nil).Hash()] != "nothing" {

@@ -164,10 +164,12 @@ func (r *reader) readEffort(root *node) {
 		}
 		return int(v)
 	}
+	batch, _ := r.whole(part, known(effort, "batch"))
 	k := known(effort, "agreement")
 	r.brief.Effort = Effort{
 		Samples:   whole("samples", samplesPerSearched*searched),
 		Infill:    whole("infill", infillPerSearched*searched),
+		Batch:     int(batch),
 		Seed:      int64(whole("seed", int(known(effort, "seed").fallback()))),
 		Agreement: r.number(part, k, k.Path()),
 	}
