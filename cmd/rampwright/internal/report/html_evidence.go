@@ -196,6 +196,9 @@ func (r *result) quantitySection() chapter {
 	if _, ok := r.Best.Exact.Get(problems.Geometry); ok {
 		add([]string{problems.Geometry})
 	}
+	if text := searchedTrace(r.Best.Traced); text != "" {
+		s.say(words("%s", text))
+	}
 	s.list(r.missingReasons())
 	return s
 }

@@ -32,6 +32,10 @@ func (d *DesignDocument) Text(width int) string {
 		p.traces(d.Points)
 		p.balances(d.Points)
 		p.quantities(d.readings, d.Points)
+		if text := searchedTrace(d.Best.Traced); text != "" {
+			p.WriteByte('\n')
+			p.wrap(indent, text, indent)
+		}
 	} else {
 		d.plainQuantities(p)
 	}

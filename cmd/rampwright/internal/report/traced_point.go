@@ -58,6 +58,19 @@ func (s *Study) tracedPoints() []TracedPoint {
 	return list
 }
 
+// searchedTrace says which trace the quantities of a design are of; "" where none of
+// its flight points is traced.
+func searchedTrace(traced []TracedPoint) string {
+	if len(traced) == 0 {
+		return ""
+	}
+	var names []string
+	for _, t := range traced {
+		names = append(names, t.Point)
+	}
+	return fmt.Sprintf("At %s the quantities are of the trace of the search, stations and waves of the finer one of verification.", strings.Join(names, ", "))
+}
+
 // widest is the largest bound of the members of a quantity.
 func (s *Study) widest(name, point string) float64 {
 	largest := 0.0
