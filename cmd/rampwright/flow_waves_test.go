@@ -201,6 +201,12 @@ func TestStreamlineEndsAtTheLip(t *testing.T) {
 		if len(line) < 2 {
 			t.Fatalf("%s: %d corners", p.Name, len(line))
 		}
+		for i, row := range line[1:] {
+			before := line[i]
+			if math.Hypot(numberIn(t, row, "x_m")-numberIn(t, before, "x_m"), numberIn(t, row, "y_m")-numberIn(t, before, "y_m")) < 1e-9*0.36 {
+				t.Errorf("%s has a corner twice: %v", p.Name, row)
+			}
+		}
 		last := line[len(line)-1]
 		if math.Hypot(numberIn(t, last, "x_m")-1.085, numberIn(t, last, "y_m")-0.36) > 1e-12 {
 			t.Errorf("%s ends at %v", p.Name, last)
@@ -223,6 +229,9 @@ func TestWavesOfAChain(t *testing.T) {
 	}
 	if want := []string{"leading edge", "corner 2", "corner 3", "lip", "outer cowl"}; !slices.Equal(sources, want) {
 		t.Errorf("fronts start from %q, want %q", sources, want)
+	}
+	if corners := csvRows(t, filepath.Join(dir, "streamline.csv")); len(corners) != 2 { // the free stream as far as the lip, where all shocks meet
+		t.Errorf("streamline %v", corners)
 	}
 	if tubes := csvRows(t, filepath.Join(dir, "tubes.csv")); len(tubes) != 1 || numberIn(t, tubes[0], "mass_fraction") != 1 {
 		t.Errorf("tubes %v", tubes)

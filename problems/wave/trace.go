@@ -82,7 +82,8 @@ type Captured struct {
 	// leaves for it between free stream, body and lip; both on q0 Ac.
 	Spillage float64
 	Balance  float64
-	// Streamline runs from half a capture height ahead of the first wave to the lip.
+	// Streamline runs from half a capture height ahead of the first wave to the lip;
+	// of corners closer than a tie, where waves meet, the last stands for all.
 	Streamline []contour.Point
 }
 
@@ -164,8 +165,10 @@ func (c *core) capture(to *Captured, line streamline, push vector) float64 {
 	ahead := height / 2
 	start := contour.Point{X: first.X - ahead*e.x, Y: first.Y - ahead*e.y}
 	to.Streamline = append(to.Streamline, c.frame.out(start))
-	for i := len(line.points) - 1; i >= 0; i-- {
-		to.Streamline = append(to.Streamline, c.frame.out(line.points[i]))
+	for i, p := range slices.Backward(line.points) {
+		if i == 0 || step(p, line.points[i-1]).length() > c.near {
+			to.Streamline = append(to.Streamline, c.frame.out(p))
+		}
 	}
 	return lip.mass
 }
