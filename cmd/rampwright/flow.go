@@ -92,7 +92,7 @@ func (a *app) flow(study *study, of string, strict bool, picture picture, waves 
 	if err != nil {
 		return err
 	}
-	if err := waves.check(); err != nil {
+	if err := waves.check(picture.file); err != nil {
 		return err
 	}
 	flow, err := study.problem.Flow(context.Background(), x)

@@ -21,13 +21,16 @@ import (
 // none.
 type wavesFolder string
 
-// check refuses a folder that cannot be made.
-func (w wavesFolder) check() error {
+// check refuses a folder that cannot be made, or would lie where the drawing goes.
+func (w wavesFolder) check(drawing string) error {
 	if w == "" {
 		return nil
 	}
 	dir := filepath.Clean(string(w))
 	for _, name := range []string{dir, partOf(dir)} {
+		if drawing != "" && filepath.Clean(drawing) == name {
+			return &usageError{"--svg and --waves both write " + name, "choose another name for one"}
+		}
 		if _, err := os.Lstat(name); err == nil {
 			return &usageError{name + " exists and is not overwritten", "choose another name, or remove it first"}
 		} else if !errors.Is(err, fs.ErrNotExist) {
