@@ -41,6 +41,10 @@ var reasons = map[Reason]string{
 	Evacuated: "expansion to vacuum", FrontBudget: "more waves than are traced", EventBudget: "more wave crossings than are traced",
 }
 
+// Spent reports whether the trace, not the flow, came to its end: a budget of the
+// settings was used up.
+func (r Reason) Spent() bool { return r == FrontBudget || r == EventBudget }
+
 // String returns the phrase of a status line.
 func (r Reason) String() string { return reasons[r] }
 
@@ -63,7 +67,7 @@ func (e *Ending) Error() string {
 	if e.BehindLip < 0 {
 		where = "ahead of"
 	}
-	if e.Reason == FrontBudget || e.Reason == EventBudget { // no wall or crossing is to blame
+	if e.Reason.Spent() { // no wall or crossing is to blame
 		return fmt.Sprintf("%v, up to x %.5g m, y %.5g m, %.3g capture heights %s the lip, Mach %.4g",
 			e.Reason, e.Place.X, e.Place.Y, math.Abs(e.BehindLip), where, e.State.Mach)
 	}

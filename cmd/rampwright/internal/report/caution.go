@@ -222,8 +222,10 @@ func (in *inspection) tracedThroat(p *inlet.PointFlow) string {
 	switch t := p.Trace; {
 	case t == nil:
 		return ""
+	case t.Ending != nil && t.Ending.Reason.Spent():
+		return fmt.Sprintf(" Traced, %s: %s.", unreached(true), t.Ending.Reason)
 	case t.Ending != nil:
-		return fmt.Sprintf(" Traced, no regular supersonic flow reaches the throat plane: %s at %s.", t.Ending.Reason, t.Ending.Site)
+		return fmt.Sprintf(" Traced, %s: %s at %s.", unreached(false), t.Ending.Reason, t.Ending.Site)
 	default:
 		throat := in.value("throat_mach", p)
 		if mach := in.value(terminalMachQuantity, p); finite(mach) {

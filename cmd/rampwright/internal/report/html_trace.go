@@ -18,22 +18,22 @@ func (s *chapter) traces(file string, points []Point) {
 		}
 		at := func(key ...any) []any { return append([]any{"points", i, "trace"}, key...) }
 		name := quoted(p.Name, file, "points", i, "name")
-		use := "comparison with the chain"
-		if p.Traced {
-			use = "every quantity of the stream"
-		}
 		t.Rows = append(t.Rows, []cell{
-			name, words("%s", use),
+			name, words("%s", p.traceUse()),
 			number(p.Trace.Throat.Mach, file, at("throat", "mach")...), number(p.Trace.Throat.PressureRatio, file, at("throat", "pressure_ratio")...),
 			number(p.Trace.Throat.ShockRecovery, file, at("throat", "shock_recovery")...), number(p.Trace.Throat.Distortion, file, at("throat", "distortion")...),
 			number(p.Trace.Capture, file, at("capture")...),
 			number(p.Trace.Error.Mach, file, at("error", "mach")...),
 		})
 		if e := p.Trace.Ending; e != nil {
-			notes = append(notes, []cell{
-				name, words(" ends ahead of the throat: "), quoted(e.Reason, file, at("ending", "reason")...), words(" at "), quoted(e.Site, file, at("ending", "site")...),
-				words(", x "), number(e.PlaceM[0], file, at("ending", "place_m", 0)...), words(" m, y "), number(e.PlaceM[1], file, at("ending", "place_m", 1)...), words(" m."),
-			})
+			note := []cell{words("The trace of "), name, words(" ends ahead of the throat: "), quoted(e.Reason, file, at("ending", "reason")...)}
+			if e.spent() {
+				note = append(note, words(", up to x "))
+			} else {
+				note = append(note, words(" at "), quoted(e.Site, file, at("ending", "site")...), words(", x "))
+			}
+			notes = append(notes, append(note,
+				number(e.PlaceM[0], file, at("ending", "place_m", 0)...), words(" m, y "), number(e.PlaceM[1], file, at("ending", "place_m", 1)...), words(" m.")))
 		}
 		for k, shock := range p.Trace.LipShocks {
 			if shock.Inside {
@@ -51,6 +51,17 @@ func (s *chapter) traces(file string, points []Point) {
 	}
 	s.balances(file, points)
 	s.walls(file, points)
+}
+
+// traceUse says what the trace of a point is for.
+func (p *Point) traceUse() string {
+	switch {
+	case p.Traced:
+		return "every quantity of the stream"
+	case p.Status == attachedStatus:
+		return "comparison with the chain"
+	}
+	return "no quantity: the status of the chain stands"
 }
 
 // balances tables what the stream tubes of the traced points leave open, and capture

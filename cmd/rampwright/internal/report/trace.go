@@ -132,7 +132,11 @@ func (t *Trace) reasons(from *wave.Trace) Object[string] {
 	add("capture_by_streamline", !finite(float64(t.CaptureByStreamline)), ended)
 	add("spillage_drag", !finite(float64(t.Spillage)), ended)
 	add("spillage_drag_by_momentum", !finite(float64(t.SpillageByMomentum)), ended)
-	add("lip_shock_miss", !finite(float64(t.LipShockMiss)), "no lip shock reaches the body")
+	noShock := "no lip shock reaches the body"
+	if t.Ending != nil {
+		noShock = ended
+	}
+	add("lip_shock_miss", !finite(float64(t.LipShockMiss)), noShock)
 	add("throat", from.Stations[0].Err != nil, ended)
 	add("closure", from.Stations[0].Err != nil, ended)
 	add("spilled_closure", !finite(float64(t.SpilledClosure.Mass)), "the flow over the cowl was not followed to its end")
@@ -151,13 +155,11 @@ func (t *Trace) text(point *Point) string {
 	settings := fmt.Sprintf("expansion wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
 	chain := !point.Traced && point.Status == attachedStatus // it has an answer of its own
 	if t.Ending != nil {
-		where := fmt.Sprintf("%s at %s, x %s m, y %s m, Mach %s", t.Ending.Reason, t.Ending.Site,
-			significant(float64(t.Ending.PlaceM[0])), significant(float64(t.Ending.PlaceM[1])), significant(float64(t.Ending.Mach)))
 		if !chain {
-			return fmt.Sprintf("traced (%s). The trace ends ahead of the throat: %s.", settings, where)
+			return fmt.Sprintf("traced (%s). The trace ends ahead of the throat: %s.", settings, t.Ending.text())
 		}
-		return fmt.Sprintf("%s. Traced on (%s), no regular supersonic flow reaches the throat plane: %s. The throat state of the table leaves that out.",
-			t.missText(), settings, where)
+		return fmt.Sprintf("%s. Traced on (%s), %s: %s. The throat state of the table leaves that out.",
+			t.missText(), settings, unreached(t.Ending.spent()), t.Ending.text())
 	}
 	average := fmt.Sprintf("Mach %s, static pressure ratio %s, total pressure ratio %s", significant(float64(t.Throat.Mach)),
 		significant(float64(t.Throat.PressureRatio)), significant(float64(t.Throat.ShockRecovery)))
@@ -172,10 +174,36 @@ func (t *Trace) text(point *Point) string {
 		t.missText(), settings, average)
 }
 
+// text says why and where a trace ends; no wall or crossing is to blame for a budget.
+func (e *Ending) text() string {
+	at := e.Reason + " at " + e.Site + ", x"
+	if e.spent() {
+		at = e.Reason + ", up to x"
+	}
+	return fmt.Sprintf("%s %s m, y %s m, Mach %s", at,
+		significant(float64(e.PlaceM[0])), significant(float64(e.PlaceM[1])), significant(float64(e.Mach)))
+}
+
+// spent reports whether a budget ended the trace, not the flow.
+func (e *Ending) spent() bool {
+	return e.Reason == wave.FrontBudget.String() || e.Reason == wave.EventBudget.String()
+}
+
+// unreached says that a trace ends ahead of the throat plane; of the flow itself only
+// where no budget ended it.
+func unreached(spent bool) string {
+	if spent {
+		return "the trace does not reach the throat plane"
+	}
+	return "no regular supersonic flow reaches the throat plane"
+}
+
 // missText says where the lip shock of a chain of straight shocks goes.
 func (t *Trace) missText() string {
 	miss := float64(t.LipShockMiss)
 	switch {
+	case !finite(miss) && t.Ending != nil:
+		return "the lip shock is not followed to the body"
 	case !finite(miss):
 		return "no lip shock reaches the body"
 	case math.Abs(miss) < noise:
