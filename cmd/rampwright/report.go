@@ -27,8 +27,9 @@ func (a *app) reportCommand() *cobra.Command {
 script, nothing fetched. It is made of the files in the result folder, the same
 page as "design" puts there; by default it takes that page's place.
 
-Further studies of the same brief become sections: ` + strings.Join(report.StudyNames(), ", ") + `, where
-DIR or a folder given by --with holds NAME.json, with its pictures beside it.`,
+Further studies of the same brief become sections where DIR or a folder given by
+--with holds NAME.json, with its pictures beside it. NAME is one of
+` + strings.Join(report.StudyNames(), ", ") + `.`,
 		RunE: func(cmd *cobra.Command, args []string) error {
 			if file == "" {
 				file = filepath.Join(args[0], pageName)

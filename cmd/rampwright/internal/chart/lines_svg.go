@@ -15,9 +15,9 @@ import (
 //
 // The root states the mapping of the axes, data-x and data-y, each as "low high
 // from to": a value, or its decimal logarithm where data-y-log is true, lies at from +
-// (value - low)/(high - low) (to - from). Each line is a polyline with data-name, one for each stretch between gaps, each level a path with data-name; every
-// name, note and tick is a group with data-name and data-box (left, top, width,
-// height).
+// (value - low)/(high - low) (to - from). Each line is a polyline with data-name, one
+// for each stretch between gaps, each level a path with data-name; every name, note
+// and tick is a group with data-name and data-box (left, top, width, height).
 func WriteLineChart(w io.Writer, chart LineChart) error {
 	if err := chart.Validate(); err != nil {
 		return err

@@ -14,7 +14,7 @@ type Front struct {
 	Family       string // "up" or "down", as it runs downstream; empty for a slip line
 	Source       string // where it started; empty for a crossing or a corner of the cowl
 	Stream       string // "captured" or "outside"
-	Merged       bool   // carries the jump of fronts too weak to follow
+	Merged       bool   // carries the jump of fronts too weak to follow, at the angle that closes mass
 	From, To     [2]float64
 	Angle        float64 // of the front to the x axis, deg
 	WaveAngle    float64 // of the front to the flow ahead of it, deg
@@ -34,9 +34,9 @@ type Side struct {
 
 // WriteFronts writes fronts.csv: one row a front in the order given. Above is to the
 // left of the way from its first to its last place, below to the right; the flow ahead
-// of a front that runs up is above it, of one that runs down below. Decimals are the shortest that read
-// back exactly. It returns *Incomplete for a front of no flight point or kind and
-// *NotFinite for a number that is none; then nothing is written.
+// of a front that runs up is above it, of one that runs down below. Decimals are the
+// shortest that read back exactly. It returns *Incomplete for a front of no flight
+// point or kind and *NotFinite for a number that is none; then nothing is written.
 func WriteFronts(w io.Writer, fronts []Front) error {
 	t := newTable("fronts", slices.Concat(
 		[]string{"point", "kind", "family", "source", "stream", "merged", "region_below", "region_above",
