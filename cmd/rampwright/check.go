@@ -75,7 +75,7 @@ func (s *study) checked(refused brief.Problems) report.CheckedBrief {
 // shocks or from a trace.
 func throatBecause(b *brief.Brief, c brief.Condition) string {
 	d := &b.Definition
-	onLip := d.ShockOnLip == inlet.Fixed(c.Mach) && d.LipSetback == inlet.Fixed(0) && c.IncidenceDeg == b.Flight[0].IncidenceDeg
+	state, onLip := "the state just behind the straight lip shock", d.ShockOnLip == inlet.Fixed(c.Mach) && d.LipSetback == inlet.Fixed(0) && c.IncidenceDeg == b.Flight[0].IncidenceDeg
 	switch {
 	case d.Outline != nil:
 		return "the inlet is given by its outline"
@@ -84,7 +84,10 @@ func throatBecause(b *brief.Brief, c brief.Condition) string {
 	case onLip:
 		return "exact at shock-on-lip"
 	}
-	return "the state just behind the straight lip shock; traced all the same where ramp shocks cross ahead of the lip or fall inside it"
+	if d.LipTurning != nil && *d.LipTurning == inlet.Fixed(0) {
+		state = "the state behind the last ramp, as an aligned cowl has no lip shock"
+	}
+	return state + "; traced all the same where ramp shocks cross ahead of the lip or fall inside it"
 }
 
 // aimText is the aim as a phrase.

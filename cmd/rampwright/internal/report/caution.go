@@ -152,9 +152,12 @@ func traced(in *inspection, p *inlet.PointFlow) (float64, string, string) {
 		return math.MaxFloat64, fmt.Sprintf("The flow at %s is traced wave by wave (%s), with no error bound, because a coarser trace does not reach the throat.",
 			p.Point.Name, settings), "no bound"
 	}
-	percent := plain(roundUp(100 * share))
-	return 1 + share, fmt.Sprintf("The flow at %s is traced wave by wave (%s) and averaged over the throat plane: throat averages within %s %%, capture %s. Shocks that reflect in the duct separate boundary layers, which no trace sees.",
-		p.Point.Name, settings, percent, exactOrWithin(float64(t.Error.Capture))), "within " + percent + " %"
+	within := "exact"
+	if share >= noise {
+		within = fmt.Sprintf("within %s %%", plain(roundUp(100*share)))
+	}
+	return 1 + share, fmt.Sprintf("The flow at %s is traced wave by wave (%s) and averaged over the throat plane: throat averages %s, capture %s. Shocks that reflect in the duct separate boundary layers, which no trace sees.",
+		p.Point.Name, settings, within, exactOrWithin(float64(t.Error.Capture))), within
 }
 
 func exactOrWithin(bound float64) string {
@@ -213,25 +216,30 @@ func lipShockMiss(in *inspection, p *inlet.PointFlow) (float64, string, string) 
 	if p.Traced { // the throat is an average behind the reflections
 		return 0, "", ""
 	}
-	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.%s Write throat: traced at this flight point to take its throat, and what the limits hold there, from the trace.",
+	return miss, fmt.Sprintf("The lip shock at %s misses the shoulder by %.3g capture heights (caution above %g): it reflects in the duct, and the throat state shown leaves that out.%s",
 		p.Point.Name, miss, largestMiss, in.tracedThroat(p)), fmt.Sprintf("%.3g", miss)
 }
 
-// tracedThroat is the sentence on the throat of a trace beside the chain.
+// tracedThroat is what is to be said of the throat of a trace beside the chain, and
+// what asking for that trace would do.
 func (in *inspection) tracedThroat(p *inlet.PointFlow) string {
+	const (
+		take = " Write throat: traced at this flight point to take its throat, and what the limits hold there, from the trace."
+		keep = " Write throat: traced at this flight point for a search to keep to designs whose trace reaches the throat."
+	)
 	switch t := p.Trace; {
 	case t == nil:
-		return ""
+		return take
 	case t.Ending != nil && t.Ending.Reason.Spent():
-		return fmt.Sprintf(" Traced, %s: %s.", unreached(true), t.Ending.Reason)
+		return fmt.Sprintf(" Traced, %s: %s.", unreached(true), t.Ending.Reason) + keep
 	case t.Ending != nil:
-		return fmt.Sprintf(" Traced, %s: %s at %s.", unreached(false), t.Ending.Reason, t.Ending.Site)
+		return fmt.Sprintf(" Traced, %s: %s at %s.", unreached(false), t.Ending.Reason, t.Ending.Site) + keep
 	default:
 		throat := in.value("throat_mach", p)
 		if mach := in.value(terminalMachQuantity, p); finite(mach) {
 			throat = mach
 		}
-		return fmt.Sprintf(" Traced, its average Mach number is %s in place of %s.", significant(t.Stations[0].Mach), significant(throat))
+		return fmt.Sprintf(" Traced, its average Mach number is %s in place of %s.", significant(t.Stations[0].Mach), significant(throat)) + take
 	}
 }
 

@@ -170,8 +170,12 @@ func (t *Trace) text(point *Point) string {
 		return fmt.Sprintf("traced (%s). Throat averages: %s; best and worst stream tube differ by %s of the recovery.",
 			settings, average, significant(float64(t.Throat.Distortion)))
 	}
-	return fmt.Sprintf("%s. Traced on (%s), the throat averages are %s; the throat state of the table is that just behind the lip shock.",
-		t.missText(), settings, average)
+	state := "just behind the lip shock"
+	if !finite(float64(t.LipShockMiss)) { // an aligned cowl
+		state = "behind the last ramp"
+	}
+	return fmt.Sprintf("%s. Traced on (%s), the throat averages are %s; the throat state of the table is that %s.",
+		t.missText(), settings, average, state)
 }
 
 // text says why and where a trace ends; no wall or crossing is to blame for a budget.

@@ -26,7 +26,10 @@ func TestSpentTraceBlamesNothing(t *testing.T) {
 		slow.Trace = &trace
 		text := strings.Join(strings.Fields(NewFlow(head, problem, flow).Text(100)), " ")
 		_, cautions, _ := strings.Cut(text, "The lip shock at slow misses the shoulder")
-		cautions, _, _ = strings.Cut(cautions, "Write throat: traced")
+		cautions, advice, _ := strings.Cut(cautions, "Write throat: traced at this flight point ")
+		if !strings.HasPrefix(advice, "for a search to keep to designs whose trace reaches the throat.") {
+			t.Errorf("%v: a throat that is not reached is to be taken from the trace: %q", c.reason, advice)
+		}
 		_, waves, _ := strings.Cut(text, "slow: the lip shock strikes the body")
 		waves, _, _ = strings.Cut(waves, "leaves that out.")
 		if cautions == "" || waves == "" {
