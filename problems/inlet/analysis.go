@@ -57,12 +57,12 @@ type analysis struct {
 	cowlDrag   float64
 	cowlErr    error
 
-	trace *wave.Trace // what stands above was read off it; nil where the chain holds
+	trace *wave.Trace // what stands above was read off it; nil where the chain tells the flow
 	view  view
 }
 
-// fly is run, and a trace by the settings given where the chain of straight
-// shocks has no answer.
+// fly is run, and a trace by the settings given where the chain of straight shocks
+// has no answer or the point asks for the trace.
 func (a *analysis) fly(settings wave.Settings) {
 	a.run()
 	if a.beyondChain() {

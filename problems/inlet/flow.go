@@ -103,8 +103,9 @@ type Flow struct {
 }
 
 // Flow computes the frozen inlet at x with its stations and drawing lines. Points
-// beyond the chain are traced with the settings of verification; so is a point
-// whose lip shock misses the shoulder, for comparison only.
+// beyond the chain and those that ask for it are traced with the settings of
+// verification; so is a point whose lip shock misses the shoulder, for comparison
+// only.
 func (p *Problem) Flow(ctx context.Context, x []float64) (*Flow, error) {
 	return p.FlowBy(ctx, x, VerifyTrace())
 }

@@ -23,7 +23,7 @@ type route interface {
 	// balances reports whether capture and spillage of a trace are read from its
 	// mass and momentum balance rather than from its lip streamline.
 	balances() bool
-	// traces are the settings of a trace where the chain does not hold.
+	// traces are the settings of a trace where the chain does not tell the flow.
 	traces() wave.Settings
 }
 

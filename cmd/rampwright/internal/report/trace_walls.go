@@ -141,10 +141,7 @@ func newForce(x, y, reference float64) Force {
 	return Force{Number(x), Number(y), Number(x * reference), Number(y * reference)}
 }
 
-func (w *TraceWall) length() Number { return Number(contour.Distance(w.from(), w.to())) }
-
-func (w *TraceWall) from() contour.Point { return point(w.FromM) }
-func (w *TraceWall) to() contour.Point   { return point(w.ToM) }
+func (w *TraceWall) length() Number { return Number(contour.Distance(point(w.FromM), point(w.ToM))) }
 
 func point(p [2]Number) contour.Point { return contour.Point{X: float64(p[0]), Y: float64(p[1])} }
 
