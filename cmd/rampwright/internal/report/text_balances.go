@@ -9,7 +9,7 @@ import (
 // capture and spillage drag by two routes differ.
 func (p *page) balances(points []Point) {
 	t := &table{columns: []column{
-		{head: "flight\npoint"}, {head: "captured\nmass", drop: 1}, {head: "\nmomentum"}, {head: "\nenergy"}, {head: "spilled\nmass"}, {head: "\nmomentum"}, {head: "\nenergy"}, {head: "capture\nroutes"}, {head: "spillage\nroutes"},
+		{head: "flight\npoint"}, {head: "captured\nmass"}, {head: "\nmomentum"}, {head: "\nenergy", drop: 2}, {head: "spilled\nmass"}, {head: "\nmomentum"}, {head: "\nenergy", drop: 1}, {head: "capture\nroutes"}, {head: "spillage\nroutes"},
 	}}
 	shown := false
 	for i := range points {

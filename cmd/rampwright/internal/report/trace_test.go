@@ -153,6 +153,12 @@ func TestBalancesOfATrace(t *testing.T) {
 		t.Fatal(err)
 	}
 	text := document.Text(100)
+	_, narrow, _ := strings.Cut(document.Text(80), "differ from the balances of mass and momentum.\n")
+	for _, want := range []string{" captured ", " spilled ", " mass  momentum ", " capture ", " spillage\n"} { // what is left is still told apart
+		if narrow, _, _ := strings.Cut(narrow, "  over "); !strings.Contains(narrow, want) {
+			t.Errorf("a narrow page lacks the head %q:\n%s", want, narrow)
+		}
+	}
 	seen := 0
 	for _, p := range read.Points {
 		trace := p.Trace
