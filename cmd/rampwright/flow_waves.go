@@ -174,7 +174,7 @@ func handedSide(t *wave.Trace, region int) handoff.Side {
 	}
 }
 
-// frontSource names where a front started; a reflected one has the name of the shock
+// frontSource names what a front stems from; a reflected one has the name of the shock
 // that came in.
 func frontSource(f *wave.Front, ramps int) string {
 	switch {

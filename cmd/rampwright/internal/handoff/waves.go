@@ -12,7 +12,7 @@ type Front struct {
 	Point        string // flight point
 	Kind         string // "shock", "expansion" or "slip line"
 	Family       string // "up" or "down", as it runs downstream; empty for a slip line
-	Source       string // where it started; empty for a crossing or a corner of the cowl
+	Source       string // what it stems from, also by reflection; empty for a crossing or a corner of the cowl
 	Stream       string // "captured" or "outside"
 	Merged       bool   // carries the jump of fronts too weak to follow, at the angle that closes mass
 	From, To     [2]float64
