@@ -74,7 +74,7 @@ func (s *chapter) balances(file string, points []Point) {
 	}
 	for i := range points {
 		trace := points[i].Trace
-		if trace == nil || !finite(float64(trace.Capture)) {
+		if trace == nil || trace.Walls == nil || !finite(float64(trace.Capture)) { // an older document has no balances, as it has no walls
 			continue
 		}
 		at := func(key ...any) []any { return append([]any{"points", i, "trace"}, key...) }
