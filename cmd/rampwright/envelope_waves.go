@@ -33,7 +33,10 @@ func sheetOf(view chart.SideView) ([]byte, error) {
 func wavesView(title string, at envelope.Condition, geometry wave.Geometry, trace *wave.Trace) chart.SideView {
 	end := wallEnd(geometry)
 	status := "attached"
-	if trace.Ending != nil {
+	switch {
+	case trace.Ending != nil && trace.Stations[0].Err == nil:
+		status = "attached as far as the throat plane; behind it " + trace.Ending.Error()
+	case trace.Ending != nil:
 		status = trace.Ending.Error()
 	}
 	view := chart.SideView{

@@ -34,6 +34,9 @@ func sideView(title, caution string, flow *inlet.Flow, at *inlet.PointFlow) ([]b
 	if at.Traced {
 		view.Subtitle = append(view.Subtitle, "traced wave by wave; waves of pressure ratios within 2 % of 1 are left out")
 	}
+	if at.Behind != nil {
+		view.Subtitle = append(view.Subtitle, "ends behind the throat plane: "+at.Behind.Error())
+	}
 	for _, p := range at.Streamline {
 		view.LipStreamline = append(view.LipStreamline, vertex("", p))
 	}

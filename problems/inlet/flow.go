@@ -47,6 +47,10 @@ type PointFlow struct {
 	// Trace is every wave through the contour: of a traced point, and in Flow beside
 	// the chain where its lip shock misses the shoulder; else nil.
 	Trace *wave.Trace
+	// Behind is why the captured stream does not go on down the duct behind the throat
+	// plane of a point with a trace; nil where it does as far as drawings reach, and
+	// behind a terminal shock.
+	Behind *wave.Ending
 	// Quantities and Evaluation hold the catalogue at this point, in one order.
 	Quantities []problems.Quantity
 	Evaluation *problems.Evaluation
@@ -130,10 +134,8 @@ func (p *Problem) FlowBy(ctx context.Context, x []float64, settings wave.Setting
 		if a.trace == nil && a.missesShoulder() {
 			point.Trace, _ = a.tracing(settings) // without one nothing is compared
 		}
-		if point.Traced {
-			if t := a.downTheDuct(); t != nil {
-				point.Shocks = a.tracedSegments(t)
-			}
+		if point.Trace != nil {
+			a.goOn(point)
 		}
 		flow.Points = append(flow.Points, *point)
 	}

@@ -92,6 +92,21 @@ func rise(t *wave.Trace, f wave.Front) float64 {
 // throat heights.
 const drawnDuct = 4
 
+// goOn follows the stream of a point with a trace down the duct: where it ends there,
+// and for the drawing of a traced point its waves.
+func (a *analysis) goOn(point *PointFlow) {
+	t := a.downTheDuct()
+	if t == nil {
+		return
+	}
+	if point.Traced {
+		point.Shocks = a.tracedSegments(t)
+	}
+	if t.Ending != nil && !t.Ending.Reason.Spent() && !a.def.TerminalShock {
+		point.Behind = t.Ending
+	}
+}
+
 // downTheDuct traces the point once more to the end of what is drawn, in default
 // wavelets; nil where that tells less than the trace of the quantities.
 func (a *analysis) downTheDuct() *wave.Trace {

@@ -59,6 +59,7 @@ type rule struct {
 var flowRules = []rule{
 	{"terminal_mach", terminalMach},
 	{"not_attached", notAttached},
+	{"ends_behind_throat", endsBehindThroat},
 	{"traced", traced},
 	{"contraction_beyond_isentropic", beyondIsentropic},
 	{"contraction_above_self_start", aboveSelfStart},
@@ -137,6 +138,17 @@ func notAttached(in *inspection, p *inlet.PointFlow) (float64, string, string) {
 		what = p.Trace.Ending.Error()
 	}
 	return 1, fmt.Sprintf("The stream is not attached at %s (Mach %.3g): %s. What lies behind is not known.", p.Point.Name, p.Point.Mach, what), p.Status()
+}
+
+// endsBehindThroat tells of the stream that ends nearest behind the throat plane.
+func endsBehindThroat(in *inspection, p *inlet.PointFlow) (float64, string, string) {
+	e := p.Behind
+	if e == nil || p.Err != nil {
+		return 0, "", ""
+	}
+	behind := (e.Place.X - p.Trace.Stations[0].X) / in.flow.Contour.Lip.Y
+	return 1 / (1 + math.Max(behind, 0)), fmt.Sprintf("Behind the throat plane at %s no regular supersonic flow goes on: %s at %s, %.2g capture heights behind the plane, Mach %.4g, turning %.3g deg. The shocks of a real duct will stand elsewhere, perhaps ahead of the throat; the state shown holds only if they do not.",
+		p.Point.Name, e.Reason, e.Site, behind, e.State.Mach, degrees(e.Turning)), fmt.Sprintf("%.2g capture heights (%s)", behind, e.Reason)
 }
 
 // traced says what the numbers of a traced point rest on, at the point of the

@@ -35,6 +35,14 @@ func (s *chapter) traces(file string, points []Point) {
 			notes = append(notes, append(note,
 				number(e.PlaceM[0], file, at("ending", "place_m", 0)...), words(" m, y "), number(e.PlaceM[1], file, at("ending", "place_m", 1)...), words(" m.")))
 		}
+		if e := p.Trace.BehindThroat; e != nil {
+			notes = append(notes, []cell{
+				words("Behind the throat plane at "), name, words(" no regular supersonic flow goes on: "), quoted(e.Reason, file, at("behind_throat", "reason")...),
+				words(" at "), quoted(e.Site, file, at("behind_throat", "site")...),
+				words(", x "), number(e.PlaceM[0], file, at("behind_throat", "place_m", 0)...), words(" m, y "), number(e.PlaceM[1], file, at("behind_throat", "place_m", 1)...),
+				words(" m, Mach "), number(e.Mach, file, at("behind_throat", "mach")...), words(", turning "), number(e.TurningDeg, file, at("behind_throat", "turning_deg")...), words(" deg."),
+			})
+		}
 		for k, shock := range p.Trace.LipShocks {
 			if shock.Inside {
 				notes = append(notes, []cell{

@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"rampwright/problems"
@@ -41,8 +42,12 @@ func (d *FlowDocument) answer() string {
 	if len(d.Points) > 1 {
 		where = fmt.Sprintf("at all %d points; at %s", len(d.Points), first)
 	}
+	far := ""
+	if slices.ContainsFunc(d.Points, func(p Point) bool { return p.Trace != nil && p.Trace.BehindThroat != nil }) {
+		far = "as far as the throat plane "
+	}
 	read := func(name string) string { return significant(find(d.readings, name, first).value) }
-	return fmt.Sprintf("The stream is attached %s the recovery is %s, the capture %s and the throat Mach number %s.",
+	return fmt.Sprintf("The stream is attached "+far+"%s the recovery is %s, the capture %s and the throat Mach number %s.",
 		where, read("recovery"), read("capture"), read("throat_mach"))
 }
 

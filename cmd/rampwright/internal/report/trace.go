@@ -17,6 +17,9 @@ type Trace struct {
 	Events     int    `json:"events"`
 	// Ending is why the captured stream was not followed to the throat plane.
 	Ending *Ending `json:"ending,omitempty"`
+	// BehindThroat is why the stream does not go on down the duct behind the throat
+	// plane, which the averages know nothing of.
+	BehindThroat *Ending `json:"behind_throat,omitempty"`
 	// Capture is by the mass under the lip and by following the lip streamline, the
 	// spillage drag by the pressures along that streamline and by momentum.
 	Capture             Number     `json:"capture"`
@@ -97,9 +100,7 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 		Closure: Closure{none, none, none},
 		Error:   TraceError{Number(t.Error.Capture), Number(t.Error.Spillage), none, none, none},
 	}
-	if e := t.Ending; e != nil {
-		trace.Ending = &Ending{e.Reason.String(), e.Site, pair(e.Place), Number(e.State.Mach), Number(degrees(e.Turning))}
-	}
+	trace.Ending, trace.BehindThroat = newEnding(t.Ending), newEnding(flow.Behind)
 	if s := &t.Stations[0]; s.Err == nil {
 		trace.Throat = Throat{
 			Number(s.X), Number(s.Height), Number(s.Recovery), Number(s.Mach), Number(s.Pressure), Number(s.Temperature),
@@ -113,6 +114,13 @@ func newTrace(flow *inlet.PointFlow) *Trace {
 	}
 	trace.Missing = trace.reasons(t)
 	return trace
+}
+
+func newEnding(e *wave.Ending) *Ending {
+	if e == nil {
+		return nil
+	}
+	return &Ending{e.Reason.String(), e.Site, pair(e.Place), Number(e.State.Mach), Number(degrees(e.Turning))}
 }
 
 func newClosure(c wave.Closure) Closure {
@@ -150,8 +158,16 @@ func (t *Trace) reasons(from *wave.Trace) Object[string] {
 	return list
 }
 
-// text tells the trace of a point in a sentence or two.
+// text tells the trace of a point in a few sentences.
 func (t *Trace) text(point *Point) string {
+	text := t.averagesText(point)
+	if t.BehindThroat != nil {
+		text += " Behind the throat plane no regular supersonic flow goes on: " + t.BehindThroat.text() + fmt.Sprintf(", turning %s deg.", significant(float64(t.BehindThroat.TurningDeg)))
+	}
+	return text
+}
+
+func (t *Trace) averagesText(point *Point) string {
 	settings := fmt.Sprintf("expansion wavelets of %s deg, threshold %s", plain(float64(t.WaveletDeg)), shortExponent(fmt.Sprintf("%.2g", t.Threshold)))
 	chain := !point.Traced && point.Status == attachedStatus // it has an answer of its own
 	if t.Ending != nil {

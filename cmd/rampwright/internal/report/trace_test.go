@@ -9,6 +9,7 @@ import (
 
 	"rampwright/problems/contour"
 	"rampwright/problems/inlet"
+	"rampwright/problems/wave"
 )
 
 // swallowed is the Mach 6 article set back, flown above shock-on-lip so that its
@@ -127,6 +128,27 @@ func TestOutlineInTheFlow(t *testing.T) {
 		if c.Rule == "shock_on_lip" {
 			t.Errorf("a caution on a setback that is not there: %s", c.Text)
 		}
+	}
+}
+
+// A stream that ends behind the throat plane raises a caution, is told wave by wave,
+// and leaves the averages as they are.
+func TestEndBehindTheThroatIsTold(t *testing.T) {
+	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
+	slow := &flow.Points[len(flow.Points)-1]
+	slow.Behind = nil
+	before := NewFlow(head, problem, flow)
+	slow.Behind = &wave.Ending{Reason: wave.MachReflection, Site: "cowl inside", Place: contour.Point{X: 0.7, Y: 0.17}, State: wave.State{Mach: 1.349}, Turning: 0.2}
+	after := NewFlow(head, problem, flow)
+	for _, words := range []string{"Behind the throat plane at slow no regular supersonic flow goes on", "goes on: Mach reflection at cowl inside, x 0.7"} {
+		text := strings.Join(strings.Fields(after.Text(100)), " ")
+		if !strings.Contains(text, words) || strings.Contains(strings.Join(strings.Fields(before.Text(100)), " "), words) {
+			t.Errorf("%q is not told there, or told elsewhere", words)
+		}
+	}
+	was, is := before.Points[len(flow.Points)-1], after.Points[len(flow.Points)-1]
+	if is.Trace.BehindThroat == nil || is.Trace.BehindThroat.Mach != 1.349 || was.Trace.BehindThroat != nil || is.Trace.Throat.Mach != was.Trace.Throat.Mach {
+		t.Errorf("behind the throat: %+v, then %+v", was.Trace.BehindThroat, is.Trace.BehindThroat)
 	}
 }
 
