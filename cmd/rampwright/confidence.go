@@ -98,7 +98,7 @@ func (b *backOff) describe(answer *robust.Backoff) *report.Confidence {
 	chosen := b.results[answer.Chosen]
 	out := &report.Confidence{
 		Confidence: report.Number(answer.Confidence), Aimed: report.Number(answer.Aimed), Met: answer.Met, Why: answer.Why,
-		Rounds: len(answer.Rounds), DrawsARound: answer.Draws, Draws: answer.Checked,
+		Rounds: len(answer.Rounds), Round: answer.Chosen, DrawsARound: answer.Draws, Draws: answer.Checked,
 		Nominal:   b.side(b.nominal, answer.NominalJoint),
 		BackedOff: b.side(chosen, answer.Joint), Limits: []report.ConfidentLimit{},
 	}

@@ -2,6 +2,7 @@ package report
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 )
 
@@ -10,9 +11,10 @@ import (
 type Confidence struct {
 	Confidence  Number           `json:"confidence"`
 	Met         bool             `json:"met"`
-	Why         string           `json:"why"`   // how the search ended
-	Aimed       Number           `json:"aimed"` // probability aimed at over the draws of a round
-	Rounds      int              `json:"rounds"`
+	Why         string           `json:"why"`    // how the search ended
+	Aimed       Number           `json:"aimed"`  // probability aimed at over the draws of a round
+	Rounds      int              `json:"rounds"` // designs drawn, the nominal one first
+	Round       int              `json:"round"`  // that found the backed-off design; 0 where that is the nominal one
 	DrawsARound int              `json:"draws_a_round"`
 	Draws       int              `json:"draws"`   // fresh ones, on which both designs are judged
 	Nominal     *ConfidentDesign `json:"nominal"` // null, as backed_off, where time ended the search: see why
@@ -62,6 +64,11 @@ func (c *Confidence) weakest() *ConfidentLimit {
 		}
 	}
 	return weakest
+}
+
+// unanswered reports whether some draw of a limit has no answer.
+func (c *Confidence) unanswered() bool {
+	return slices.ContainsFunc(c.Limits, func(l ConfidentLimit) bool { return l.Affected && l.Unanswered > 0 })
 }
 
 // confidenceCautions say where the confidence is not reached.

@@ -121,7 +121,7 @@ func (r *result) sheet() *sheet {
 	return &sheet{
 		Title: []cell{quoted(r.Title, "result", "title")}, Status: &status, Answer: r.answerCells(), Facts: r.facts(),
 		Sections: slices.Concat([]chapter{
-			r.cautionSection(), r.designSection(), r.conflictSection(), r.sideViewSection(), r.marginSection(), r.stationSection(),
+			r.cautionSection(), r.designSection(), r.confidenceSection(), r.conflictSection(), r.sideViewSection(), r.marginSection(), r.stationSection(),
 			r.traceSection(), r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(),
 		}, r.studySections(), []chapter{r.progressSection(), r.assumptionSection(), r.provenanceSection()}),
 	}

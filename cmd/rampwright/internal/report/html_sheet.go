@@ -56,6 +56,7 @@ type cell struct {
 	Text   string
 	From   string
 	Value  string
+	Share  bool          // a share, shown in per cent
 	Number bool          // it stands in a column of numbers
 	Bar    template.HTML // in place of text
 	Parts  []cell        // in place of text
@@ -71,6 +72,11 @@ func quoted(text, from string, path ...any) cell { return cell{Text: text, From:
 // number is a number taken from a document, with the digits of text.
 func number(v Number, from string, path ...any) cell {
 	return cell{Text: significant(float64(v)), From: place(from, path), Value: shortest(float64(v)), Number: true}
+}
+
+// shareCell is a share taken from a document, shown in per cent without the sign.
+func shareCell(v Number, from string, path ...any) cell {
+	return cell{Text: sharePercent(v), From: place(from, path), Value: shortest(float64(v)), Share: true, Number: true}
 }
 
 // countCell is a whole number taken from a document.

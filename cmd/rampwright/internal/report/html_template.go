@@ -159,7 +159,7 @@ var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"br
 {{end}}{{end}}</main>
 </body>
 </html>
-{{define "cell"}}{{if .Parts}}{{range .Parts}}{{template "cell" .}}{{end}}{{else if .Bar}}{{.Bar}}{{else if .Place}}<span class="place">{{.Text}}</span>{{else if .Value}}<data value="{{.Value}}" data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{broken .Text}}</span>{{else}}{{broken .Text}}{{end}}{{end}}`))
+{{define "cell"}}{{if .Parts}}{{range .Parts}}{{template "cell" .}}{{end}}{{else if .Bar}}{{.Bar}}{{else if .Place}}<span class="place">{{.Text}}</span>{{else if .Value}}<data value="{{.Value}}"{{if .Share}} class="percent"{{end}} data-from="{{.From}}">{{.Text}}</data>{{else if and .From .Text}}<span data-from="{{.From}}">{{broken .Text}}</span>{{else}}{{broken .Text}}{{end}}{{end}}`))
 
 // broken is text in which a line may end behind each underscore and slash of a
 // name.

@@ -114,6 +114,9 @@ func checkPage(t *testing.T, page []byte, documents map[string][]byte) (numbers 
 				if e.name == "data" {
 					numbers++
 				}
+				if e.at["class"] == "percent" {
+					e.text = shareOf(t, e.at["value"], e.text)
+				}
 				checkQuotation(t, sources, from, e.at["value"], e.text)
 			}
 		case xml.CharData:
@@ -165,6 +168,24 @@ func checkQuotation(t *testing.T, sources map[string]any, from, value, text stri
 	default:
 		t.Errorf("%s is no plain value", from)
 	}
+}
+
+// shareOf is what a per cent shown to a decimal stands for: the share itself where
+// the two agree, and where not all or nothing is shown as such.
+func shareOf(t *testing.T, value, text string) string {
+	t.Helper()
+	share, err := strconv.ParseFloat(value, 64)
+	shown, failed := strconv.ParseFloat(text, 64)
+	switch {
+	case err != nil:
+		return text
+	case text == "> 99.9" && share >= 0.9995 && share < 1, text == "< 0.1" && share > 0 && share < 0.0005:
+		return value
+	case failed == nil && math.Abs(shown-100*share) <= 0.0501 && (shown != 100 && shown != 0 || 100*share == shown):
+		return value
+	}
+	t.Errorf("a share of %s is shown as %q %%", value, text)
+	return text
 }
 
 func documents(f Folder) map[string][]byte {

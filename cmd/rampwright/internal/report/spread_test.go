@@ -178,6 +178,19 @@ func TestConfidenceOfADesign(t *testing.T) {
 	if !bytes.Contains(d.JSON(), []byte(`"backed_off": {`)) {
 		t.Error("the document has no backed-off design")
 	}
+	s.Confidence.Limits[0].Unanswered = 412
+	f := folderOf(t, s)
+	page := pageOf(t, f)
+	checkPage(t, page, documents(f))
+	for _, want := range []string{
+		`<section id="confidence">`, `class="percent" data-from="result:/confidence/backed_off/pass_probability/share">91.6</data>`, ">412</data>",
+		`data-from="result:/confidence/nominal/variables/ramp_1_angle_deg">8.0000</data>`, `data-from="result:/confidence/limits/0/high_margin">58.000</data>`,
+		"and in the backed-off design does", "not affected",
+	} {
+		if !bytes.Contains(page, []byte(want)) {
+			t.Errorf("the page lacks %q", want)
+		}
+	}
 	failed := *s.Confidence
 	failed.Met, failed.Why = false, "no design was found that holds the limits with the margins they need"
 	s.Confidence = &failed
