@@ -29,7 +29,14 @@ type backOff struct {
 func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Problem, settings optimize.Settings, finished *report.Study) (*study, error) {
 	confidence := of.brief.Tolerance.Confidence
 	result := finished.Result
-	if confidence == 0 || !result.Best.Assessment.Feasible || ctx.Err() != nil {
+	switch {
+	case confidence == 0:
+		return of, nil
+	case ctx.Err() != nil:
+		finished.Confidence = notBackedOff(confidence, cutOff)
+		return of, nil
+	case !result.Best.Assessment.Feasible:
+		finished.Confidence = notBackedOff(confidence, "the search found no design that holds the limits even without tolerances, so that none was backed off")
 		return of, nil
 	}
 	built, err := of.problem.Built(of.brief.Tolerance.Deviations())
@@ -45,10 +52,7 @@ func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Pro
 	answer, err := robust.BackOff(ctx, goal, robust.Settings{Seed: settings.Seed, Jobs: a.jobs}, b.search)
 	switch {
 	case ctx.Err() != nil:
-		finished.Confidence = &report.Confidence{
-			Confidence: report.Number(confidence), Aimed: report.Number(confidence), Limits: []report.ConfidentLimit{},
-			Why: "the search was ended before a design was backed off: the one shown knows no tolerances",
-		}
+		finished.Confidence = notBackedOff(confidence, cutOff)
 		finished.Result.Status = cutStatus(ctx)
 		return of, nil
 	case err != nil:
@@ -63,6 +67,15 @@ func (a *app) withConfidence(ctx context.Context, of *study, cached problems.Pro
 	return &searched, nil
 }
 
+const cutOff = "the search was ended before a design was backed off: the one shown knows no tolerances"
+
+// notBackedOff says why a confidence that was asked for bears on no design.
+func notBackedOff(confidence float64, why string) *report.Confidence {
+	return &report.Confidence{
+		Confidence: report.Number(confidence), Aimed: report.Number(confidence), Limits: []report.ConfidentLimit{}, Why: why,
+	}
+}
+
 // cutStatus is the status of a search whose context has ended.
 func cutStatus(ctx context.Context) optimize.Status {
 	if errors.Is(context.Cause(ctx), context.DeadlineExceeded) {
@@ -73,7 +86,7 @@ func cutStatus(ctx context.Context) optimize.Status {
 
 // search answers one round: a design of its own, from that of the round before.
 func (b *backOff) search(ctx context.Context, q robust.Question) (robust.Found, error) {
-	b.app.say("confidence, round %d: searching with the margins the draws ask for\n", len(b.results))
+	b.app.say("confidence, round %d: %s\n", len(b.results), searchWords(q))
 	problem, guard := q.Cut.Guard(b.problem)
 	task := optimize.Task{Problem: problem, Limits: append(guard, q.Limits...), Aim: b.study.brief.Aim, Starts: [][]float64{q.Near}}
 	progress := b.app.progress()
@@ -90,6 +103,24 @@ func (b *backOff) search(ctx context.Context, q robust.Question) (robust.Found, 
 		b.results = append(b.results, result)
 	}
 	return robust.Found{X: best.X, Feasible: best.Assessment.Feasible, Aim: best.AimExact}, nil
+}
+
+// searchWords tell the searches of a round apart.
+func searchWords(q robust.Question) string {
+	text := "searching with the margins the draws ask for"
+	switch {
+	case q.Halfway:
+		text = "nothing found, searching with the margins half way to those the draws ask for"
+	case q.Loosened > 0:
+		text = "nothing found, searching with the same margins"
+	}
+	switch q.Loosened {
+	case 0:
+		return text
+	case 1:
+		return text + ", more draws without an answer allowed"
+	}
+	return text + ", still more draws without an answer allowed"
 }
 
 // describe sets the nominal and the backed-off design side by side, with what each

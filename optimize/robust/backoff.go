@@ -18,6 +18,11 @@ type Question struct {
 	Limits []problems.Limit
 	Cut    *Cut // nil where draws have answers
 	Near   []float64
+	// Halfway and Loosened set the further searches of a round apart from its first,
+	// which found nothing: half the change of the shifts, and how many times the cut
+	// was loosened.
+	Halfway  bool
+	Loosened int
 }
 
 // Search answers a question. An answer that is not feasible holds the limits
@@ -157,7 +162,7 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 		}
 		if !next.Feasible && retreats < mostRetreats {
 			retreats++
-			ask.shifts = halfway(from.Shifts, ask.shifts)
+			ask.shifts, ask.halfway = halfway(from.Shifts, ask.shifts), true
 			if next, err = ask.answer(ctx, search, from.X); err != nil {
 				return nil, err
 			}
@@ -172,16 +177,23 @@ func BackOff(ctx context.Context, goal Goal, settings Settings, search Search) (
 
 // asked is what the draws of a round ask the next search for.
 type asked struct {
-	shifts []Shift
-	cut    *Cut
+	shifts   []Shift
+	cut      *Cut
+	halfway  bool // as in a Question
+	loosened int
+}
+
+func (a *asked) question(near []float64) Question {
+	return Question{Limits: applied(a.shifts), Cut: a.cut, Near: near, Halfway: a.halfway, Loosened: a.loosened}
 }
 
 // answer searches with what is asked, from the design of the round before.
 func (a *asked) answer(ctx context.Context, search Search, near []float64) (Round, error) {
-	found, err := search(ctx, Question{applied(a.shifts), a.cut, near})
+	found, err := search(ctx, a.question(near))
 	if err == nil && !found.Feasible && a.cut != nil { // slopes may have misled
 		a.cut = a.cut.looser()
-		found, err = search(ctx, Question{applied(a.shifts), a.cut, near})
+		a.loosened++
+		found, err = search(ctx, a.question(near))
 	}
 	return Round{Found: found, Shifts: a.shifts, Cut: a.cut}, err
 }

@@ -22,7 +22,10 @@ const (
 // first, how the search ended next, then flow, margins, limits and surrogates.
 func (s *Study) cautions() []Caution {
 	var list, flow []Caution
-	list = append(list, s.confidenceCautions()...)
+	confidence := s.confidenceCautions()
+	if s.Confidence.missed() {
+		list, confidence = append(list, confidence...), nil
+	}
 	if s.Problem != nil {
 		flow = append(exactCautions(s.Problem, s.Flow), s.noMargin()...)
 		flow = append(flow, s.liftedDefaults()...)
@@ -31,6 +34,7 @@ func (s *Study) cautions() []Caution {
 		list, flow = append(list, flow[0]), flow[1:]
 	}
 	list = append(list, s.endingCautions()...)
+	list = append(list, confidence...) // of a design that was not backed off
 	list = append(list, flow...)
 	list = append(list, s.boundCautions()...)
 	list = append(list, s.surrogateCautions()...)

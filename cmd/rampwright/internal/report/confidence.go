@@ -17,7 +17,7 @@ type Confidence struct {
 	Round       int              `json:"round"`  // that found the backed-off design; 0 where that is the nominal one
 	DrawsARound int              `json:"draws_a_round"`
 	Draws       int              `json:"draws"`   // fresh ones, on which both designs are judged
-	Nominal     *ConfidentDesign `json:"nominal"` // null, as backed_off, where time ended the search: see why
+	Nominal     *ConfidentDesign `json:"nominal"` // null, as backed_off, where none was backed off: see why
 	BackedOff   *ConfidentDesign `json:"backed_off"`
 	Limits      []ConfidentLimit `json:"limits"`
 }
@@ -71,15 +71,28 @@ func (c *Confidence) unanswered() bool {
 	return slices.ContainsFunc(c.Limits, func(l ConfidentLimit) bool { return l.Affected && l.Unanswered > 0 })
 }
 
+// missed reports whether a backed-off design does not reach the confidence.
+func (c *Confidence) missed() bool { return c != nil && !c.Met && c.BackedOff != nil }
+
+// percentText is the confidence asked for.
+func (c *Confidence) percentText() string { return fmt.Sprintf("%g %%", 100*float64(c.Confidence)) }
+
 // confidenceCautions say where the confidence is not reached.
 func (s *Study) confidenceCautions() []Caution {
 	c := s.Confidence
 	if c == nil || c.Met {
 		return nil
 	}
-	text := fmt.Sprintf("The confidence of %g %% asked for each limit is not reached: %s.", 100*float64(c.Confidence), c.Why)
+	if c.BackedOff == nil {
+		return []Caution{{"confidence", "", fmt.Sprintf("The confidence of %s asked for each limit does not bear on this design: %s.", c.percentText(), c.Why)}}
+	}
+	text := fmt.Sprintf("The confidence of %s asked for each limit is not reached: %s.", c.percentText(), c.Why)
 	if weakest := c.weakest(); weakest != nil {
-		text += fmt.Sprintf(" Over fresh draws %s holds in %s %%.", aimPhrase(weakest.Quantity, weakest.At), sharePercent(weakest.BackedOff.Share))
+		text += fmt.Sprintf(" Over fresh draws %s holds in %s %%", aimPhrase(weakest.Quantity, weakest.At), sharePercent(weakest.BackedOff.Share))
+		if holes := weakest.unansweredText(c.Draws); holes != "" {
+			text += fmt.Sprintf(", and has no value in %s %%", holes)
+		}
+		text += "."
 	}
 	return []Caution{{"confidence", "", text}}
 }
@@ -100,15 +113,29 @@ func (d *DesignDocument) confidence(p *page) {
 	d.bothDesigns(p)
 	d.marginCosts(p)
 	p.WriteByte('\n')
-	p.wrap(indent, fmt.Sprintf("Holds: per cent of %d fresh draws of the exact model, standard error %s at most. Margin: by how much the search kept inside, from %d draws a round in %s that aimed at %.4g %%. Cost: margin times price, in %s, to first order.",
-		c.Draws, percentError(c.largestError()), c.DrawsARound, rounds(c.Rounds), 100*float64(c.Aimed), d.aimUnit()), indent)
+	p.wrap(indent, fmt.Sprintf("Holds: per cent of %d fresh draws of the exact model, standard error %s at most. %s%s Cost: margin times price, in %s, to first order.",
+		c.Draws, percentError(c.largestError()), c.holesText(), c.marginWords(), d.aimUnit()), indent)
 }
 
-func rounds(n int) string {
-	if n == 1 {
-		return "1 round"
+// marginWords say whose the margins are, so that those of a confidence that is not
+// met are not read as those that would do.
+func (c *Confidence) marginWords() string {
+	if c.Round == 0 {
+		return "Margin: none, as the design shown is the nominal one."
 	}
-	return fmt.Sprintf("%d rounds", n)
+	text := fmt.Sprintf("Margin: by how much the search of the design shown, that of round %d, kept inside; from %d draws of each design before it, aimed at %.4g %%.", c.Round, c.DrawsARound, 100*float64(c.Aimed))
+	if !c.Met {
+		text += " What later rounds asked for is not shown, and these margins are not enough."
+	}
+	return text
+}
+
+// holesText says what draws without an answer are.
+func (c *Confidence) holesText() string {
+	if !c.unanswered() {
+		return ""
+	}
+	return "No answer: per cent of the draws of the backed-off design without a value of the quantity; they count as not held, and no margin of the limit mends them. "
 }
 
 func (c *Confidence) largestError() Number {
@@ -156,7 +183,11 @@ func (d *DesignDocument) bothDesigns(p *page) {
 
 // marginCosts writes how often each limit holds for both designs, and its margin.
 func (d *DesignDocument) marginCosts(p *page) {
-	t := &table{columns: []column{{head: "limit"}, {head: "bound", drop: 1}, {head: "nominal\nholds"}, {head: "backed\noff\nholds"}, {head: "margin"}, {head: "cost"}}}
+	t := &table{columns: []column{{head: "limit"}, {head: "bound", drop: 2}, {head: "nominal\nholds"}, {head: "backed\noff\nholds"}, {head: "margin"}, {head: "cost", drop: 1}}}
+	holes := d.Confidence.unanswered()
+	if holes {
+		t.columns = slices.Insert(t.columns, 4, column{head: "no\nanswer"})
+	}
 	for _, point := range d.study.points() {
 		first := true
 		for i := range d.Confidence.Limits {
@@ -168,7 +199,11 @@ func (d *DesignDocument) marginCosts(p *page) {
 				t.section(point)
 				first = false
 			}
-			t.add(l.cells()...)
+			cells := l.cells()
+			if holes {
+				cells = slices.Insert(cells, 4, l.unansweredText(d.Confidence.Draws))
+			}
+			t.add(cells...)
 		}
 	}
 	p.table(t)
@@ -184,6 +219,15 @@ func (l *ConfidentLimit) cells() []string {
 		cost = significant(float64(l.Cost))
 	}
 	return []string{l.Quantity, bounds(l.low, l.high), sharePercent(l.Nominal.Share), sharePercent(l.BackedOff.Share), l.marginText(), cost}
+}
+
+// unansweredText is the share of the draws of the backed-off design that gave the
+// quantity no value.
+func (l *ConfidentLimit) unansweredText(draws int) string {
+	if !l.Affected || l.Unanswered == 0 {
+		return ""
+	}
+	return sharePercent(Number(float64(l.Unanswered) / float64(draws)))
 }
 
 // marginText is the margin of the sides that have one.

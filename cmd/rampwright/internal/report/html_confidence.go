@@ -18,7 +18,7 @@ func (r *result) confidenceSection() chapter {
 		return s
 	}
 	if c.Met {
-		s.say(words("Each limit is asked to hold in "), asked, words(" %% of the inlets built and flown, and in the backed-off design does."))
+		s.say(words("Each limit is asked to hold in "), asked, words(" %% of the inlets built and flown, and does in the backed-off design."))
 	} else {
 		s.warn(words("Each limit is asked to hold in "), asked, words(" %% of the inlets built and flown. That is not reached: "), why, words("."))
 	}

@@ -34,6 +34,9 @@ func (r *result) answerCells() []cell {
 	switch {
 	case r.Status == "verified":
 		return sentence("The "+extreme, " found under all limits is ", "; two exact routes agree on every quantity"+withinBounds(r.Best.Traced)+", and the surrogates foresaw aim and limits.")
+	case r.Status == "not_verified" && r.Confidence.missed():
+		return append(sentence("A design with ", " of ", " holds every limit as it stands, but the confidence of "),
+			shareCell(r.Confidence.Confidence, "result", "confidence", "confidence"), words(" %% is not reached: see the cautions."))
 	case r.Status == "not_verified":
 		return sentence("A design with ", " of ", " holds every limit, but its evidence has a gap: see the cautions.")
 	case r.Status == "infeasible":
@@ -85,10 +88,17 @@ func (r *result) designSection() chapter {
 		t.Rows = append(t.Rows, append(row, r.aroundVariable(v.Name)...))
 	}
 	s.table(t)
+	kept := "every limit"
+	if c := r.Confidence; c != nil && c.BackedOff != nil {
+		kept = "every limit with the margin told below, under Confidence,"
+		if !c.Met {
+			kept += " which does not reach the confidence,"
+		}
+	}
 	if r.Rounded != nil && r.Rounded.Variables != nil {
-		s.say(words("In tenths of a degree every limit is kept as well, with an aim of "), number(r.Rounded.Aim, "result", "rounded", "aim"), words("."))
+		s.say(words("In tenths of a degree %s is kept as well, with an aim of ", kept), number(r.Rounded.Aim, "result", "rounded", "aim"), words("."))
 	} else if r.Rounded != nil {
-		s.say(words("In tenths of a degree no design near this one keeps every limit."))
+		s.say(words("In tenths of a degree no design near this one keeps %s.", strings.TrimSuffix(kept, ",")))
 	}
 	r.yardstickWords(&s)
 	var notes [][]cell

@@ -170,9 +170,12 @@ func (d *DesignDocument) roundedText(r *Rounded) string {
 	keeps := "keeps every limit exactly"
 	if c := d.Confidence; c != nil && c.BackedOff != nil {
 		keeps = "keeps every limit with its margin above"
+		if !c.Met {
+			keeps += ", which does not reach the confidence,"
+		}
 	}
 	if r.Variables == nil {
-		return "In tenths of a degree: no design near this one " + keeps + "."
+		return "In tenths of a degree: no design near this one " + strings.TrimSuffix(keeps, ",") + "."
 	}
 	var angles []string
 	for _, v := range d.study.model().Variables() {

@@ -185,7 +185,7 @@ func TestConfidenceOfADesign(t *testing.T) {
 	for _, want := range []string{
 		`<section id="confidence">`, `class="percent" data-from="result:/confidence/backed_off/pass_probability/share">91.6</data>`, ">412</data>",
 		`data-from="result:/confidence/nominal/variables/ramp_1_angle_deg">8.0000</data>`, `data-from="result:/confidence/limits/0/high_margin">58.000</data>`,
-		"and in the backed-off design does", "not affected",
+		"and does in the backed-off design", "not affected",
 	} {
 		if !bytes.Contains(page, []byte(want)) {
 			t.Errorf("the page lacks %q", want)

@@ -55,6 +55,9 @@ func (d *DesignDocument) answer() string {
 		return fmt.Sprintf("Verified: the %s %s found under all limits is %s; two exact routes agree on every quantity%s, and the surrogates foresaw aim and limits within %g.",
 			extreme, d.aimName(), value, withinBounds(d.Best.Traced), d.study.Agreement)
 	case optimize.NotVerified:
+		if c := d.Confidence; c.missed() {
+			return fmt.Sprintf("Not verified: a design with %s of %s holds every limit as it stands, but the confidence of %s is not reached%s (see the cautions).", d.aimName(), value, c.percentText(), d.gapText())
+		}
 		return fmt.Sprintf("Not verified: a design with %s of %s holds every limit, but its evidence has a gap (see the cautions).", d.aimName(), value)
 	case optimize.Infeasible:
 		return fmt.Sprintf("Infeasible: no design found holds every limit; the one below misses them least, with %s of %s.", d.aimName(), value)
@@ -67,6 +70,15 @@ func (d *DesignDocument) answer() string {
 		return fmt.Sprintf("%s before a design held every limit; the one below misses them least, with %s of %s.", word, d.aimName(), value)
 	}
 	return fmt.Sprintf("%s: the %s %s so far under all limits is %s.", word, extreme, d.aimName(), value)
+}
+
+// gapText adds the gap in the evidence of a design to what else keeps it from being
+// verified.
+func (d *DesignDocument) gapText() string {
+	if d.study.Result.Best.Verified(d.study.Agreement) {
+		return ""
+	}
+	return ", and its evidence has a gap"
 }
 
 // variables writes the searched values, their ranges, and the bounds they ended on.
