@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"strings"
 
 	"rampwright/cmd/rampwright/internal/report"
 	"rampwright/constraints"
@@ -107,20 +108,20 @@ func (b *backOff) search(ctx context.Context, q robust.Question) (robust.Found, 
 
 // searchWords tell the searches of a round apart.
 func searchWords(q robust.Question) string {
-	text := "searching with the margins the draws ask for"
+	var changed []string
+	if q.Halfway {
+		changed = append(changed, "half the change of the margins")
+	}
 	switch {
-	case q.Halfway:
-		text = "nothing found, searching with the margins half way to those the draws ask for"
-	case q.Loosened > 0:
-		text = "nothing found, searching with the same margins"
+	case q.Loosened == 1:
+		changed = append(changed, "more draws without an answer")
+	case q.Loosened > 1:
+		changed = append(changed, "still more draws without an answer")
 	}
-	switch q.Loosened {
-	case 0:
-		return text
-	case 1:
-		return text + ", more draws without an answer allowed"
+	if changed == nil {
+		return "searching with the margins the draws ask for"
 	}
-	return text + ", still more draws without an answer allowed"
+	return "nothing found, so again with " + strings.Join(changed, " and ")
 }
 
 // describe sets the nominal and the backed-off design side by side, with what each

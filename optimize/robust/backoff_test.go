@@ -142,6 +142,30 @@ func TestBackOffWithHoles(t *testing.T) {
 	}
 }
 
+// The further searches of a round say what sets them apart.
+func TestSearchesOfARoundDiffer(t *testing.T) {
+	p := &plain{scatter: scattered(1), quantities: named("y"), value: func(x, e []float64, dst *problems.Evaluation) {
+		if dst.Set(0, x[0]); e[0] > 2-x[0] {
+			dst.Miss(0, errNone)
+		}
+	}}
+	var asked []Question
+	backOff(t, Goal{Problem: p, Limits: []problems.Limit{atMost("y", 2)}, Confidence: 0.95, Highest: true,
+		Nominal: Found{X: []float64{2}, Feasible: true, Aim: 2}}, func(_ context.Context, q Question) (Found, error) {
+		asked = append(asked, q)
+		return Found{X: []float64{2}}, nil
+	})
+	want := []Question{{}, {Loosened: 1}, {Loosened: 1, Halfway: true}, {Loosened: 2, Halfway: true}}
+	if len(asked) != len(want) {
+		t.Fatalf("%d searches, want %d", len(asked), len(want))
+	}
+	for i, q := range asked {
+		if q.Halfway != want[i].Halfway || q.Loosened != want[i].Loosened {
+			t.Errorf("search %d: half way %v, loosened %d", i, q.Halfway, q.Loosened)
+		}
+	}
+}
+
 func TestDrawsEnoughForTheConfidence(t *testing.T) {
 	for _, c := range []float64{0.5, 0.95, 0.999, 0.9999} {
 		n := drawsOf(c, loopDraws)

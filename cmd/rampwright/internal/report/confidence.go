@@ -74,6 +74,11 @@ func (c *Confidence) unanswered() bool {
 // missed reports whether a backed-off design does not reach the confidence.
 func (c *Confidence) missed() bool { return c != nil && !c.Met && c.BackedOff != nil }
 
+// movedOn reports whether the backed-off design is another than the nominal one.
+func (c *Confidence) movedOn() bool {
+	return c != nil && c.BackedOff != nil && (c.Round > 0 || c.BackedOff.Aim != c.Nominal.Aim)
+}
+
 // percentText is the confidence asked for.
 func (c *Confidence) percentText() string { return fmt.Sprintf("%g %%", 100*float64(c.Confidence)) }
 
@@ -120,12 +125,12 @@ func (d *DesignDocument) confidence(p *page) {
 // marginWords say whose the margins are, so that those of a confidence that is not
 // met are not read as those that would do.
 func (c *Confidence) marginWords() string {
-	if c.Round == 0 {
+	if !c.movedOn() {
 		return "Margin: none, as the design shown is the nominal one."
 	}
 	text := fmt.Sprintf("Margin: by how much the search of the design shown, that of round %d, kept inside; from %d draws of each design before it, aimed at %.4g %%.", c.Round, c.DrawsARound, 100*float64(c.Aimed))
 	if !c.Met {
-		text += " What later rounds asked for is not shown, and these margins are not enough."
+		text += " What was asked for after it is not shown; these margins are not enough."
 	}
 	return text
 }
@@ -159,6 +164,10 @@ func (d *DesignDocument) confidenceAnswer() string {
 	word := "Met"
 	if !c.Met {
 		word = "Not met (" + c.Why + ")"
+	}
+	if !c.movedOn() {
+		return fmt.Sprintf("%s. The design shown is the one that knows no tolerances, with %s of %s. All limits together hold in %s %%.",
+			word, d.aimName(), significant(float64(c.Nominal.Aim)), sharePercent(c.Nominal.Joint.Share))
 	}
 	text := fmt.Sprintf("%s: %s of %s instead of %s for the design that knows no tolerances. All limits together hold in %s %% instead of %s %%.",
 		word, d.aimName(), significant(float64(c.BackedOff.Aim)), significant(float64(c.Nominal.Aim)), sharePercent(c.BackedOff.Joint.Share), sharePercent(c.Nominal.Joint.Share))

@@ -91,13 +91,14 @@ func (r *result) confidenceWords() [][]cell {
 	c := r.Confidence
 	at := func(key string) []any { return []any{"confidence", key} }
 	margin := []cell{words("Margin, in the unit of the quantity: by how much the search of the design shown kept inside.")}
-	switch {
-	case c.Round == 0:
+	if !c.movedOn() {
 		margin = append(margin, words(" The design shown is the nominal one, searched without any."))
-	case c.Met:
+	}
+	if c.Round > 0 { // unknown in a folder written before it was told
 		margin = append(margin, words(" It is that of round "), countCell(int64(c.Round), "result", at("round")...), words(" of the search."))
-	default:
-		margin = append(margin, words(" It is that of round "), countCell(int64(c.Round), "result", at("round")...), words(" of the search; margins asked for later, or by its own draws, are not shown."))
+	}
+	if c.movedOn() && !c.Met {
+		margin = append(margin, words(" What was asked for after it is not shown; these margins are not enough."))
 	}
 	list := [][]cell{
 		{words("Holds: per cent of "), countCell(int64(c.Draws), "result", at("draws")...), words(" fresh draws of the exact model, which no search has seen; both designs are judged on the same.")},

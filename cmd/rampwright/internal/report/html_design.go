@@ -89,7 +89,7 @@ func (r *result) designSection() chapter {
 	}
 	s.table(t)
 	kept := "every limit"
-	if c := r.Confidence; c != nil && c.BackedOff != nil {
+	if c := r.Confidence; c.movedOn() {
 		kept = "every limit with the margin told below, under Confidence,"
 		if !c.Met {
 			kept += " which does not reach the confidence,"

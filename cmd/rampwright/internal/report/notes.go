@@ -168,7 +168,7 @@ func (d *DesignDocument) nearby(p *page) {
 // confidence as well.
 func (d *DesignDocument) roundedText(r *Rounded) string {
 	keeps := "keeps every limit exactly"
-	if c := d.Confidence; c != nil && c.BackedOff != nil {
+	if c := d.Confidence; c.movedOn() {
 		keeps = "keeps every limit with its margin above"
 		if !c.Met {
 			keeps += ", which does not reach the confidence,"
