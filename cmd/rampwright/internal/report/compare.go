@@ -25,18 +25,27 @@ type CompareDocument struct {
 
 // Compared is one of them, as its folder has it.
 type Compared struct {
-	Folder    string                 `json:"folder"`
-	Title     string                 `json:"title"`
-	Program   string                 `json:"program"`
-	Status    string                 `json:"status"`
-	BriefHash string                 `json:"brief_hash"`
-	Seed      int64                  `json:"seed"`
-	Aim       Aim                    `json:"aim"`
-	Feasible  bool                   `json:"feasible"`
-	Variables Object[Number]         `json:"variables"`
-	Exact     Object[Object[Number]] `json:"exact"`
-	Limits    []Limit                `json:"limits"`
-	Inlet     *Shape                 `json:"inlet"`
+	Folder    string `json:"folder"`
+	Title     string `json:"title"`
+	Program   string `json:"program"`
+	Status    string `json:"status"`
+	BriefHash string `json:"brief_hash"`
+	Seed      int64  `json:"seed"`
+	Aim       Aim    `json:"aim"`
+	Feasible  bool   `json:"feasible"`
+	// Confidence is what the brief asks of each limit under its tolerances; absent
+	// where it asks for none.
+	Confidence *ComparedConfidence    `json:"confidence,omitempty"`
+	Variables  Object[Number]         `json:"variables"`
+	Exact      Object[Object[Number]] `json:"exact"`
+	Limits     []Limit                `json:"limits"`
+	Inlet      *Shape                 `json:"inlet"`
+}
+
+// ComparedConfidence is a confidence asked for, and whether the design reaches it.
+type ComparedConfidence struct {
+	Confidence Number `json:"confidence"`
+	Met        bool   `json:"met"`
 }
 
 // Named is a result folder with the name it is shown under.
@@ -58,7 +67,7 @@ func NewCompare(program string, folders []Named) (*CompareDocument, error) {
 		}
 		d.Results = append(d.Results, Compared{
 			Folder: f.Name, Title: r.Title, Program: r.Program, Status: r.Status, BriefHash: r.BriefHash, Seed: r.Seed,
-			Aim: r.Best.Aim, Feasible: r.Best.Feasible, Variables: r.Best.Variables, Exact: r.Best.Exact, Limits: r.Best.Limits, Inlet: r.Inlet,
+			Aim: r.Best.Aim, Feasible: r.Best.Feasible, Confidence: r.Confidence.compared(), Variables: r.Best.Variables, Exact: r.Best.Exact, Limits: r.Best.Limits, Inlet: r.Inlet,
 		})
 	}
 	if found != nil {
@@ -86,8 +95,43 @@ func (d *CompareDocument) notes() []string {
 	differ(func(*Compared) bool { return d.oneAim() }, "The aims differ: their values do not compare.")
 	differ(func(c *Compared) bool { return sameBounds(c.Limits, first.Limits) }, "The limits differ: each margin is to the result's own limit.")
 	differ(func(c *Compared) bool { return c.Feasible }, "Some result does not hold every limit of its brief: its aim is no better for being higher or lower.")
+	differ(func(c *Compared) bool { return c.asked() == first.asked() }, "The confidences asked for differ: a design that holds its limits with a higher one pays for it in the aim.")
+	differ(func(c *Compared) bool { return c.Confidence == nil || c.Confidence.Met }, "Some result does not reach the confidence of its brief.")
 	differ(func(c *Compared) bool { return c.Program == first.Program }, "The results were written by different versions of the program.")
 	return notes
+}
+
+// compared is what a comparison tells of a confidence; nil without one.
+func (c *Confidence) compared() *ComparedConfidence {
+	if c == nil {
+		return nil
+	}
+	return &ComparedConfidence{c.Confidence, c.Met}
+}
+
+// asked is the confidence asked for, 0 without.
+func (c *Compared) asked() Number {
+	if c.Confidence == nil {
+		return 0
+	}
+	return c.Confidence.Confidence
+}
+
+// confidenceText is the confidence asked for and what became of it.
+func (c *Compared) confidenceText() string {
+	switch k := c.Confidence; {
+	case k == nil:
+		return "none"
+	case k.Met:
+		return fmt.Sprintf("%g %%", 100*float64(k.Confidence))
+	default:
+		return fmt.Sprintf("%g %%, not met", 100*float64(k.Confidence))
+	}
+}
+
+// someConfidence reports whether a confidence was asked for anywhere.
+func (d *CompareDocument) someConfidence() bool {
+	return slices.ContainsFunc(d.Results, func(c Compared) bool { return c.Confidence != nil })
 }
 
 // oneAim reports whether every result pursues the same aim.
@@ -202,12 +246,20 @@ func (d *CompareDocument) Text(width int) string {
 	p.heading("Results")
 	best := d.best()
 	t := &table{columns: []column{{head: "no."}, {head: "folder", left: true}, {head: "title", left: true, drop: 1}, {head: "status", left: true}, {head: d.aimHead()}, {left: true}}}
+	some := d.someConfidence()
+	if some {
+		t.columns = slices.Insert(t.columns, 4, column{head: "confidence", left: true})
+	}
 	for i := range d.Results {
 		c, mark := &d.Results[i], ""
 		if i == best {
 			mark = "best"
 		}
-		t.add(strconv.Itoa(i+1), c.Folder, c.Title, c.Status, significant(float64(c.Aim.Exact)), mark)
+		cells := []string{strconv.Itoa(i + 1), c.Folder, c.Title, c.Status, significant(float64(c.Aim.Exact)), mark}
+		if some {
+			cells = slices.Insert(cells, 4, c.confidenceText())
+		}
+		t.add(cells...)
 	}
 	p.table(t)
 	variables := d.variableNames()
@@ -224,7 +276,9 @@ func (d *CompareDocument) Text(width int) string {
 		names = append(names, k.String())
 	}
 	d.side(p, "Margins, in the unit of the quantity", "limit", names, func(c *Compared, row int) string {
-		if i := c.least(keys[row]); i >= 0 {
+		if i := c.least(keys[row]); i >= 0 && c.Limits[i].Active {
+			return "0"
+		} else if i >= 0 {
 			return significant(float64(c.Limits[i].Margin))
 		}
 		return c.without(keys[row])

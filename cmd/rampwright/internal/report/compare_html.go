@@ -54,18 +54,39 @@ func (d *CompareDocument) resultChapter() chapter {
 	s := chapter{ID: "results", Head: "Results"}
 	t := &htmlTable{Head: heads("folder", "title", "status", "aim", "at")}
 	t.Head = append(t.Head, columnHeads(0, "exact", "predicted", "seed")...)
+	some := d.someConfidence()
+	if some {
+		t.Head = append(t.Head, cell{Text: "confidence asked, %", Number: true}, words("reached"))
+	}
 	for i := range d.Results {
 		c := &d.Results[i]
 		at := func(key ...any) []any { return append([]any{"results", i}, key...) }
-		t.Rows = append(t.Rows, []cell{
+		row := []cell{
 			d.folderCell(i), quoted(c.Title, "compare", at("title")...), quoted(c.Status, "compare", at("status")...),
 			quoted(c.Aim.Text, "compare", at("aim", "text")...), quoted(c.Aim.Where, "compare", at("aim", "where")...),
 			number(c.Aim.Exact, "compare", at("aim", "exact")...), number(c.Aim.Predicted, "compare", at("aim", "predicted")...),
 			countCell(c.Seed, "compare", at("seed")...),
-		})
+		}
+		if some {
+			row = append(row, d.confidenceCells(i)...)
+		}
+		t.Rows = append(t.Rows, row)
 	}
 	s.table(t)
 	return s
+}
+
+// confidenceCells are the confidence asked of a result and whether it is reached.
+func (d *CompareDocument) confidenceCells(i int) []cell {
+	c := d.Results[i].Confidence
+	if c == nil {
+		return []cell{{Text: "none", Number: true}, {Text: none}}
+	}
+	reached := "no"
+	if c.Met {
+		reached = "yes"
+	}
+	return []cell{shareCell(c.Confidence, "compare", "results", i, "confidence", "confidence"), words("%s", reached)}
 }
 
 // outlineChapter lays the contours over each other.
@@ -148,6 +169,9 @@ func (d *CompareDocument) marginChapter() chapter {
 		row := d.Results[i].least(keys[k])
 		if row < 0 {
 			return cell{Text: d.Results[i].without(keys[k]), Number: true}
+		}
+		if d.Results[i].Limits[row].Active {
+			return cell{Text: "on the limit", Number: true}
 		}
 		return number(d.Results[i].Limits[row].Margin, "compare", "results", i, "limits", row, "margin")
 	})

@@ -3,10 +3,12 @@ package report
 import (
 	"bytes"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
 	"rampwright/optimize"
+	"rampwright/problems"
 )
 
 // backedOff is a study whose confidence is met.
@@ -135,5 +137,53 @@ func TestConfidenceOfNoDesign(t *testing.T) {
 	checkPage(t, page, documents(f))
 	if !bytes.Contains(page, []byte("No design was backed off for that: ")) {
 		t.Error("the page does not say so")
+	}
+}
+
+// A comparison says which results were asked for a confidence, and reads a margin
+// within the tolerance of the search as none.
+func TestCompareTellsConfidences(t *testing.T) {
+	s := study(t)
+	result := *s.Result
+	result.Best.Assessment.Checks = slices.Clone(result.Best.Assessment.Checks)
+	for i := range result.Best.Assessment.Checks {
+		if check := &result.Best.Assessment.Checks[i]; check.Kind != problems.Hard {
+			check.Active, check.Margin = true, 1.05e-9
+		}
+	}
+	s.Result = &result
+	without := folderOf(t, s)
+	s.Confidence = backedOff(t).Confidence
+	with := folderOf(t, s)
+	s.Confidence.Met = false
+	missed := folderOf(t, s)
+	d, err := NewCompare("rampwright 0", []Named{{"first", without}, {"second", with}, {"third", missed}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(d.Notes) != 2 || !strings.HasPrefix(d.Notes[0], "The confidences asked for differ") || !strings.HasPrefix(d.Notes[1], "Some result does not reach") {
+		t.Errorf("notes %q", d.Notes)
+	}
+	text := strings.Join(strings.Fields(d.Text(100)), " ")
+	for _, want := range []string{" none ", " 95 % ", " 95 %, not met "} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the text lacks %q: %s", want, text)
+		}
+	}
+	if strings.Contains(text, "e-9") {
+		t.Errorf("residue stands as a margin: %s", text)
+	}
+	within80(t, d.Text(80))
+	page, err := d.Page()
+	if err != nil {
+		t.Fatal(err)
+	}
+	checkPage(t, page, map[string][]byte{"compare": d.JSON()})
+	if !bytes.Contains(page, []byte("confidence asked, %")) || bytes.Contains(page, []byte("1.050e-9")) {
+		t.Error("the page does not tell confidences, or shows residue")
+	}
+	same, err := NewCompare("rampwright 0", []Named{{"first", without}, {"second", without}})
+	if err != nil || len(same.Notes) != 0 || strings.Contains(same.Text(100), "confidence") {
+		t.Errorf("without any: %v, %+v", err, same)
 	}
 }
