@@ -95,7 +95,7 @@ func TestConfidenceThatIsNotMet(t *testing.T) {
 		}
 	}
 	within80(t, d.Text(80))
-	if got := d.roundedText(&Rounded{}); !strings.HasSuffix(got, "with its margin above, which does not reach the confidence.") {
+	if got := d.roundedText(&Rounded{}); !strings.HasSuffix(got, "with its margin above. Those margins do not reach the confidence.") {
 		t.Errorf("of the rounded design: %q", got)
 	}
 	f := folderOf(t, s)

@@ -88,18 +88,7 @@ func (r *result) designSection() chapter {
 		t.Rows = append(t.Rows, append(row, r.aroundVariable(v.Name)...))
 	}
 	s.table(t)
-	kept := "every limit"
-	if c := r.Confidence; c.movedOn() {
-		kept = "every limit with the margin told below, under Confidence,"
-		if !c.Met {
-			kept += " which does not reach the confidence,"
-		}
-	}
-	if r.Rounded != nil && r.Rounded.Variables != nil {
-		s.say(words("In tenths of a degree %s is kept as well, with an aim of ", kept), number(r.Rounded.Aim, "result", "rounded", "aim"), words("."))
-	} else if r.Rounded != nil {
-		s.say(words("In tenths of a degree no design near this one keeps %s.", strings.TrimSuffix(kept, ",")))
-	}
+	r.roundedWords(&s)
 	r.yardstickWords(&s)
 	var notes [][]cell
 	for i, note := range r.Notes {
@@ -108,6 +97,26 @@ func (r *result) designSection() chapter {
 	s.list(notes)
 	r.candidateTable(&s)
 	return s
+}
+
+// roundedWords tell of the design in tenths of a degree, which keeps the margins of a
+// confidence as well.
+func (r *result) roundedWords(s *chapter) {
+	if r.Rounded == nil {
+		return
+	}
+	margins, short := "", ""
+	if c := r.Confidence; c.movedOn() {
+		margins = " with the margin told under Confidence"
+		if !c.Met {
+			short = " Those margins do not reach the confidence."
+		}
+	}
+	if r.Rounded.Variables == nil {
+		s.say(words("In tenths of a degree no design near this one keeps every limit%s.%s", margins, short))
+		return
+	}
+	s.say(words("In tenths of a degree every limit is kept%s as well, with an aim of ", margins), number(r.Rounded.Aim, "result", "rounded", "aim"), words(".%s", short))
 }
 
 // aroundVariable are the cells of a variable behind its value: range, play,

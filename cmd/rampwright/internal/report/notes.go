@@ -167,21 +167,21 @@ func (d *DesignDocument) nearby(p *page) {
 // roundedText tells of the design in tenths of a degree, which keeps the margins of a
 // confidence as well.
 func (d *DesignDocument) roundedText(r *Rounded) string {
-	keeps := "keeps every limit exactly"
+	keeps, short := "keeps every limit exactly", ""
 	if c := d.Confidence; c.movedOn() {
 		keeps = "keeps every limit with its margin above"
 		if !c.Met {
-			keeps += ", which does not reach the confidence,"
+			short = " Those margins do not reach the confidence."
 		}
 	}
 	if r.Variables == nil {
-		return "In tenths of a degree: no design near this one " + strings.TrimSuffix(keeps, ",") + "."
+		return "In tenths of a degree: no design near this one " + keeps + "." + short
 	}
 	var angles []string
 	for _, v := range d.study.model().Variables() {
 		value, _ := r.Variables.Get(v.Name)
 		angles = append(angles, plain(float64(value)))
 	}
-	return fmt.Sprintf("In tenths of a degree: the nearest design that %s is %s (in the order above), with %s of %s.",
-		keeps, strings.Join(angles, ", "), d.aimName(), significant(float64(r.Aim)))
+	return fmt.Sprintf("In tenths of a degree: the nearest design that %s is %s (in the order above), with %s of %s.%s",
+		keeps, strings.Join(angles, ", "), d.aimName(), significant(float64(r.Aim)), short)
 }
