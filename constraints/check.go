@@ -32,7 +32,32 @@ type Check struct {
 	// Drives is the index of the variable the limit holds back most, -1 where it has
 	// no price; filled by the search.
 	Drives int
+	// PriceRange is by how much the limit can be loosened, in the quantity's unit,
+	// before the gain no longer follows the price, to first order; NaN without a
+	// price. PriceEnd tells what ends it. Filled by the search.
+	PriceRange float64
+	PriceEnd   PriceEnd
 }
+
+// PriceEnd is what ends the range of a price.
+type PriceEnd struct {
+	Kind  PriceEndKind
+	Index int // of a check, or of a variable for the ends and bounds
+}
+
+// PriceEndKind says in which way the range of a price ends.
+type PriceEndKind int
+
+const (
+	PriceEndUnknown PriceEndKind = iota
+	LimitMet                     // another limit is met
+	LowerEndMet                  // a variable reaches the lower end of its range
+	UpperEndMet                  // or the upper
+	LimitReleased                // another limit the design stood on is left
+	BoundReleased                // a variable leaves the end of its range
+	PriceFalls                   // the price itself falls as the limit is loosened
+	PriceRises                   // or rises
+)
 
 // Assessment is every row judged on one evaluation.
 type Assessment struct {
@@ -70,7 +95,7 @@ func Assess(rows []Row, evaluation *problems.Evaluation) Assessment {
 }
 
 func judge(row *Row, evaluation *problems.Evaluation) Check {
-	check := Check{Row: *row, Value: evaluation.Values[row.Index], Applies: true, Drives: -1}
+	check := Check{Row: *row, Value: evaluation.Values[row.Index], Applies: true, Drives: -1, PriceRange: math.NaN()}
 	if math.IsNaN(check.Value) {
 		check.Margin = math.NaN()
 		check.Missing = evaluation.Reasons[row.Index]

@@ -52,37 +52,48 @@ func (s *searcher) price(u []float64, checks []constraints.Check) {
 		slope[j] *= s.plan.objective.sign()
 	}
 	var columns [][]float64 // gradients of active sides, scaled rows
-	var owners []int        // check of a column, -1 for a face
+	var owners []int        // check of a column, -1-j for the face of variable j
 	for r := range checks {
 		check := &checks[r]
 		if !check.Active {
 			continue
 		}
-		sign := 1.0
-		if math.Abs(check.Value-check.Low) < math.Abs(check.Value-check.High) {
-			sign = -1
-		}
 		if column := s.plan.rowSlope(r, s); column != nil {
-			columns, owners = append(columns, scaled(column, sign/check.Scale)), append(owners, r)
+			columns, owners = append(columns, scaled(column, activeSign(check)/check.Scale)), append(owners, r)
 		}
 	}
 	for j, v := range u {
 		if v <= 0 || v >= 1 {
 			face := make([]float64, len(u))
 			face[j] = math.Copysign(1, v-0.5)
-			columns, owners = append(columns, face), append(owners, -1)
+			columns, owners = append(columns, face), append(owners, -1-j)
 		}
 	}
-	multipliers := balance(slope, columns)
-	for k, r := range owners {
+	var held holding
+	for k, multiplier := range balance(slope, columns) {
+		r := owners[k]
+		if multiplier > 0 {
+			held.columns, held.owners, held.multipliers = append(held.columns, columns[k]), append(held.owners, r), append(held.multipliers, multiplier)
+		}
 		if r < 0 {
 			continue
 		}
-		checks[r].Price, checks[r].Drives = multipliers[k]/checks[r].Scale, -1
-		if multipliers[k] > 0 {
+		checks[r].Price, checks[r].Drives, checks[r].PriceRange = multiplier/checks[r].Scale, -1, math.NaN()
+		if multiplier > 0 {
 			checks[r].Drives = steepestSide(columns[k])
 		}
 	}
+	if len(held.columns) > 0 {
+		s.ranges(u, checks, held)
+	}
+}
+
+// activeSign is +1 where a check stands on its upper side, -1 on its lower.
+func activeSign(check *constraints.Check) float64 {
+	if math.Abs(check.Value-check.Low) < math.Abs(check.Value-check.High) {
+		return -1
+	}
+	return 1
 }
 
 // steepestSide is the index of the largest component by size.

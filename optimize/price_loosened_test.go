@@ -50,10 +50,25 @@ func TestPricesOfPublishedProblems(t *testing.T) {
 			if !(math.Abs(check.Price-gain) <= priceTolerance*math.Abs(gain)) {
 				t.Errorf("%s: price of %s %.6g, the aim gains %.6g", name, check.Quantity.Name, check.Price, gain)
 			}
+			if check.Price > 0 {
+				compareOverRange(t, name, task, check)
+			}
 		}
 		if active == 0 {
 			t.Errorf("%s: no limit is active", name)
 		}
+	}
+}
+
+// compareOverRange checks that over half the range of a price the aim gains price
+// times loosening, within a tenth.
+func compareOverRange(t *testing.T, name string, task optimize.Task, check constraints.Check) {
+	t.Helper()
+	half := check.PriceRange / 2
+	gain := (loosenedAim(t, task, check, half) - loosenedAim(t, task, check, 0)) / half
+	t.Logf("%s: %s holds for %.6g, end %v, over half of it %.5f", name, check.Quantity.Name, check.PriceRange, check.PriceEnd, gain/check.Price)
+	if !(math.Abs(check.Price-gain) <= 0.1*check.Price) {
+		t.Errorf("%s: price of %s %.6g, over %.6g the aim gains %.6g", name, check.Quantity.Name, check.Price, half, gain)
 	}
 }
 

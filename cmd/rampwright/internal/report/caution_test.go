@@ -261,12 +261,33 @@ func TestLiftedDefaultsNamePoints(t *testing.T) {
 func TestPriceInWords(t *testing.T) {
 	d := NewDesign(head, study(t))
 	check := constraints.Check{Row: constraints.Row{Quantity: problems.Quantity{Unit: "m"}}, Active: true, Met: true, Applies: true, Price: 0.2581}
-	if got := d.how(&check); got != "on the limit: 0.258 recovery per m, holds ramp_1_angle_deg" {
+	if got := d.how(&check); got != "on the limit: 0.258 recovery per m; holds ramp_1_angle_deg" {
 		t.Errorf("got %q", got)
 	}
 	check.Quantity.Unit, d.Best.Aim.Text = "", "recovery * capture"
-	if got := d.how(&check); got != "on the limit: 0.258 of the aim per unit, holds ramp_1_angle_deg" {
+	if got := d.how(&check); got != "on the limit: 0.258 of the aim per unit; holds ramp_1_angle_deg" {
 		t.Errorf("got %q", got)
+	}
+	beside := &d.study.Result.Best.Assessment.Checks[0].Quantity
+	at := memberName(*beside) + " at " + beside.Point
+	for _, c := range []struct {
+		reach float64
+		end   constraints.PriceEnd
+		want  string
+	}{
+		{0.00314, constraints.PriceEnd{Kind: constraints.LimitMet}, " for the next 0.0031, then " + at},
+		{0.00314, constraints.PriceEnd{Kind: constraints.LimitReleased}, " for the next 0.0031, then " + at + " lets go"},
+		{118.8, constraints.PriceEnd{Kind: constraints.PriceFalls}, " for the next 120, then less"},
+		{2.23e-5, constraints.PriceEnd{Kind: constraints.PriceRises}, " for the next 0.000022, then more"},
+		{3e7, constraints.PriceEnd{Kind: constraints.UpperEndMet}, " for the next 3.0e7, then the upper end of ramp_1_angle_deg"},
+		{1, constraints.PriceEnd{Kind: constraints.LowerEndMet}, " for the next 1, then the lower end of ramp_1_angle_deg"},
+		{1, constraints.PriceEnd{Kind: constraints.BoundReleased}, " for the next 1, then ramp_1_angle_deg leaves its end"},
+		{0, constraints.PriceEnd{Kind: constraints.LimitMet}, " together with " + at + ", alone nothing"},
+	} {
+		check.PriceRange, check.PriceEnd = c.reach, c.end
+		if got, want := d.how(&check), "on the limit: 0.258 of the aim per unit"+c.want+"; holds ramp_1_angle_deg"; got != want {
+			t.Errorf("got %q, want %q", got, want)
+		}
 	}
 	check.Price = 0
 	if got := d.how(&check); got != "on the limit" {

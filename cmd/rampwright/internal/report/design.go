@@ -97,19 +97,24 @@ type Aim struct {
 
 // Limit is one limit on one response, judged on exact values.
 type Limit struct {
-	Quantity string         `json:"quantity"`
-	Member   string         `json:"member"`
-	At       string         `json:"at"`
-	Low      Number         `json:"low"`
-	High     Number         `json:"high"`
-	Value    Number         `json:"value"`
-	Margin   Number         `json:"margin"`
-	Met      bool           `json:"met"`
-	Active   bool           `json:"active"`
-	Price    Number         `json:"price"`  // gain of the aim for each unit the limit is loosened
-	Drives   *string        `json:"drives"` // the variable the limit holds back most; null without a price
-	Kind     string         `json:"kind"`
-	Missing  Object[string] `json:"missing,omitzero"`
+	Quantity string  `json:"quantity"`
+	Member   string  `json:"member"`
+	At       string  `json:"at"`
+	Low      Number  `json:"low"`
+	High     Number  `json:"high"`
+	Value    Number  `json:"value"`
+	Margin   Number  `json:"margin"`
+	Met      bool    `json:"met"`
+	Active   bool    `json:"active"`
+	Price    Number  `json:"price"`  // gain of the aim for each unit the limit is loosened
+	Drives   *string `json:"drives"` // the variable the limit holds back most; null without a price
+	// PriceRange is by how much the limit can be loosened, in its unit, before the
+	// gain leaves the price, to first order, and PriceEnd what ends it; null without
+	// a price.
+	PriceRange Number         `json:"price_range"`
+	PriceEnd   *string        `json:"price_end"`
+	Kind       string         `json:"kind"`
+	Missing    Object[string] `json:"missing,omitzero"`
 }
 
 // Fit is the surrogate of one quantity.
@@ -316,10 +321,13 @@ func (s *Study) limit(c *constraints.Check) Limit {
 	l := Limit{
 		Quantity: c.Quantity.Name, Member: c.Quantity.Member, At: c.Quantity.Point,
 		Low: Number(c.Low), High: Number(c.High), Value: Number(c.Value), Margin: Number(c.Margin),
-		Met: c.Met, Active: c.Active, Price: Number(c.Price), Kind: c.Kind.String(),
+		Met: c.Met, Active: c.Active, Price: Number(c.Price), PriceRange: Number(c.PriceRange), Kind: c.Kind.String(),
 	}
 	if c.Price > 0 {
 		l.Drives = &s.model().Variables()[c.Drives].Name
+		if end := s.priceEnd(c); end != "" {
+			l.PriceEnd = &end
+		}
 	}
 	if c.Missing != nil {
 		l.Missing = Object[string]{{"value", c.Missing.Error()}}

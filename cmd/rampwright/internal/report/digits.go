@@ -106,3 +106,13 @@ func bounds(low, high float64) string {
 	}
 	return plain(low) + " .. " + plain(high)
 }
+
+// aboutText writes a size with two digits.
+func aboutText(v float64) string {
+	short := strconv.FormatFloat(v, 'e', 1, 64)
+	if v < 1e-6 || v >= 1e6 {
+		return shortExponent(short)
+	}
+	rounded, _ := strconv.ParseFloat(short, 64) // written just above
+	return strconv.FormatFloat(rounded, 'f', -1, 64)
+}

@@ -93,7 +93,7 @@ func TestDesignKeys(t *testing.T) {
 	want := slices.Concat(
 		strings.Fields("format program title seed brief_hash status why best"), under("best", candidateKeys),
 		under("best", "exact members missing predicted error limits"),
-		under("best.limits", "quantity member at low high value margin met active price drives kind"),
+		under("best.limits", "quantity member at low high value margin met active price drives price_range price_end kind"),
 		[]string{"candidates"}, under("candidates", candidateKeys),
 		[]string{"fits"}, under("fits", "quantity member at kind transform description samples q2 rmse"),
 		[]string{"exact_search"}, under("exact_search", "status aim variables evaluations ratio"),

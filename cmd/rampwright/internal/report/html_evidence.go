@@ -43,7 +43,7 @@ func (r *result) sideViewSection() chapter {
 func (r *result) marginSection() chapter {
 	s := chapter{ID: "margins", Head: "Margins"}
 	shown, quiet := r.shownLimits()
-	t := &htmlTable{Head: append(columnHeads(3, "limit", "member", "at", "at least", "at most", "value", "margin", "price"), cell{Bar: drawn(chart.WriteMarginScale)}, words("standing"))}
+	t := &htmlTable{Head: append(columnHeads(3, "limit", "member", "at", "at least", "at most", "value", "margin", "price", "price holds for"), words("then"), cell{Bar: drawn(chart.WriteMarginScale)}, words("standing"))}
 	for _, i := range shown {
 		t.Rows = append(t.Rows, r.marginRow(i))
 	}
@@ -55,7 +55,7 @@ func (r *result) marginSection() chapter {
 		s.say(words("Nothing is asked beyond the search box."))
 		return s
 	}
-	s.say(words("Margins are in the unit of the quantity, positive inside. The price is what the aim gains for each unit by which a limit is loosened; only a limit the design stands on has one."))
+	s.say(words("Margins are in the unit of the quantity, positive inside. The price is what the aim gains for each unit by which a limit is loosened; only a limit the design stands on has one. It tells the gain to a tenth while the limit is loosened by no more than it holds for; then what stands beside it takes over, or the price itself changes."))
 	return s
 }
 
@@ -105,15 +105,18 @@ func (r *result) marginRow(i int) []cell {
 	l := &r.Best.Limits[i]
 	at := func(key string) []any { return []any{"best", "limits", i, key} }
 	bar := chart.MarginBar{Name: responseTitle(l.Quantity, l.Member, l.At), Share: l.share()}
-	price := cell{Text: none, Number: true}
+	price, reach, end := cell{Text: none, Number: true}, cell{Text: none, Number: true}, words("")
 	if l.Active {
 		price = number(l.Price, "result", at("price")...)
+	}
+	if l.PriceEnd != nil {
+		reach, end = number(l.PriceRange, "result", at("price_range")...), quoted(*l.PriceEnd, "result", at("price_end")...)
 	}
 	return []cell{
 		quoted(l.Quantity, "result", at("quantity")...), quoted(l.Member, "result", at("member")...), quoted(l.At, "result", at("at")...),
 		number(l.Low, "result", at("low")...), number(l.High, "result", at("high")...),
 		number(l.Value, "result", at("value")...), number(l.Margin, "result", at("margin")...),
-		price, {Bar: drawn(func(w io.Writer) error { return chart.WriteMarginBar(w, bar) })}, r.standing(i, bar),
+		price, reach, end, {Bar: drawn(func(w io.Writer) error { return chart.WriteMarginBar(w, bar) })}, r.standing(i, bar),
 	}
 }
 

@@ -217,14 +217,14 @@ func (d *DesignDocument) how(c *constraints.Check) string {
 	case !c.Met:
 		return "not met"
 	case c.Active && c.Price > 0:
-		return "on the limit: " + d.price(c) + ", holds " + d.study.model().Variables()[c.Drives].Name
+		return "on the limit: " + d.price(c) + "; holds " + d.study.model().Variables()[c.Drives].Name
 	case c.Active:
 		return "on the limit"
 	}
 	return ""
 }
 
-// price is what loosening a limit gains, in words.
+// price is what loosening a limit gains, in words, and how far.
 func (d *DesignDocument) price(c *constraints.Check) string {
 	unit := c.Quantity.Unit
 	if unit == "" {
@@ -234,5 +234,51 @@ func (d *DesignDocument) price(c *constraints.Check) string {
 	if strings.ContainsAny(what, " +-*/^(@") {
 		what = "of the aim"
 	}
-	return fmt.Sprintf("%.3g %s per %s", c.Price, what, unit)
+	price := fmt.Sprintf("%.3g %s per %s", c.Price, what, unit)
+	end := d.study.priceEnd(c)
+	switch {
+	case end == "":
+		return price
+	case c.PriceRange <= constraints.ActiveMargin*c.Scale && c.PriceEnd.Kind <= constraints.UpperEndMet:
+		return price + " together with " + end + ", alone nothing"
+	}
+	return fmt.Sprintf("%s for the next %s%s, then %s", price, aboutText(c.PriceRange), spaced(c.Quantity.Unit), end)
+}
+
+// spaced is a unit behind its number.
+func spaced(unit string) string {
+	if unit == "" {
+		return ""
+	}
+	return " " + unit
+}
+
+// priceEnd says what ends the range of a price, empty where none is known.
+func (s *Study) priceEnd(c *constraints.Check) string {
+	end := c.PriceEnd
+	variable := func() string { return s.model().Variables()[end.Index].Name }
+	limit := func() string {
+		q := s.Result.Best.Assessment.Checks[end.Index].Quantity
+		if q.Point == problems.Geometry {
+			return memberName(q)
+		}
+		return memberName(q) + " at " + q.Point
+	}
+	switch end.Kind {
+	case constraints.LimitMet:
+		return limit()
+	case constraints.LowerEndMet:
+		return "the lower end of " + variable()
+	case constraints.UpperEndMet:
+		return "the upper end of " + variable()
+	case constraints.LimitReleased:
+		return limit() + " lets go"
+	case constraints.BoundReleased:
+		return variable() + " leaves its end"
+	case constraints.PriceFalls:
+		return "less"
+	case constraints.PriceRises:
+		return "more"
+	}
+	return ""
 }
