@@ -39,6 +39,23 @@ func glass(first, second, third float64, linear bool) Task {
 	return task
 }
 
+// flat is the highest x + y with x + y <= 1 and y <= 0.7: every point of a side is
+// an optimum.
+func flat() Task {
+	return Task{
+		Problem: verifiedToy{&toy{
+			variables:  []problems.Variable{variable("x", 0, 1), variable("y", 0, 1)},
+			quantities: []problems.Quantity{quantity("sum"), quantity("y")},
+			fill: func(x []float64, dst *problems.Evaluation) {
+				dst.Set(0, x[0]+x[1])
+				dst.Set(1, x[1])
+			},
+		}},
+		Limits: []problems.Limit{atMost("sum", 1), atMost("y", 0.7)},
+		Aim:    aimAt("sum", true),
+	}
+}
+
 // priced are the checks of a task priced on its exact model at x.
 func priced(t *testing.T, task Task, x []float64) []constraints.Check {
 	t.Helper()
@@ -87,6 +104,9 @@ func TestPriceRanges(t *testing.T) {
 			{2, 1, 0.06, constraints.PriceEnd{Kind: constraints.LimitMet, Index: 0}},
 		}},
 		"disk": {disk(1), diskX(1), []want{{0, diskPrice(1), -0.2 / diskSlope(1), constraints.PriceEnd{Kind: constraints.PriceFalls, Index: 0}}}},
+		// Nothing curves along x + y <= 1: the optimum moves by the shortest way, which
+		// meets y <= 0.7 after 0.4.
+		"flat": {flat(), []float64{0.5, 0.5}, []want{{0, 1, 0.4, constraints.PriceEnd{Kind: constraints.LimitMet, Index: 1}}}},
 		// The price 2/9 (4 - s) of Hock & Schittkowski 35 vanishes at the sum 4.
 		"Hock & Schittkowski 35": {beale(3), bealeX, []want{{0, bealePrice, 0.2, constraints.PriceEnd{Kind: constraints.PriceFalls, Index: 0}}}},
 	} {

@@ -13,7 +13,8 @@ const leastPriceAgreement = 0.02
 
 // The price of every limit a starter stands on is what recovery gains for each
 // unit by which the limit is loosened and the inlet searched anew; a limit without
-// a price gains nothing.
+// a price gains nothing. Over its range the price of the outer cowl, which falls
+// fastest of all on halcyre-45, tells the gain to a tenth.
 func TestStarterPricesAreTheGainOfLoosening(t *testing.T) {
 	for _, name := range starters {
 		t.Run(name, func(t *testing.T) {
@@ -24,6 +25,7 @@ func TestStarterPricesAreTheGainOfLoosening(t *testing.T) {
 						Low, High            *float64
 						Value, Price         float64
 						Active               bool
+						PriceRange           *float64 `json:"price_range"`
 					}
 				}
 			}
@@ -41,6 +43,16 @@ func TestStarterPricesAreTheGainOfLoosening(t *testing.T) {
 				t.Logf("%s at %s: price %.6g, gain %.6g, holds %s", l.Quantity, l.At, l.Price, gain, l.Drives)
 				if !(math.Abs(l.Price-gain) <= leastPriceAgreement*math.Max(gain, 1e-4)) || (l.Price > 0) != (l.Drives != "") {
 					t.Errorf("%s at %s: price %.6g, the aim gains %.6g; holds %q", l.Quantity, l.At, l.Price, gain, l.Drives)
+				}
+				if (l.Price > 0) != (l.PriceRange != nil) {
+					t.Errorf("%s at %s: price %.6g, range %v", l.Quantity, l.At, l.Price, l.PriceRange)
+				} else if l.PriceRange != nil && l.Quantity == "cowl_outer_angle_deg" {
+					step := *l.PriceRange
+					gain := (study.loosened(t, l.Quantity, l.At, upper, step) - best) / step
+					t.Logf("over %.3g, gain %.6g", step, gain)
+					if !(math.Abs(l.Price-gain) <= 0.12*l.Price) {
+						t.Errorf("%s: price %.6g, over %.3g the aim gains %.6g", l.Quantity, l.Price, step, gain)
+					}
 				}
 			}
 			if active < 2 {
