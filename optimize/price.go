@@ -10,9 +10,10 @@ import (
 	"rampwright/constraints"
 )
 
-// Price fills price and driven variable of every active check of a design from
-// exact slopes, by central differences: 2n runs of the model, for models that cost
-// little. Where the aim is the worst of several points it leaves them as they are.
+// Price fills price, its range and the driven variable of every active check of a
+// design from exact slopes, by central differences: 2n runs of the model, and 4n^2
+// for the ranges, for models that cost little. Where the aim is the worst of several
+// points it leaves them as they are.
 func Price(ctx context.Context, task Task, x []float64, checks []constraints.Check) error {
 	plan, err := newPlan(task)
 	if err != nil {
