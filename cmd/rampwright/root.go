@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -50,12 +51,16 @@ Exit codes:
 			}
 			return cmd.Help()
 		},
-		PersistentPreRunE: func(cmd *cobra.Command, args []string) error { return refuseEmpty(cmd) },
+		PersistentPreRunE: refuseEmpty,
 	}
 	root.SetIn(a.in)
 	root.SetOut(a.out)
 	root.SetErr(a.messages)
 	root.SetFlagErrorFunc(func(cmd *cobra.Command, err error) error {
+		if name, found := strings.CutPrefix(err.Error(), `invalid argument "" for "`); found {
+			name, _, _ = strings.Cut(name, `"`)
+			return emptyFlags(cmd, name)
+		}
 		return &usageError{err.Error(), "see " + cmd.CommandPath() + " --help"}
 	})
 	root.AddCommand(
@@ -79,6 +84,9 @@ Exit codes:
 // unknownCommand refuses a command there is not, with the nearest there is.
 func unknownCommand(root *cobra.Command, name string) error {
 	hint := "rampwright --help lists the commands"
+	if name == "" { // the beginning of every one
+		return &usageError{"the name of the command is empty", hint}
+	}
 	if near := root.SuggestionsFor(name); len(near) > 0 {
 		hint = "did you mean " + strings.Join(near, " or ") + "? " + hint
 	}
@@ -88,22 +96,39 @@ func unknownCommand(root *cobra.Command, name string) error {
 // worded are the flags, beside those of the brief, that take a text.
 var worded = []string{
 	"of", "output", "mach", "incidence-deg", "points", "limits-of", "move", "highest", "lowest", "svg", "at", "waves",
-	"between", "count", "counts", "kinds", "scenario", "time-limit",
+	"between", "count", "counts", "kinds", "scenario", "time-limit", "with", "quantity", "show",
 }
 
-// refuseEmpty refuses a flag that was given an empty text, which would otherwise
-// read like one that was not given. Those of the brief are judged with the brief.
-func refuseEmpty(cmd *cobra.Command) error {
+// refuseEmpty refuses an empty argument, and a flag that was given an empty text,
+// which would otherwise read like one that was not given. Flags of the brief are
+// judged with the brief.
+func refuseEmpty(cmd *cobra.Command, args []string) error {
+	if cmd.HasParent() && slices.Contains(args, "") { // else it stands for a command
+		return &usageError{"an argument is empty", "usage: " + strings.TrimSpace(cmd.UseLine())}
+	}
 	var empty []string
 	for _, name := range worded {
-		if flag := cmd.Flags().Lookup(name); flag != nil && flag.Changed && flag.Value.String() == "" {
+		flag := cmd.Flags().Lookup(name)
+		if flag == nil || !flag.Changed {
+			continue
+		}
+		values := []string{flag.Value.String()}
+		if repeated, ok := flag.Value.(interface{ GetSlice() []string }); ok {
+			values = repeated.GetSlice()
+		}
+		if slices.Contains(values, "") {
 			empty = append(empty, "--"+name)
 		}
 	}
 	if empty == nil {
 		return nil
 	}
-	return &usageError{strings.Join(empty, ", ") + ": the flag has an empty value", "see " + cmd.CommandPath() + " --help"}
+	return emptyFlags(cmd, empty...)
+}
+
+// emptyFlags refuses flags that were given an empty text.
+func emptyFlags(cmd *cobra.Command, names ...string) error {
+	return &usageError{strings.Join(names, ", ") + ": the flag has an empty value", "see " + cmd.CommandPath() + " --help"}
 }
 
 // exactArgs refuses a wrong number of arguments as bad usage.

@@ -99,6 +99,9 @@ var lowerIsBetter = []string{
 
 // tradedPair reads --between.
 func (s *study) tradedPair(text string) (pair [2]traded, err error) {
+	if text == "" {
+		return pair, &usageError{"--between is missing", "write --between recovery,length_m; rampwright quantities lists them"}
+	}
 	names := strings.Split(text, ",")
 	if len(names) != 2 {
 		return pair, &usageError{fmt.Sprintf("--between %q does not name two quantities", text), "write --between recovery,length_m; rampwright quantities lists them"}
