@@ -103,7 +103,7 @@ func (a *app) design(study *study, dir string) (err error) {
 	}()
 	a.notices(folder)
 
-	ctx, interruption := watch(limit)
+	ctx, interruption := watch(limit, a.writesWhatThereIs)
 	defer interruption.stop()
 	cached, counter := runstore.Cached(study.model, folder.Ledger(), model)
 	task := optimize.Task{Problem: cached, Limits: study.limits, Aim: study.brief.Aim}

@@ -92,7 +92,7 @@ func (a *app) envelope(study *study, flags envelopeFlags) error {
 	if err := folder.check(); err != nil {
 		return err
 	}
-	ctx, interruption := watch(0)
+	ctx, interruption := watch(0, nil)
 	defer interruption.stop()
 	shown := a.progress()
 	plan.settings.Observe = shown.showing()
@@ -124,8 +124,7 @@ func (a *app) envelope(study *study, flags envelopeFlags) error {
 func (a *app) surveyFailed(err error, interruption *interruption) error {
 	var high *envelope.NoAltitude
 	if code := interruption.code.Load(); code != 0 {
-		a.say("interrupted: nothing was written\n")
-		return &endedWith{int(code)}
+		return a.nothingWritten(code)
 	}
 	if errors.As(err, &high) {
 		return &usageError{err.Error(), "choose another range with --mach"}

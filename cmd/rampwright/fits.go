@@ -229,7 +229,7 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	if err := folder.check(); err != nil {
 		return err
 	}
-	ctx, interruption := watch(limit)
+	ctx, interruption := watch(limit, nil)
 	defer interruption.stop()
 	progress := a.progress()
 	result, err := runFits(ctx, plan, func(done, total int) {
@@ -240,8 +240,7 @@ func (a *app) fits(study *study, plan *fitsPlan, dir string) error {
 	})
 	progress.end()
 	if code := interruption.code.Load(); err != nil && code != 0 {
-		a.say("%v\n", err)
-		return &endedWith{int(code)}
+		return a.nothingWritten(code)
 	}
 	if err != nil {
 		return err

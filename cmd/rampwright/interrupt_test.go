@@ -3,9 +3,13 @@
 package main
 
 import (
+	"bufio"
+	"io"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"slices"
+	"strings"
 	"syscall"
 	"testing"
 	"time"
@@ -61,6 +65,9 @@ func TestInterruptedDesignWritesTheBestSoFar(t *testing.T) {
 			if code := run.end(t); code != c.code {
 				t.Fatalf("code %d, want %d:\n%s", code, c.code, run.messages.String())
 			}
+			if !strings.Contains(run.messages.String(), "interrupted: writing what there is\n") {
+				t.Errorf("said %q", run.messages.String())
+			}
 			ended := run.writtenResult(t, result)
 			if ended.Status != "interrupted" || len(ended.Best.Variables) != 4 || !ended.Best.Feasible || ended.Best.Aim.Exact == nil || ended.Evaluations.Samples == 0 {
 				t.Errorf("result %+v", ended)
@@ -96,7 +103,9 @@ func TestSecondSignalLeavesAtOnce(t *testing.T) {
 	if _, err := os.Stat(result); !os.IsNotExist(err) {
 		t.Errorf("a result was written: %v", err)
 	}
-	finish(t, filepath.Dir(result))
+	if messages := finish(t, filepath.Dir(result)).messages.String(); !strings.Contains(messages, "its lock is taken over") {
+		t.Errorf("the next run said %q", messages)
+	}
 }
 
 // The time limit ends a search with code 5 and its best where one is usable, with
@@ -127,5 +136,48 @@ func TestTimeLimit(t *testing.T) {
 	}
 	if ended := unusable.writtenResult(t, infeasible); ended.Status != "stopped" || ended.Best.Feasible || len(ended.Best.Variables) != 4 {
 		t.Errorf("nothing feasible: %+v", ended)
+	}
+}
+
+// A command that keeps nothing of work cut short says so.
+func TestInterruptedStudyWritesNothing(t *testing.T) {
+	fixed := []string{"--ramp-angle-deg", "8.08,7.22,8.44", "--cowl-angle-deg", "8", "--progress", "json", "-o", "result"}
+	for name, args := range map[string][]string{
+		"spread":   {"spread", "slow.yaml", "--draws", "100000"},
+		"schedule": {"schedule", "slow.yaml", "--move", "cowl_angle_deg=7..9", "--points", "200"},
+		"envelope": {"envelope", "slow.yaml", "--points", "300x100"},
+	} {
+		t.Run(name, func(t *testing.T) {
+			dir := slowFolder(t)
+			run := exec.Command(os.Args[0], append(args, fixed...)...)
+			run.Dir, run.Env = dir, append(os.Environ(), asProgram+"=1")
+			messages, err := run.StderrPipe()
+			if err != nil {
+				t.Fatal(err)
+			}
+			if err := run.Start(); err != nil {
+				t.Fatal(err)
+			}
+			defer func() { _ = run.Process.Kill() }() // has ended, unless the test failed
+			lines := bufio.NewReader(messages)
+			first, err := lines.ReadString('\n') // signals are watched by now
+			if err != nil {
+				t.Fatal(err)
+			}
+			if err := run.Process.Signal(syscall.SIGINT); err != nil {
+				t.Fatal(err)
+			}
+			rest, err := io.ReadAll(lines)
+			if err != nil {
+				t.Fatal(err)
+			}
+			_ = run.Wait() // the code is judged
+			if code := run.ProcessState.ExitCode(); code != exitInterrupted || !strings.Contains(string(rest), "interrupted: nothing was written") {
+				t.Errorf("code %d, said %s%s", code, first, rest)
+			}
+			if left := entries(t, dir); !slices.Equal(left, []string{"slow.yaml"}) {
+				t.Errorf("left behind: %q", left)
+			}
+		})
 	}
 }

@@ -137,7 +137,7 @@ func (a *app) ladder(l *ladder, dir string) (err error) {
 	for i, r := range l.rungs {
 		studies[i] = r.study
 	}
-	s, err := a.openSession(dir, "ladder", l.base, studies)
+	s, err := a.openSession(dir, "ladder", l.base, studies, a.writesWhatThereIs)
 	if err != nil {
 		return err
 	}

@@ -27,8 +27,8 @@ type session struct {
 }
 
 // openSession starts the session of a command over studies of one brief. The
-// kind goes into the title of the folder: a ladder does not replace a design.
-func (a *app) openSession(dir, kind string, base *study, studies []*study) (*session, error) {
+// kind goes into the title of the folder: a ladder does not replace a design. The first signal is told to notice.
+func (a *app) openSession(dir, kind string, base *study, studies []*study, notice func()) (*session, error) {
 	limit, err := a.limit()
 	if err != nil {
 		return nil, err
@@ -53,7 +53,7 @@ func (a *app) openSession(dir, kind string, base *study, studies []*study) (*ses
 		cached, counter := runstore.Cached(study.model, s.folder.Ledger(), hashes[i])
 		s.cached[study], s.counters = cached, append(s.counters, counter)
 	}
-	s.ctx, s.interruption = watch(limit)
+	s.ctx, s.interruption = watch(limit, notice)
 	return s, nil
 }
 

@@ -94,7 +94,7 @@ func (a *app) schedule(study *study, flags scheduleFlags) error {
 	if err := folder.check(); err != nil {
 		return err
 	}
-	ctx, interruption := watch(0)
+	ctx, interruption := watch(0, nil)
 	defer interruption.stop()
 	shown := a.progress()
 	plan.settings.Observe = shown.showing()

@@ -20,8 +20,9 @@ type interruption struct {
 var errInterrupted = errors.New("interrupted")
 
 // watch derives a context that ends at the first signal, or after the limit
-// where it is positive.
-func watch(limit time.Duration) (context.Context, *interruption) {
+// where it is positive. The first signal is told to notice, if it is not nil, from
+// a goroutine of its own.
+func watch(limit time.Duration, notice func()) (context.Context, *interruption) {
 	ctx, cancel := context.WithCancelCause(context.Background())
 	release := func() {}
 	if limit > 0 {
@@ -44,6 +45,9 @@ func watch(limit time.Duration) (context.Context, *interruption) {
 					os.Exit(int(code))
 				}
 				i.code.Store(signalCode(s))
+				if notice != nil {
+					notice()
+				}
 				cancel(errInterrupted)
 			case <-done:
 				return
@@ -58,4 +62,19 @@ func signalCode(s os.Signal) int32 {
 		return exitTerminated
 	}
 	return exitInterrupted
+}
+
+// writesWhatThereIs answers a signal at once where the end of the command takes a
+// while. A line that moves stays as it is.
+func (a *app) writesWhatThereIs() {
+	if a.form == autoProgress && terminal(a.messages) {
+		a.say("\n")
+	}
+	a.say("interrupted: writing what there is\n")
+}
+
+// nothingWritten ends an interrupted command that keeps nothing of its work.
+func (a *app) nothingWritten(code int32) error {
+	a.say("interrupted: nothing was written\n")
+	return &endedWith{int(code)}
 }

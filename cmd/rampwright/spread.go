@@ -69,7 +69,7 @@ func (a *app) spread(of *study, x []float64, draws int, dir string) (err error) 
 	if err := settings.WithDefaults(inputs).Validate(inputs); err != nil && a.jobs >= 1 {
 		return &usageError{"--" + strings.ReplaceAll(err.Error(), "\n", "; "), fmt.Sprintf("%d or more", robust.LeastDraws)}
 	}
-	s, err := a.openSession(dir, "spread", of, []*study{of})
+	s, err := a.openSession(dir, "spread", of, []*study{of}, nil)
 	if err != nil {
 		return err
 	}
@@ -103,7 +103,7 @@ func (s *session) cutDraws(err error) error {
 	case s.ctx.Err() == nil:
 		return err
 	case code != 0:
-		return &endedWith{int(code)}
+		return s.app.nothingWritten(code)
 	}
 	s.app.complain("the time was up before the draws were done", "give more time, or fewer --draws")
 	return &endedWith{exitNotMet}

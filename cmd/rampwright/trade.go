@@ -68,7 +68,7 @@ const (
 
 // trade traces the curve into a result folder.
 func (a *app) trade(of *study, between [2]traded, points int, dir string) (err error) {
-	s, err := a.openSession(dir, "trade", of, []*study{of})
+	s, err := a.openSession(dir, "trade", of, []*study{of}, a.writesWhatThereIs)
 	if err != nil {
 		return err
 	}
