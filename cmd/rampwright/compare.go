@@ -55,7 +55,7 @@ func (a *app) compare(dirs []string, file string) error {
 			return err
 		}
 		if err := os.WriteFile(file, page, 0o666); err != nil {
-			return err
+			return &unwritable{file, "choose another file with -o", err}
 		}
 		a.say("comparison page: %s\n", file)
 	}

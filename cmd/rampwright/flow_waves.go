@@ -40,6 +40,9 @@ func (w wavesFolder) check(drawing string) error {
 	if info, err := os.Stat(filepath.Dir(dir)); err != nil || !info.IsDir() {
 		return &usageError{"there is no folder " + filepath.Dir(dir) + " to make it in", "make that first, or choose another name"}
 	}
+	if err := tryToWrite(filepath.Dir(dir)); err != nil {
+		return &unwritable{dir, "choose another folder with --waves", err}
+	}
 	return nil
 }
 
@@ -79,7 +82,7 @@ func (w wavesFolder) write(a *app, flow *inlet.Flow, document *report.FlowDocume
 	}
 	dir := filepath.Clean(string(w))
 	if err := writeNewFolder(dir, files); err != nil {
-		return err
+		return &unwritable{dir, "choose another folder with --waves", err}
 	}
 	a.say("written: %s\n", dir)
 	for i := range flow.Points {

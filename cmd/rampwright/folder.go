@@ -1,10 +1,13 @@
 package main
 
 import (
+	"errors"
 	"fmt"
+	"io/fs"
 	"os"
 	"path/filepath"
 	"slices"
+	"syscall"
 
 	"rampwright/cmd/rampwright/internal/runstore"
 )
@@ -24,20 +27,34 @@ func oneOf(names []string) func(string) bool {
 	return func(name string) bool { return slices.Contains(names, name) }
 }
 
-// check refuses a folder with files that are not ours.
+// check refuses a folder with files that are not ours, and one that cannot be
+// written, before anything is computed for it.
 func (f filesFolder) check() error {
-	if f.dir == "" || f.force {
+	if f.dir == "" {
+		return nil
+	}
+	if err := f.checkOurs(); err != nil {
+		return err
+	}
+	if err := tryToWrite(f.dir); err != nil {
+		return f.unwritable(err)
+	}
+	return nil
+}
+
+func (f filesFolder) checkOurs() error {
+	if f.force {
 		return nil
 	}
 	if _, err := runstore.ReadMark(f.dir); err == nil {
 		return nil
 	}
 	entries, err := os.ReadDir(f.dir)
-	if os.IsNotExist(err) {
-		return nil
+	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
+		return nil // none yet, or none at all, which writing there tells
 	}
 	if err != nil {
-		return &usageError{"cannot write there: " + err.Error(), "name a folder"}
+		return f.unwritable(err)
 	}
 	for _, entry := range entries {
 		if !f.ours(entry.Name()) {
@@ -50,6 +67,17 @@ func (f filesFolder) check() error {
 // write writes the files, each whole or not at all, and removes those of an earlier
 // run that this one does not have.
 func (f filesFolder) write(files []file) error {
+	if err := f.put(files); err != nil {
+		return f.unwritable(err)
+	}
+	return nil
+}
+
+func (f filesFolder) unwritable(err error) error {
+	return &unwritable{f.dir, "choose another folder with -o", err}
+}
+
+func (f filesFolder) put(files []file) error {
 	if err := os.MkdirAll(f.dir, 0o777); err != nil {
 		return err
 	}
@@ -87,4 +115,42 @@ func replaceFile(name string, data []byte) error {
 		_ = os.Remove(part) // the failure is the news
 	}
 	return err
+}
+
+// unwritable is a file or folder that the system does not let us write.
+type unwritable struct {
+	path string
+	hint string // what to choose in its place
+	err  error
+}
+
+func (e *unwritable) Error() string {
+	cause := e.err
+	if inner := (*fs.PathError)(nil); errors.As(cause, &inner) {
+		cause = inner.Err // the path is said, or that of a draft
+	}
+	return fmt.Sprintf("cannot write %s: %v", e.path, cause)
+}
+
+// Hint says what the user can do about it.
+func (e *unwritable) Hint() string { return e.hint }
+
+func (e *unwritable) Unwrap() error { return e.err }
+
+// tryToWrite makes a folder in dir, or where dir is to be made, and removes it.
+func tryToWrite(dir string) error {
+	dir = filepath.Clean(dir)
+	for {
+		_, err := os.Stat(dir)
+		if parent := filepath.Dir(dir); errors.Is(err, fs.ErrNotExist) && parent != dir {
+			dir = parent
+			continue
+		}
+		break
+	}
+	trial, err := os.MkdirTemp(dir, "*.part")
+	if err != nil {
+		return err
+	}
+	return os.Remove(trial)
 }

@@ -47,7 +47,7 @@ func writeNew(file string, data []byte) error {
 		return &usageError{file + " exists and is not overwritten", "choose another name, or remove it first"}
 	}
 	if err != nil {
-		return err
+		return &unwritable{file, "choose another place for the file", err}
 	}
 	if _, err := out.Write(data); err != nil {
 		return errors.Join(err, out.Close(), os.Remove(file))

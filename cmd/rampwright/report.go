@@ -69,7 +69,7 @@ func (a *app) report(dir string, with []string, file string) error {
 		return err
 	}
 	if err := os.WriteFile(file, page, 0o666); err != nil {
-		return err
+		return &unwritable{file, "choose another file with -o", err}
 	}
 	a.say("review page: %s\n", file)
 	return nil

@@ -1,8 +1,11 @@
 package runstore
 
 import (
+	"errors"
 	"fmt"
+	"io/fs"
 	"os"
+	"syscall"
 	"time"
 )
 
@@ -88,6 +91,20 @@ func (e *Failure) Error() string {
 		cause = inner.Err
 	}
 	return fmt.Sprintf("cannot %s %s: %v", e.Doing, e.Path, cause)
+}
+
+// Hint says what the user can do about a place where nothing may be written, and
+// nothing where something else failed.
+func (e *Failure) Hint() string {
+	if e.Doing == "read" {
+		return ""
+	}
+	for _, refusal := range []error{fs.ErrPermission, syscall.EROFS, syscall.ENOTDIR} {
+		if errors.Is(e.Err, refusal) {
+			return "cannot write here: choose another folder with -o"
+		}
+	}
+	return ""
 }
 
 // Unwrap returns the system's error.

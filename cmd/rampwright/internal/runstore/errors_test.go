@@ -4,6 +4,7 @@ import (
 	"errors"
 	"os"
 	"path/filepath"
+	"syscall"
 	"testing"
 )
 
@@ -78,6 +79,24 @@ func TestErrorsSayWhatAndWhere(t *testing.T) {
 	} {
 		if got := err.Error(); got != want {
 			t.Errorf("%q, want %q", got, want)
+		}
+	}
+}
+
+// A place where nothing may be written has a hint; a full disk is no better elsewhere.
+func TestAFailureHintsAtAnotherFolder(t *testing.T) {
+	for _, c := range []struct {
+		failure *Failure
+		hinted  bool
+	}{
+		{&Failure{"lock", "r.lock", &os.PathError{Op: "open", Path: "r.lock", Err: syscall.EACCES}}, true},
+		{&Failure{"create", "r.part", &os.PathError{Op: "mkdir", Path: "r.part", Err: syscall.EROFS}}, true},
+		{&Failure{"create", "r", &os.PathError{Op: "mkdir", Path: "r", Err: syscall.ENOTDIR}}, true},
+		{&Failure{"write", "r/x", &os.PathError{Op: "write", Path: "r/x", Err: errNoSpace}}, false},
+		{&Failure{"read", "r/x", &os.PathError{Op: "open", Path: "r/x", Err: syscall.EACCES}}, false},
+	} {
+		if hint := c.failure.Hint(); (hint != "") != c.hinted {
+			t.Errorf("%v: hint %q", c.failure, hint)
 		}
 	}
 }
