@@ -71,6 +71,13 @@ func (a *app) report(dir string, with []string, file string) error {
 	if err := os.WriteFile(file, page, 0o666); err != nil {
 		return &unwritable{file, "choose another file with -o", err}
 	}
+	notices, err := report.StudyNotices(*folder)
+	if err != nil {
+		return err
+	}
+	for _, notice := range notices {
+		a.say("%s\n", notice)
+	}
 	a.say("review page: %s\n", file)
 	return nil
 }

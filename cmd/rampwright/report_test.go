@@ -124,6 +124,25 @@ func TestReportWithStudies(t *testing.T) {
 	}
 }
 
+// A flow of the design itself is shown without a word; one of another brief is named.
+func TestReportWithTheFlowOfAnotherBrief(t *testing.T) {
+	dir, other, folder := designStarter(t, "veyric-6").folder(t), designStarter(t, "ondrel-3").folder(t), t.TempDir()
+	for _, c := range []struct{ brief, of, want string }{
+		{"veyric-6", dir, ""},
+		{"ondrel-3", other, "flow.json: Run for another brief than the design of this page: ONDREL-3"},
+	} {
+		waves := filepath.Join(folder, c.brief)
+		if got := command("flow", starterBrief(c.brief), "--of", c.of, "--waves", waves); got.code != exitDone {
+			t.Fatalf("%+v", got)
+		}
+		got := command("report", dir, "--with", waves)
+		notices, _, _ := strings.Cut(got.messages, "review page: ")
+		if got.code != exitDone || !strings.HasPrefix(notices, c.want) || (notices == "") != (c.want == "") {
+			t.Errorf("%s: %+v", c.brief, got)
+		}
+	}
+}
+
 // Results stand side by side as text, JSON and page.
 func TestCompareStarters(t *testing.T) {
 	var args []string

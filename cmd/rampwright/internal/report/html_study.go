@@ -75,7 +75,10 @@ type studyPage struct {
 	StudyFile `json:"-"`
 
 	Format    int               `json:"format"`
+	Title     string            `json:"title"`
 	BriefHash string            `json:"brief_hash"`
+	Inlet     *Shape            `json:"inlet"`     // of a flow
+	Variables Object[Number]    `json:"variables"` // held by a map, or as drawn
 	Status    string            `json:"status"`
 	Why       string            `json:"why"`
 	Advice    []string          `json:"advice"`
@@ -122,8 +125,8 @@ func (r *result) studySections() []chapter {
 
 func (r *result) studySection(part studyPart, s *studyPage) chapter {
 	c := chapter{ID: s.Name, Head: part.head}
-	if s.BriefHash != r.BriefHash {
-		c.warn(words("Run for another brief than the design above: hash "), s.text(s.BriefHash, "brief_hash"), words("."))
+	for _, sentence := range r.strange(s) {
+		c.warn(sentence...)
 	}
 	if s.Status == "stopped" || s.Status == "interrupted" {
 		c.warn(words("The run was cut short: what follows is part of what was asked."))
@@ -142,6 +145,7 @@ func (r *result) studySection(part studyPart, s *studyPage) chapter {
 	for _, p := range s.Pictures {
 		c.figures(false, htmlFigure{Picture: foreign(p.Name, p.Data)})
 	}
+	c.table(r.geometryTable(s))
 	if err := part.tables(&c, s); err != nil {
 		c.warn(words("%s.json: %v", s.Name, err))
 	}

@@ -2,6 +2,7 @@ package report
 
 import (
 	"bytes"
+	"encoding/json"
 	"errors"
 	"io"
 	"strings"
@@ -60,7 +61,7 @@ func TestPageShowsStudies(t *testing.T) {
 	}
 	for _, want := range []string{
 		">Points<", "Static pressure along the walls at ", ">cowl inside<", ">sum, ", " falls inside the lip: ", `aria-label="Pressure along the walls: over"`,
-		"Run for another brief", "The run was cut short", "two thirds of 100 draws", ">Quantities<", ">States<", ">Shock inside the lip<", "envelope.json has all",
+		"Run for another brief than the design of this page: hash", "The geometry is not that of the design of this page.", ">Geometry<", ">x of the design, m<", "The run was cut short", "two thirds of 100 draws", ">Quantities<", ">States<", ">Shock inside the lip<", "envelope.json has all",
 		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, `id="map-hatch"`, `id="waves-1-hatch"`, "pass_<wbr />probability", "knee of the curve", "Number of ramps ", ">40<", ">4.5000<", ">yes<", ">no<",
 	} {
 		if !bytes.Contains(page, []byte(want)) {
@@ -71,6 +72,50 @@ func TestPageShowsStudies(t *testing.T) {
 		if bytes.Contains(page, []byte(not)) {
 			t.Errorf("the page holds %q", not)
 		}
+	}
+}
+
+// A study of another brief or geometry says so; one of the design itself does not.
+func TestStudiesOfAnotherDesign(t *testing.T) {
+	f := folderOf(t, study(t))
+	var design DesignDocument
+	if err := json.Unmarshal(f.Result, &design); err != nil {
+		t.Fatal(err)
+	}
+	flow := func(title, hash string, move float64) StudyFile {
+		shape := *design.Inlet
+		lip := *shape.Lip
+		lip[0] += Number(move)
+		shape.Lip = &lip
+		return StudyFile{"flow", compact(FlowDocument{Format: format, Title: title, BriefHash: hash, Inlet: shape}), nil}
+	}
+	first := design.Best.Variables[0]
+	mapped := func(value Number) StudyFile {
+		return StudyFile{"envelope", compact(EnvelopeDocument{Format: format, Title: design.Title, BriefHash: design.BriefHash, Variables: Object[Number]{{first.Name, value}}}), nil}
+	}
+	for _, c := range []struct {
+		study StudyFile
+		want  []string // parts of the notices
+	}{
+		{flow(design.Title, design.BriefHash, 0), nil},
+		{flow(design.Title, design.BriefHash, 1e-5), []string{"flow.json: The geometry is not that"}},
+		{flow("Another", "another", 0), []string{"flow.json: Run for another brief than the design of this page: Another, hash another."}},
+		{flow(design.Title, "another", 1e-5), []string{"of the same title: hash another.", "The geometry is not that"}},
+		{mapped(first.Value), nil},
+		{mapped(first.Value + 0.5), []string{"envelope.json: The searched values are not those of the design of this page: " + first.Name + " "}},
+	} {
+		f.Studies = []StudyFile{c.study}
+		got, err := StudyNotices(f)
+		if err != nil || len(got) != len(c.want) {
+			t.Errorf("notices %q, %v; want %q", got, err, c.want)
+			continue
+		}
+		for i, want := range c.want {
+			if !strings.Contains(got[i], want) {
+				t.Errorf("notice %q, want %q", got[i], want)
+			}
+		}
+		checkPage(t, pageOf(t, f), documents(f))
 	}
 }
 
