@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 	"reflect"
+	"slices"
 	"strings"
 	"testing"
 
@@ -91,6 +92,27 @@ func TestEnvelopeDocument(t *testing.T) {
 	}
 	if got := d.crossing("limit", "recovery >= 0.95", 0); len(got) != 2 || math.Abs(got[0]-4.5) > 1e-5 || math.Abs(got[1]-5.5) > 1e-5 {
 		t.Errorf("recovery 0.95 is crossed at Mach %v, want 4.5 and 5.5", got)
+	}
+}
+
+// A long table along the map is thinned evenly, never of its ends or a flight point.
+func TestEnvelopeAlongTheMap(t *testing.T) {
+	d := &EnvelopeDocument{study: EnvelopeStudy{Definition: inlet.Definition{Points: []inlet.Point{{Mach: 3}, {Mach: 3.3}, {Mach: 9}}}}}
+	for i := range 16 {
+		d.Grid.Mach = append(d.Grid.Mach, Number(2.8+0.1*float64(i)))
+	}
+	for n, want := range map[int][]int{
+		3: {0, 1, 2}, 11: {0, 1, 2, 3, 4, 5, 6, 7, 8, 9, 10},
+		15: {0, 2, 4, 5, 6, 8, 10, 12, 14}, 16: {0, 2, 4, 5, 6, 8, 10, 12, 14, 15},
+	} {
+		short := *d
+		short.Grid.Mach = d.Grid.Mach[:n]
+		if got, _ := short.alongShown(); !slices.Equal(got, want) {
+			t.Errorf("of %d Mach numbers %v, want %v", n, got, want)
+		}
+	}
+	if text := ridgeDocument(t).Text(80); !strings.Contains(text, "One Mach number in 7 is shown, with the last and those of flight points; CSV") {
+		t.Errorf("the thinning is not told:\n%s", text)
 	}
 }
 

@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"rampwright/problems/envelope"
+	"rampwright/problems/inlet"
 )
 
 // stateLetters are the states on the map of letters; a capital keeps every limit.
@@ -203,23 +204,35 @@ var alongColumns = []struct {
 	{"spillage_drag", "spillage\ndrag", 0}, {"internal_contraction_over_self_start", "over\nself-start", 1},
 }
 
-// alongRows is how many conditions that table has at most.
+// alongRows is how many conditions that table has, less the last and those at flight
+// points.
 const alongRows = 11
+
+// alongShown lists the Mach numbers of the table, by their place in the grid: one in
+// so many, the last, and those of flight points.
+func (d *EnvelopeDocument) alongShown() (shown []int, every int) {
+	n := len(d.Grid.Mach)
+	every = (n + alongRows - 1) / alongRows
+	for i, mach := range d.Grid.Mach {
+		flown := slices.ContainsFunc(d.study.Definition.Points, func(p inlet.Point) bool { return math.Abs(p.Mach-float64(mach)) < 1e-9 })
+		if i%every == 0 || i == n-1 || flown {
+			shown = append(shown, i)
+		}
+	}
+	return shown, every
+}
 
 // along writes the state of the inlet along the middle incidence.
 func (d *EnvelopeDocument) along(p *page) {
-	n, m := len(d.Grid.Mach), len(d.Grid.IncidenceDeg)
+	m := len(d.Grid.IncidenceDeg)
 	j := m / 2
 	p.heading(fmt.Sprintf("At incidence %s deg", plain(float64(d.Grid.IncidenceDeg[j]))))
 	t := &table{columns: []column{{head: "Mach"}, {head: "state"}}}
 	for _, c := range alongColumns {
 		t.columns = append(t.columns, column{head: c.head, drop: c.drop})
 	}
-	for k := range min(n, alongRows) {
-		i := k
-		if n > alongRows {
-			i = int(math.Round(float64(k) / (alongRows - 1) * float64(n-1)))
-		}
+	shown, every := d.alongShown()
+	for _, i := range shown {
 		row := &d.Rows[i*m+j]
 		cells := []string{significant(float64(row.Mach)), string(row.letter())}
 		for _, c := range alongColumns {
@@ -231,6 +244,9 @@ func (d *EnvelopeDocument) along(p *page) {
 		}
 	}
 	p.table(t)
+	if every > 1 {
+		p.wrap(indent, fmt.Sprintf("One Mach number in %d is shown, with the last and those of flight points; CSV and JSON have all.", every), indent)
+	}
 }
 
 // CSV writes envelope.csv: one row a condition with every quantity, empty where
