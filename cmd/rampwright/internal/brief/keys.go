@@ -228,7 +228,7 @@ func (k Key) allowedNumbers() string {
 	case k.OpenLow:
 		text = "above " + shortNumber(k.Low) + ", to " + shortNumber(k.High)
 	}
-	if k.Form == Whole {
+	if k.Form == Whole && k.Low < k.High {
 		text = fmt.Sprintf("whole number, %s", text)
 	}
 	if k.Unit != "" {

@@ -59,7 +59,8 @@ func (r *reader) number(parent *node, k Key, path string) float64 {
 
 // wholeOf reads a scalar as a whole number in the key's range.
 func (r *reader) wholeOf(n *node, k Key) (int64, bool) {
-	if n.quoted || !isDecimal(n.text) || digits(n.text) != len(n.text) {
+	unsigned := strings.TrimPrefix(n.text, "-") // a whole number all the same, out of range
+	if n.quoted || !isDecimal(n.text) || digits(unsigned) != len(unsigned) {
 		hint := "leave out the quotes"
 		if !n.quoted {
 			hint = decimalHint(n.text)

@@ -134,7 +134,7 @@ func TestTableOfKeys(t *testing.T) {
 		t.Errorf("%d keys have a flag", got)
 	}
 	for path, want := range map[string]string{
-		"inlet.width_m": "0.001 to 50 m", "gas.model": "perfect", "limits.at_least": "a decimal number or none", "range.from": "any decimal number", "flight": "list of up to 50 sections", "title": "text", "brief": "whole number, 1",
+		"inlet.width_m": "0.001 to 50 m", "gas.model": "perfect", "limits.at_least": "a decimal number or none", "range.from": "any decimal number", "flight": "list of up to 50 sections", "title": "text", "brief": "1",
 	} {
 		section, name, nested := strings.Cut(path, ".")
 		if !nested {
