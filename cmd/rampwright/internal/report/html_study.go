@@ -31,10 +31,7 @@ type studyPart struct {
 // studyParts are the studies a page has room for, in its order.
 var studyParts = []studyPart{
 	{"flow", "Flow of the given geometry", nil, flowTables},
-	{"envelope", "Envelope", []string{"map", "capture", "drag", "waves-1", "waves-2", "waves-3", "waves-4"}, plainTables(
-		plainList{of: "states"},
-		plainList{"boundary", []string{"name", "quantity", "closed"}},
-	)},
+	{"envelope", "Envelope", []string{"map", "capture", "drag", "waves-1", "waves-2", "waves-3", "waves-4"}, envelopeTables},
 	{"schedule", "Schedule", nil, plainTables(
 		plainList{"rows", []string{"mach", "angle_deg", "limits_kept", "at_stop", "low_deg", "high_deg", "aim", "status"}},
 	)},

@@ -44,14 +44,16 @@ func plainTables(lists ...plainList) func(*chapter, *studyPage) error {
 
 // rows tables a list of objects.
 func (s *studyPage) rows(l plainList, rows []Object[json.RawMessage]) *htmlTable {
-	t := &htmlTable{Caption: heads(inWords(l.of))}
+	t := &htmlTable{Caption: heads(captionOf(l.of))}
 	if len(rows) == 0 {
 		return t
 	}
+	var keys []string
 	for _, column := range rows[0] {
 		value, plain := s.plain(column.Value)
 		if plain && (l.columns == nil || slices.Contains(l.columns, column.Name)) {
-			t.Head = append(t.Head, cell{Text: column.Name, Number: value.Number})
+			keys = append(keys, column.Name)
+			t.Head = append(t.Head, cell{Text: inWords(column.Name), Number: value.Number})
 		}
 	}
 	if len(t.Head) == 0 {
@@ -59,10 +61,10 @@ func (s *studyPage) rows(l plainList, rows []Object[json.RawMessage]) *htmlTable
 	}
 	for i, row := range rows[:min(len(rows), mostRows)] {
 		var cells []cell
-		for _, h := range t.Head {
-			raw, _ := row.Get(h.Text)
-			value, _ := s.plain(raw, l.of, i, h.Text)
-			if value.Value != "" && wholeColumn(rows, h.Text) {
+		for _, key := range keys {
+			raw, _ := row.Get(key)
+			value, _ := s.plain(raw, l.of, i, key)
+			if value.Value != "" && wholeColumn(rows, key) {
 				value.Text = value.Value
 			}
 			cells = append(cells, value)
@@ -89,7 +91,7 @@ func whole(number json.RawMessage) bool { return !bytes.ContainsAny(number, ".eE
 func (s *studyPage) numbers(of Object[json.RawMessage], path ...any) *htmlTable {
 	t := &htmlTable{Head: columnHeads(1, "", "")}
 	if len(path) > 0 {
-		t.Caption = heads(inWords(path[0].(string)))
+		t.Caption = heads(captionOf(path[0].(string)))
 	}
 	for _, f := range of {
 		value, ok := s.plain(f.Value, append(path[:len(path):len(path)], f.Name)...)
@@ -97,18 +99,11 @@ func (s *studyPage) numbers(of Object[json.RawMessage], path ...any) *htmlTable 
 			if whole(f.Value) {
 				value.Text = value.Value
 			}
-			name := f.Name
-			if unit := unitOf[name]; unit != "" {
-				name += ", " + unit
-			}
-			t.Rows = append(t.Rows, []cell{words("%s", name), value})
+			t.Rows = append(t.Rows, []cell{words("%s", inWords(f.Name)), value})
 		}
 	}
 	return t
 }
-
-// unitOf is the unit of a number whose name does not state it.
-var unitOf = map[string]string{"truncated_at": "standard deviations"}
 
 // bookkeeping are numbers that say nothing of the inlet.
 var bookkeeping = []string{"format", "seed"}
@@ -139,8 +134,39 @@ func yesNo(v bool) string {
 	return "no"
 }
 
-// inWords is a key as a caption.
+// keyWords are what keys of studies stand for, with units. A probability is a
+// fraction of the draws.
+var keyWords = map[string]string{
+	"name": "flight point", "mach": "Mach number", "incidence_deg": "incidence, deg", "pressure_kPa": "pressure, kPa",
+	"temperature_K": "temperature, K", "status": "state",
+	"angle_deg": "angle, deg", "limits_kept": "limits kept", "at_stop": "at hinge stop", "low_deg": "limits kept from, deg", "high_deg": "to, deg",
+	"truncated_at": "tolerances truncated at, standard deviations", "pass_probability": "probability that every limit holds",
+	"pass_probability_error": "its standard error", "surrogate_pass_probability": "the same by surrogates",
+	"low": "at least", "high": "at most", "nominal_margin": "margin as drawn, in the unit of the quantity", "affected": "moved by a tolerance",
+	"probability": "probability that it holds", "probability_error": "its standard error", "surrogate_probability": "the same by surrogates",
+	"share": "fraction of draws", "error": "its standard error", "traced_share": "fraction of draws, traced",
+	"nominal": "as drawn", "standard_deviation": "standard deviation",
+	"p05": "fifth percentile", "p50": "median", "p95": "ninety-fifth percentile",
+}
+
+// inWords is what a key stands for; a state of the flow is in words as it is.
 func inWords(key string) string {
+	if text, ok := keyWords[key]; ok {
+		return text
+	}
+	return key
+}
+
+// listWords are the captions of lists whose key says too little.
+var listWords = map[string]string{
+	"points": "Flight points", "rows": "Position of the movable part", "per_limit": "How often each limit holds", "unanswered": "Draws without an answer",
+}
+
+// captionOf is the key of a list as a caption.
+func captionOf(key string) string {
+	if text, ok := listWords[key]; ok {
+		return text
+	}
 	text := strings.ReplaceAll(key, "_", " ")
 	return strings.ToUpper(text[:1]) + text[1:]
 }

@@ -202,3 +202,49 @@ func flowTables(c *chapter, s *studyPage) error {
 	c.traces(s.Name, points)
 	return nil
 }
+
+// envelopeTables counts the conditions of a map by state, and tells between which Mach
+// numbers each boundary runs.
+func envelopeTables(c *chapter, s *studyPage) error {
+	if err := plainTables(plainList{of: "states"})(c, s); err != nil {
+		return err
+	}
+	var lines []EnvelopeLine
+	if raw, ok := s.fields.Get("boundary"); ok {
+		if err := json.Unmarshal(raw, &lines); err != nil {
+			return err
+		}
+	}
+	t := &htmlTable{Caption: heads("Boundaries"), Head: columnHeads(1, "boundary", "lowest Mach number", "at incidence, deg", "highest Mach number", "at incidence, deg")}
+	for i := range lines[:min(len(lines), mostRows)] {
+		line := &lines[i]
+		row := []cell{s.text(line.Name, "boundary", i, "name")}
+		for _, at := range line.ends() {
+			for k := range 2 {
+				if at < 0 {
+					row = append(row, cell{Text: none, Number: true})
+					continue
+				}
+				row = append(row, number(line.Points[at][k], s.Name, "boundary", i, "points", at, k))
+			}
+		}
+		t.Rows = append(t.Rows, row)
+	}
+	c.table(t)
+	c.cutOff(s, len(lines))
+	return nil
+}
+
+// ends are the points of least and greatest Mach number, -1 where there is none.
+func (l *EnvelopeLine) ends() (at [2]int) {
+	at = [2]int{-1, -1}
+	for i, p := range l.Points {
+		if at[0] < 0 || p[0] < l.Points[at[0]][0] {
+			at[0] = i
+		}
+		if at[1] < 0 || p[0] > l.Points[at[1]][0] {
+			at[1] = i
+		}
+	}
+	return at
+}

@@ -26,7 +26,7 @@ func studies(t *testing.T) []StudyFile {
 	spread := `{"format": 1, "brief_hash": "abc", "seed": 4, "name": "no study's", "cautions": ["two thirds of 100 draws put a shock inside"], "pass_probability": 0.25, "empty": [],
 "quantities": [{"quantity": "recovery", "at": "cruise", "mean": 0.5, "p05": null, "of": {"a": 1}}, {"quantity": "length_m", "at": "geometry", "mean": 0.6, "p05": 0.1}],
 "per_limit": [{"quantity": "length_m", "affected": true, "unheard": 3}, {"quantity": "recovery", "affected": false}], "unanswered": [], "shock_inside_the_lip": [{"at": "cruise", "share": 0.66}]}`
-	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "states": {"regular": 40, "flow ends": 3}, "boundary": [` +
+	envelope := `{"format": 1, "brief_hash": "another", "status": "stopped", "states": {"regular": 40, "flow ends": 3}, "boundary": [{"name": "edge", "closed": false, "points": [[4.25, 1], [3.5, -2], [5.75, 2]]}, ` +
 		strings.Repeat(`{"name": "a", "quantity": "b", "closed": true},`, mostRows+1) + `{"name": "last", "points": [[1, 2]]}]}`
 	schedule := `{"format": 1, "brief_hash": "abc", "rows": [{"mach": 4.5, "angle_deg": 3.25, "limits_kept": true, "limits_missed": []}]}`
 	problem, flow := flowOf(t, swallowed(), 8.08, 7.22, 8.44, 8)
@@ -60,15 +60,15 @@ func TestPageShowsStudies(t *testing.T) {
 		at = next
 	}
 	for _, want := range []string{
-		">Points<", "Static pressure along the walls at ", ">cowl inside<", ">sum, ", " falls inside the lip: ", `aria-label="Pressure along the walls: over"`,
+		">Flight points<", "Static pressure along the walls at ", ">cowl inside<", ">sum, ", " falls inside the lip: ", `aria-label="Pressure along the walls: over"`,
 		"Run for another brief than the design of this page: hash", "The geometry is not that of the design of this page.", ">Geometry<", ">x of the design, m<", "The run was cut short", "two thirds of 100 draws", ">Quantities<", ">States<", ">Shock inside the lip<", "envelope.json has all",
-		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, `id="map-hatch"`, `id="waves-1-hatch"`, "pass_<wbr />probability", "knee of the curve", "Number of ramps ", ">40<", ">4.5000<", ">yes<", ">no<",
+		`id="ladder-hatch"`, `url(#ladder-hatch)`, `id="spread-hatch"`, `id="map-hatch"`, `id="waves-1-hatch"`, ">probability that every limit holds<", ">Boundaries<", ">Position of the movable part<", ">How often each limit holds<", ">limits kept<", "knee of the curve", "Number of ramps ", ">40<", ">4.5000<", ">3.5000<", ">5.7500<", ">yes<", ">no<",
 	} {
 		if !bytes.Contains(page, []byte(want)) {
 			t.Errorf("the page does not hold %q", want)
 		}
 	}
-	for _, not := range []string{"Not drawn", ">Unanswered<", "unheard", ">last<"} {
+	for _, not := range []string{"Not drawn", ">Unanswered<", "unheard", ">last<", ">pass_<wbr />probability", ">Rows<", ">closed<"} {
 		if bytes.Contains(page, []byte(not)) {
 			t.Errorf("the page holds %q", not)
 		}
