@@ -32,9 +32,7 @@ type studyPart struct {
 var studyParts = []studyPart{
 	{"flow", "Flow of the given geometry", nil, flowTables},
 	{"envelope", "Envelope", []string{"map", "capture", "drag", "waves-1", "waves-2", "waves-3", "waves-4"}, envelopeTables},
-	{"schedule", "Schedule", nil, plainTables(
-		plainList{"rows", []string{"mach", "angle_deg", "limits_kept", "at_stop", "low_deg", "high_deg", "aim", "status"}},
-	)},
+	{"schedule", "Schedule", nil, scheduleTables},
 	{"spread", "Tolerances", nil, plainTables(
 		plainList{of: everything},
 		plainList{"per_limit", []string{"quantity", "at", "low", "high", "nominal_margin", "affected", "probability", "probability_error", "surrogate_probability"}},
@@ -74,8 +72,10 @@ type studyPage struct {
 	Format    int               `json:"format"`
 	Title     string            `json:"title"`
 	BriefHash string            `json:"brief_hash"`
-	Inlet     *Shape            `json:"inlet"`     // of a flow
-	Variables Object[Number]    `json:"variables"` // held by a map, or as drawn
+	Inlet     *Shape            `json:"inlet"`      // of a flow
+	Variables Object[Number]    `json:"variables"`  // held by a map, or as drawn
+	Moved     string            `json:"moved"`      // the variable that a schedule moves
+	DesignDeg Number            `json:"design_deg"` // its value as designed
 	Status    string            `json:"status"`
 	Why       string            `json:"why"`
 	Advice    []string          `json:"advice"`

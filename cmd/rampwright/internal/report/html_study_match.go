@@ -46,15 +46,21 @@ func (r *result) strange(s *studyPage) [][]cell {
 		list = append(list, []cell{words("The geometry is not that of the design of this page.")})
 	}
 	var differ []cell
-	for _, v := range s.Variables {
-		if designed, ok := r.Best.Variables.Get(v.Name); ok && !sameLength(v.Value, designed, designed) {
+	compare := func(name string, value Number, path ...any) {
+		if designed, ok := r.Best.Variables.Get(name); ok && !sameLength(value, designed, designed) {
 			between := "; "
 			if differ == nil {
 				between = "The searched values are not those of the design of this page: "
 			}
-			differ = append(differ, words("%s%s ", between, v.Name), number(v.Value, s.Name, "variables", v.Name),
-				words(", of the design "), number(designed, "result", "best", "variables", v.Name))
+			differ = append(differ, words("%s%s ", between, name), number(value, s.Name, path...),
+				words(", of the design "), number(designed, "result", "best", "variables", name))
 		}
+	}
+	for _, v := range s.Variables {
+		compare(v.Name, v.Value, "variables", v.Name)
+	}
+	if s.Moved != "" {
+		compare(s.Moved, s.DesignDeg, "design_deg")
 	}
 	if differ != nil {
 		list = append(list, append(differ, words(".")))

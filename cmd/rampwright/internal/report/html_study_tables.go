@@ -248,3 +248,12 @@ func (l *EnvelopeLine) ends() (at [2]int) {
 	}
 	return at
 }
+
+// scheduleTables names the part that moves, and has one row a Mach number.
+func scheduleTables(c *chapter, s *studyPage) error {
+	if s.Moved != "" {
+		c.say(words("What moves: "), s.text(s.Moved, "moved"), words("; as designed "), number(s.DesignDeg, s.Name, "design_deg"), words(" deg."))
+	}
+	columns := []string{"mach", "angle_deg", "limits_kept", "at_stop", "low_deg", "high_deg", "aim", "status"}
+	return plainTables(plainList{"rows", columns})(c, s)
+}

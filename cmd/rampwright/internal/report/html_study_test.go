@@ -93,6 +93,9 @@ func TestStudiesOfAnotherDesign(t *testing.T) {
 	mapped := func(value Number) StudyFile {
 		return StudyFile{"envelope", compact(EnvelopeDocument{Format: format, Title: design.Title, BriefHash: design.BriefHash, Variables: Object[Number]{{first.Name, value}}}), nil}
 	}
+	moved := func(value Number) StudyFile {
+		return StudyFile{"schedule", compact(ScheduleDocument{Format: format, Title: design.Title, BriefHash: design.BriefHash, Moved: first.Name, DesignDeg: value}), nil}
+	}
 	for _, c := range []struct {
 		study StudyFile
 		want  []string // parts of the notices
@@ -102,6 +105,8 @@ func TestStudiesOfAnotherDesign(t *testing.T) {
 		{flow("Another", "another", 0), []string{"flow.json: Run for another brief than the design of this page: Another, hash another."}},
 		{flow(design.Title, "another", 1e-5), []string{"of the same title: hash another.", "The geometry is not that"}},
 		{mapped(first.Value), nil},
+		{moved(first.Value), nil},
+		{moved(first.Value + 1), []string{"schedule.json: The searched values are not those of the design of this page: " + first.Name + " "}},
 		{mapped(first.Value + 0.5), []string{"envelope.json: The searched values are not those of the design of this page: " + first.Name + " "}},
 	} {
 		f.Studies = []StudyFile{c.study}
