@@ -100,7 +100,7 @@ var lowerIsBetter = []string{
 // tradedPair reads --between.
 func (s *study) tradedPair(text string) (pair [2]traded, err error) {
 	if text == "" {
-		return pair, &usageError{"--between is missing", "write --between recovery,length_m; rampwright quantities lists them"}
+		return pair, &usageError{"--between is missing: name the two quantities", "write --between recovery,length_m; rampwright quantities lists them"}
 	}
 	names := strings.Split(text, ",")
 	if len(names) != 2 {

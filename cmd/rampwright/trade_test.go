@@ -159,7 +159,7 @@ func TestTradeUsage(t *testing.T) {
 		args []string
 		says string
 	}{
-		"nothing":       {[]string{file}, "two quantities"},
+		"nothing":       {[]string{file}, "--between is missing"},
 		"three":         {[]string{file, "--between", "recovery,length_m,capture"}, "two quantities"},
 		"unknown":       {[]string{file, "--between", "recovry,length_n"}, "recovry; the problem has no quantity length_n"},
 		"unknown point": {[]string{file, "--between", "recovery@dash,length_m"}, "recovery@dash"},
