@@ -64,6 +64,8 @@ var flowRules = []rule{
 	{"contraction_beyond_isentropic", beyondIsentropic},
 	{"contraction_above_self_start", aboveSelfStart},
 	{"pressure_rise", pressureRise},
+	{"shock_inside", shockInside},
+	{"reflected_rise", reflectedRise},
 	{"static_temperature", staticTemperature},
 	{"lip_shock_miss", lipShockMiss},
 	{"separation_extrapolated", separationExtrapolated},
@@ -202,8 +204,17 @@ func pressureRise(in *inspection, p *inlet.PointFlow) (float64, string, string) 
 	if !(share > separationShare) {
 		return 0, "", ""
 	}
-	return share, fmt.Sprintf("The pressure ratio across the shock at %s uses %.3g %% of the separation limit at %s (%s, caution above %g %%).",
-		r.member, 100*share, p.Point.Name, separationSource, 100*separationShare), fmt.Sprintf("%s %.3g %%", r.member, 100*share)
+	return share, fmt.Sprintf("The pressure ratio across the %s uses %.3g %% of the separation limit at %s (%s, caution above %g %%).",
+		shockOf(r.member), 100*share, p.Point.Name, separationSource, 100*separationShare), fmt.Sprintf("%s %.3g %%", r.member, 100*share)
+}
+
+// shockOf names the shock of a member of the separation margin: a ramp, by its corner,
+// or the lip shock.
+func shockOf(member string) string {
+	if strings.HasSuffix(member, "shock") {
+		return member
+	}
+	return member + " shock"
 }
 
 func staticTemperature(in *inspection, p *inlet.PointFlow) (float64, string, string) {

@@ -58,7 +58,7 @@ func TestFlowCautions(t *testing.T) {
 			flowCase{supersonic, nil, []float64{8, 7, 8.5, 8}}, flowCase{supersonic, nil, []float64{8, 7, 8.5, 18}}, "cruise", "1.4",
 		},
 		"pressure_rise": {
-			flowCase{supersonic, nil, []float64{4, 4, 16, 2}}, flowCase{supersonic, nil, []float64{8, 7, 8.5, 8}}, "cruise", "lip shock uses 1",
+			flowCase{supersonic, nil, []float64{4, 4, 16, 2}}, flowCase{supersonic, nil, []float64{8, 7, 8.5, 8}}, "cruise", "across the lip shock uses 1",
 		},
 		"static_temperature": {
 			flowCase{supersonic, func(d *inlet.Definition) { d.Points[0].Temperature = 700 }, []float64{8, 7, 8.5, 8}},
@@ -71,6 +71,14 @@ func TestFlowCautions(t *testing.T) {
 		"separation_extrapolated": {
 			flowCase{ramjet, nil, gentle},
 			flowCase{ramjet, func(d *inlet.Definition) { d.Points = d.Points[3:] }, gentle}, "takeover", "Mach 1.3",
+		},
+		"shock_inside": {
+			flowCase{supersonic, func(d *inlet.Definition) { d.Points[0].Mach = 6.5 }, []float64{8, 7, 8.5, 8}},
+			flowCase{supersonic, nil, []float64{8, 7, 8.5, 8}}, "cruise", "say nothing of that reflection",
+		},
+		"reflected_rise": {
+			flowCase{supersonic, func(d *inlet.Definition) { d.Points[0].Mach = 6.5 }, []float64{8, 7, 8.5, 8}},
+			flowCase{supersonic, nil, []float64{8, 7, 8.5, 8}}, "cruise", "A shock that reflects on the inner cowl at cruise",
 		},
 		"steep_ramp": {
 			flowCase{supersonic, nil, []float64{15.5, 3, 3, 8}}, flowCase{supersonic, nil, []float64{14.5, 3, 3, 8}}, "geometry", "amp 1 turns by 15.5",

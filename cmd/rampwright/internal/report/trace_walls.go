@@ -1,8 +1,6 @@
 package report
 
 import (
-	"fmt"
-
 	"rampwright/problems/contour"
 	"rampwright/problems/inlet"
 	"rampwright/problems/wave"
@@ -166,7 +164,7 @@ func (f *Force) add(other Force) {
 func newLipShocks(t *wave.Trace) []LipShock {
 	list := []LipShock{}
 	for _, s := range t.LipShocks {
-		list = append(list, LipShock{fmt.Sprintf("ramp %d shock", s.Corner), Number(s.Clearance), s.Inside})
+		list = append(list, LipShock{lipShockName(s), Number(s.Clearance), s.Inside})
 	}
 	return list
 }

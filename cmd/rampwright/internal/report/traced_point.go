@@ -115,5 +115,9 @@ func withinBounds(points []TracedPoint) string {
 	if names == nil {
 		return ""
 	}
-	return " (at " + strings.Join(names, ", ") + " within the error bounds of its traces)"
+	whose := "their traces"
+	if len(names) == 1 {
+		whose = "its traces"
+	}
+	return " (at " + strings.Join(names, ", ") + " within the error bounds of " + whose + ")"
 }
