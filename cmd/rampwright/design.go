@@ -115,7 +115,7 @@ func (a *app) design(study *study, dir string) (err error) {
 		return a.cutShort(err, interruption)
 	}
 	a.hintBatch(settings, result.Counts, time.Since(searching))
-	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result}
+	finished := report.Study{Problem: study.problem, Model: study.model, Aim: study.brief.Aim, Agreement: settings.Agreement, Result: result, Widest: brief.Widest}
 	if err := a.followUp(ctx, study, cached, settings, &finished); err != nil {
 		return err
 	}

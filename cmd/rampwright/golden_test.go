@@ -259,7 +259,7 @@ func goldenDesign(t *testing.T, of *study, x ...float64) *report.Study {
 		t.Fatal(err)
 	}
 	return &report.Study{
-		Problem: of.problem, Model: of.model, Aim: of.brief.Aim, Agreement: 1e-3, Result: result, Flow: flow,
+		Problem: of.problem, Model: of.model, Aim: of.brief.Aim, Agreement: 1e-3, Result: result, Flow: flow, Widest: brief.Widest,
 		Exact: &optimize.ExactSearch{Feasible: true, X: x, Aim: best.AimExact, Evaluations: 100},
 	}
 }

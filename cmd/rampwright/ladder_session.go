@@ -8,6 +8,7 @@ import (
 	"slices"
 	"time"
 
+	"rampwright/cmd/rampwright/internal/brief"
 	"rampwright/cmd/rampwright/internal/report"
 	"rampwright/cmd/rampwright/internal/runstore"
 	"rampwright/optimize"
@@ -76,7 +77,7 @@ func (s *session) design(of *study, task optimize.Task, settings optimize.Settin
 	if err != nil {
 		return nil, err
 	}
-	return &report.Study{Problem: of.problem, Model: of.model, Aim: task.Aim, Agreement: settings.Agreement, Result: result}, nil
+	return &report.Study{Problem: of.problem, Model: of.model, Aim: task.Aim, Agreement: settings.Agreement, Result: result, Widest: brief.Widest}, nil
 }
 
 // explain looks for the reason where nothing holds every limit.

@@ -189,7 +189,8 @@ func (s *Study) places(g *grouped) string {
 	return strings.Join(parts, ", ")
 }
 
-// boundCautions are those of variables at the end of their range.
+// boundCautions are those of variables at the end of their range, but for an end
+// that no brief can move.
 func (s *Study) boundCautions() []Caution {
 	var list []Caution
 	for i, v := range s.model().Variables() {
@@ -197,13 +198,26 @@ func (s *Study) boundCautions() []Caution {
 		if side == "" {
 			continue
 		}
+		smallestRamp := strings.HasPrefix(v.Name, "ramp_") && side == "lower"
+		if !smallestRamp && s.isWidest(v, bound) {
+			continue
+		}
 		text := fmt.Sprintf("%s ends on the %s end of its range, %g: a wider range may hold a better design.", v.Name, side, bound)
-		if strings.HasPrefix(v.Name, "ramp_") && side == "lower" {
+		if smallestRamp {
 			text = fmt.Sprintf("%s stands at its smallest angle, %g deg: the search asks to delete this ramp.", v.Name, bound)
 		}
 		list = append(list, Caution{"on_bound", "", text})
 	}
 	return list
+}
+
+// isWidest reports whether an end of a variable's range is as far as a brief may set it.
+func (s *Study) isWidest(v problems.Variable, bound float64) bool {
+	if s.Widest == nil {
+		return false
+	}
+	low, high := s.Widest(v)
+	return bound == v.Low && bound <= low || bound == v.High && bound >= high
 }
 
 // surrogateCautions are those of the surrogates of aim and limits.

@@ -216,6 +216,25 @@ func TestBoundOfOtherVariables(t *testing.T) {
 	}
 }
 
+// An end that no brief can move asks for nothing; a ramp at its smallest angle can be
+// deleted all the same.
+func TestBoundThatNoBriefCanMove(t *testing.T) {
+	s := altered(t, func(s *Study, r *optimize.Result) { r.Best.X[3], r.Best.X[0], r.Best.X[1] = 12, 16, 3 })
+	s.Widest = func(v problems.Variable) (float64, float64) {
+		if v.Name == "ramp_1_angle_deg" {
+			return 3, 40
+		}
+		return 3, 12
+	}
+	var got []string
+	for _, c := range s.boundCautions() {
+		got = append(got, strings.Fields(c.Text)[0])
+	}
+	if want := []string{"ramp_1_angle_deg", "ramp_2_angle_deg"}; !slices.Equal(got, want) {
+		t.Errorf("cautions of %v, want %v", got, want)
+	}
+}
+
 // Of an inlet with a terminal shock, its Mach number is the first caution even
 // where nothing is feasible.
 func TestTerminalMachComesFirst(t *testing.T) {

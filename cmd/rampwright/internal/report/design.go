@@ -21,6 +21,9 @@ type Study struct {
 	Rounded   *optimize.Rounded     // nearest design in tenths of a degree; nil when not looked for
 	Plays     []optimize.Play       // of the variables at a loss of PlayLoss; nil when not measured
 	Flow      *inlet.Flow           // exact flow of Result.Best; nil where the problem is no inlet
+	// Widest is the widest range the brief may give a variable; nil where nothing
+	// bounds it.
+	Widest func(problems.Variable) (low, high float64)
 	// Confidence sets Result.Best beside the design that knows no tolerances; nil
 	// where none was asked for.
 	Confidence *Confidence
