@@ -154,9 +154,24 @@ func (a *app) followUp(ctx context.Context, study *study, cached problems.Proble
 			return err
 		}
 	}
-	if study.problem != nil {
-		finished.Flow, err = study.problem.Flow(context.WithoutCancel(ctx), finished.Result.Best.X)
+	return study.fly(context.WithoutCancel(ctx), finished)
+}
+
+// fly adds what the cautions of the best design come from: its exact flow, and the
+// quantities that the tolerances of the brief move.
+func (s *study) fly(ctx context.Context, finished *report.Study) (err error) {
+	if s.problem == nil {
+		return nil
 	}
+	x := finished.Result.Best.X
+	if finished.Flow, err = s.problem.Flow(ctx, x); err != nil || !s.brief.Tolerance.Any() {
+		return err
+	}
+	built, err := s.problem.Built(s.brief.Tolerance.Deviations())
+	if err != nil {
+		return err
+	}
+	finished.Moved, err = built.Moves(ctx, x)
 	return err
 }
 

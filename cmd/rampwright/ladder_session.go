@@ -95,11 +95,8 @@ func (s *session) explain(of *study, task optimize.Task, finished *report.Study)
 }
 
 // flow adds the exact flow of the best design, from which its cautions come.
-func (s *session) flow(of *study, finished *report.Study) (err error) {
-	if of.problem != nil {
-		finished.Flow, err = of.problem.Flow(context.WithoutCancel(s.ctx), finished.Result.Best.X)
-	}
-	return err
+func (s *session) flow(of *study, finished *report.Study) error {
+	return of.fly(context.WithoutCancel(s.ctx), finished)
 }
 
 // finish writes the files of the session with its record and the brief, makes

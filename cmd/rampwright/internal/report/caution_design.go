@@ -53,9 +53,11 @@ func (s *Study) endingCautions() []Caution {
 	best := &s.Result.Best
 	switch s.Result.Status {
 	case optimize.Infeasible:
-		add("infeasible", "No exact evaluation holds every limit; this one misses them least: %s.", unmet(best.Assessment))
-	case optimize.Stopped, optimize.Interrupted:
-		add("unfinished", "The search was ended early (%s): a better design may exist.", s.Result.Status)
+		add("infeasible", "No exact evaluation holds every limit; this one misses them least: %s.", unmet(best.Assessment, false))
+	case optimize.Stopped:
+		add("unfinished", "The search was ended early by the time limit: a better design may exist.")
+	case optimize.Interrupted:
+		add("unfinished", "The search was interrupted: a better design may exist.")
 	}
 	switch {
 	case best.Repetition == optimize.Same:
@@ -71,7 +73,7 @@ func (s *Study) endingCautions() []Caution {
 	}
 	if len(best.Broken) > 0 {
 		add("broken_when_resolved", "The search held limits on coarse traces that the fine ones of verification break: %s. Tighten these by the difference and search again.",
-			unmet(constraints.Assessment{Checks: best.Broken}))
+			unmet(constraints.Assessment{Checks: best.Broken}, true))
 	}
 	switch {
 	case s.Result.Status == optimize.Verified:
@@ -91,8 +93,9 @@ func (s *Study) endingCautions() []Caution {
 	return list
 }
 
-// unmet names the rows an assessment does not meet.
-func unmet(a constraints.Assessment) string {
+// unmet names the rows an assessment does not meet, each with the difference where
+// that is wanted or lies below the digits of the value.
+func unmet(a constraints.Assessment, difference bool) string {
 	var names []string
 	for _, c := range a.Checks {
 		if c.Met {
@@ -103,7 +106,12 @@ func unmet(a constraints.Assessment) string {
 			names = append(names, name+" has no value: "+c.Missing.Error())
 			continue
 		}
-		names = append(names, fmt.Sprintf("%s is %s, asked %s", name, significant(c.Value), bounds(c.Low, c.High)))
+		text := fmt.Sprintf("%s is %s, asked %s", name, significant(c.Value), bounds(c.Low, c.High))
+		shown := significant(c.Value)
+		if difference || shown == significant(c.Low) || shown == significant(c.High) {
+			text += " (missed by " + shortExponent(fmt.Sprintf("%.2g", -c.Margin)) + ")"
+		}
+		names = append(names, text)
 	}
 	if names == nil {
 		return "the aim has no value"
@@ -122,22 +130,53 @@ func responseName(q problems.Quantity) string {
 	return name + " at " + q.Point
 }
 
-// noMargin names the limits the design stands on.
+// noMargin names the limits the design stands on, those that no tolerance moves
+// apart.
 func (s *Study) noMargin() []Caution {
-	var names []string
+	var all, names, fixed []string
 	for _, c := range s.Result.Best.Assessment.Checks {
-		if name := responseName(c.Quantity); c.Active && !slices.Contains(names, name) {
+		name := responseName(c.Quantity)
+		if !c.Active || slices.Contains(all, name) {
+			continue
+		}
+		all = append(all, name)
+		if s.Moved != nil && !s.Moved[c.Index] {
+			fixed = append(fixed, name)
+		} else {
 			names = append(names, name)
 		}
 	}
-	switch len(names) {
-	case 0:
+	if all == nil {
 		return nil
-	case 1:
-		return []Caution{{"no_margin", "", "A limit is met without margin: " + names[0] + ". It is violated in about half of all built inlets."}}
 	}
-	return []Caution{{"no_margin", "", fmt.Sprintf("%d limits are met without margin: %s. Each is violated in about half of all built inlets, at least one of them in more.",
-		len(names), strings.Join(names, ", "))}}
+	text := "A limit is met without margin: " + all[0] + "."
+	if len(all) > 1 {
+		text = fmt.Sprintf("%d limits are met without margin: %s.", len(all), strings.Join(all, ", "))
+	}
+	switch {
+	case s.Moved == nil && len(all) == 1:
+		text += " The brief states no tolerance: whatever scatter moves it will violate it in about half of all built inlets."
+	case s.Moved == nil:
+		text += " The brief states no tolerance: whatever scatter moves one of them will violate it in about half of all built inlets."
+	case len(all) == 1 && fixed == nil:
+		text += " It is violated in about half of all built inlets."
+	case fixed == nil:
+		text += " Each is violated in about half of all built inlets, at least one of them in more."
+	case names == nil:
+		text += " No stated tolerance moves " + itOrThem(len(fixed)) + "."
+	case len(names) == 1:
+		text += fmt.Sprintf(" %s is violated in about half of all built inlets; no stated tolerance moves %s.", names[0], strings.Join(fixed, ", "))
+	default:
+		text += fmt.Sprintf(" Each but %s, which no stated tolerance moves, is violated in about half of all built inlets, at least one of them in more.", strings.Join(fixed, " and "))
+	}
+	return []Caution{{"no_margin", "", text}}
+}
+
+func itOrThem(n int) string {
+	if n == 1 {
+		return "it"
+	}
+	return "them"
 }
 
 // liftedDefaults names default limits that no row keeps, or only a looser one.

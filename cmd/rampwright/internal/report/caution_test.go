@@ -170,6 +170,7 @@ func TestDesignCautions(t *testing.T) {
 			check := &r.Best.Assessment.Checks[slices.IndexFunc(r.Rows, func(row constraints.Row) bool { return row.Quantity.Name == "length_m" })]
 			check.Met, check.Value = false, 0.7
 		}, same, "length_m is 0.70000, asked <= 0.62"},
+		"time_limit":    {func(s *Study, r *optimize.Result) { r.Status = optimize.Stopped }, same, "ended early by the time limit"},
 		"unfinished":    {func(s *Study, r *optimize.Result) { r.Status = optimize.Interrupted }, same, "interrupted"},
 		"routes_differ": {func(s *Study, r *optimize.Result) { r.Best.RouteGap = 1e-6 }, same, "differ by 1e-06"},
 		"no_route":      {func(s *Study, r *optimize.Result) { r.Best.RouteGap = math.Inf(1) }, same, "Only one of the two exact routes"},
@@ -188,7 +189,7 @@ func TestDesignCautions(t *testing.T) {
 		"weak_surrogate": {func(s *Study, r *optimize.Result) { r.Fits[0].Choice.Quality.Q2 = 0.5 }, same, "recovery at cruise (Q2 0.500)"},
 	} {
 		t.Run(rule, func(t *testing.T) {
-			rule := strings.Replace(rule, "no_route", "routes_differ", 1)
+			rule := strings.NewReplacer("no_route", "routes_differ", "time_limit", "unfinished").Replace(rule)
 			got, ok := raised(NewDesign(head, altered(t, c.raises)).Cautions, rule)
 			if !ok || !strings.Contains(got.Text, c.words) {
 				t.Errorf("raised %v: %+v, want %q", ok, got, c.words)
@@ -232,6 +233,77 @@ func TestBoundThatNoBriefCanMove(t *testing.T) {
 	}
 	if want := []string{"ramp_1_angle_deg", "ramp_2_angle_deg"}; !slices.Equal(got, want) {
 		t.Errorf("cautions of %v, want %v", got, want)
+	}
+}
+
+// Limits without margin are told apart by whether a tolerance of the brief moves them;
+// without tolerances nothing is said of built inlets but what scatter would do.
+func TestNoMarginCountsOnStatedTolerances(t *testing.T) {
+	var on []int
+	s := altered(t, func(s *Study, r *optimize.Result) {
+		for _, c := range r.Best.Assessment.Checks {
+			if c.Active && !slices.Contains(on, c.Index) {
+				on = append(on, c.Index)
+			}
+		}
+	})
+	if len(on) < 2 {
+		t.Fatalf("the design stands on %d limits", len(on))
+	}
+	names := make([]string, len(on))
+	for i, index := range on {
+		names[i] = responseName(s.Problem.Quantities()[index])
+	}
+	moved := func(which ...int) []bool {
+		list := make([]bool, len(s.Problem.Quantities()))
+		for _, i := range which {
+			list[i] = true
+		}
+		return list
+	}
+	for _, c := range []struct {
+		moved []bool
+		want  string
+	}{
+		{nil, "The brief states no tolerance: whatever scatter moves one of them will violate it in about half of all built inlets."},
+		{moved(on...), "Each is violated in about half of all built inlets, at least one of them in more."},
+		{moved(), "No stated tolerance moves them."},
+		{moved(on[0]), names[0] + " is violated in about half of all built inlets; no stated tolerance moves " + strings.Join(names[1:], ", ") + "."},
+		{moved(on[:len(on)-1]...), "Each but " + names[len(on)-1] + ", which no stated tolerance moves, is violated"},
+	} {
+		s.Moved = c.moved
+		got := s.noMargin()
+		if len(got) != 1 || !strings.Contains(got[0].Text, c.want) || !strings.HasPrefix(got[0].Text, fmt.Sprintf("%d limits are met without margin: ", len(on))) {
+			t.Errorf("moved %v: %+v, want %q", c.moved != nil, got, c.want)
+		}
+	}
+	s.Moved = moved(on[0])
+	best := &s.Result.Best.Assessment
+	best.Checks = slices.DeleteFunc(best.Checks, func(c constraints.Check) bool { return c.Active && c.Index != on[0] })
+	if got := s.noMargin(); got[0].Text != "A limit is met without margin: "+names[0]+". It is violated in about half of all built inlets." {
+		t.Errorf("%+v", got)
+	}
+}
+
+// What a limit is missed by is said where its digits do not show it, and always where
+// the reader is to tighten by it.
+func TestAMissBelowTheDigitsIsNamed(t *testing.T) {
+	check := func(value float64) constraints.Assessment {
+		row := constraints.Row{Quantity: problems.Quantity{Name: "throat_mach", Point: "takeover"}, Low: 1.3, High: math.Inf(1)}
+		return constraints.Assessment{Checks: []constraints.Check{{Row: row, Value: value, Margin: value - 1.3}}}
+	}
+	for _, c := range []struct {
+		value      float64
+		difference bool
+		want       string
+	}{
+		{1.3 - 3e-6, false, "throat_mach at takeover is 1.3000, asked >= 1.3 (missed by 3e-6)"},
+		{1.25, false, "throat_mach at takeover is 1.2500, asked >= 1.3"},
+		{1.25, true, "throat_mach at takeover is 1.2500, asked >= 1.3 (missed by 0.05)"},
+	} {
+		if got := unmet(check(c.value), c.difference); got != c.want {
+			t.Errorf("got %q, want %q", got, c.want)
+		}
 	}
 }
 

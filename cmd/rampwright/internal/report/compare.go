@@ -255,7 +255,7 @@ func (d *CompareDocument) Text(width int) string {
 		if i == best {
 			mark = "best"
 		}
-		cells := []string{strconv.Itoa(i + 1), c.Folder, c.Title, c.Status, significant(float64(c.Aim.Exact)), mark}
+		cells := []string{strconv.Itoa(i + 1), c.Folder, c.Title, statusWords(c.Status), significant(float64(c.Aim.Exact)), mark}
 		if some {
 			cells = slices.Insert(cells, 4, c.confidenceText())
 		}

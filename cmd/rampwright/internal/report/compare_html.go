@@ -62,7 +62,7 @@ func (d *CompareDocument) resultChapter() chapter {
 		c := &d.Results[i]
 		at := func(key ...any) []any { return append([]any{"results", i}, key...) }
 		row := []cell{
-			d.folderCell(i), quoted(c.Title, "compare", at("title")...), quoted(c.Status, "compare", at("status")...),
+			d.folderCell(i), quoted(c.Title, "compare", at("title")...), statusCell(c.Status, "compare", at("status")...),
 			quoted(c.Aim.Text, "compare", at("aim", "text")...), quoted(c.Aim.Where, "compare", at("aim", "where")...),
 			number(c.Aim.Exact, "compare", at("aim", "exact")...), number(c.Aim.Predicted, "compare", at("aim", "predicted")...),
 			countCell(c.Seed, "compare", at("seed")...),

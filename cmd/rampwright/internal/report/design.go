@@ -21,6 +21,9 @@ type Study struct {
 	Rounded   *optimize.Rounded     // nearest design in tenths of a degree; nil when not looked for
 	Plays     []optimize.Play       // of the variables at a loss of PlayLoss; nil when not measured
 	Flow      *inlet.Flow           // exact flow of Result.Best; nil where the problem is no inlet
+	// Moved marks the quantities that a tolerance of the brief moves; nil where it
+	// states none.
+	Moved []bool
 	// Widest is the widest range the brief may give a variable; nil where nothing
 	// bounds it.
 	Widest func(problems.Variable) (low, high float64)

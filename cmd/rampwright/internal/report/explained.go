@@ -104,7 +104,9 @@ func (d *DesignDocument) explained(p *page) {
 	p.WriteByte('\n')
 	p.wrap("", "Smallest loosening of one of them with every other limit held:", "")
 	t := &table{columns: []column{{head: "limit"}, {head: "asked"}, {head: "enough"}}}
+	never := false
 	for _, r := range d.Relaxation {
+		never = never || !finite(float64(r.Enough))
 		at := ""
 		if r.At != "geometry" {
 			at = " at " + r.At
@@ -112,7 +114,9 @@ func (d *DesignDocument) explained(p *page) {
 		t.add(r.Quantity+at+" "+r.words(), plain(float64(r.Bound)), significant(float64(r.Enough)))
 	}
 	p.table(t)
-	p.wrap(indent, none+": loosening it alone is not enough", indent)
+	if never {
+		p.wrap(indent, none+": loosening it alone is not enough", indent)
+	}
 	p.WriteByte('\n')
 	p.wrap("", fmt.Sprintf("Search behind this: evolution and local solution from %d starts for every question, on the exact model, over the box above. The design shown misses the limits least (sum of scaled violations %s).",
 		e.Starts, significant(float64(d.Best.Violation))), "")

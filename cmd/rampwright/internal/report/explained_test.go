@@ -38,6 +38,14 @@ func TestExplainedRoundedAndPlay(t *testing.T) {
 			t.Errorf("text lacks %q", want)
 		}
 	}
+	const legend = "-: loosening it alone is not enough"
+	if !strings.Contains(text, legend) {
+		t.Errorf("text lacks %q", legend)
+	}
+	s.Explained.Relaxations = s.Explained.Relaxations[1:] // each is enough alone
+	if enough := NewDesign(head, s).Text(100); strings.Contains(enough, legend) || !strings.Contains(enough, "0.70000") {
+		t.Error("the legend explains a sign that the table does not hold")
+	}
 	json := string(d.JSON())
 	for _, want := range []string{`"side": "at_most"`, `"enough": null`, `"enough": 0.7`, `"aim": 0.654`, `"variable": "ramp_1_angle_deg"`} {
 		if !strings.Contains(json, want) {

@@ -117,9 +117,9 @@ func Page(f Folder) ([]byte, error) {
 // sheet lays the page out in the order of a review: what was found, what to be
 // wary of, then the evidence.
 func (r *result) sheet() *sheet {
-	status := quoted(r.Status, "result", "status")
+	status := statusCell(r.Status, "result", "status")
 	return &sheet{
-		Title: []cell{quoted(r.Title, "result", "title")}, Status: &status, Answer: r.answerCells(), Facts: r.facts(),
+		Title: []cell{quoted(r.Title, "result", "title")}, Status: &status, Stamp: r.Status, Answer: r.answerCells(), Facts: r.facts(),
 		Sections: slices.Concat([]chapter{
 			r.cautionSection(), r.designSection(), r.confidenceSection(), r.conflictSection(), r.sideViewSection(), r.marginSection(), r.stationSection(),
 			r.traceSection(), r.quantitySection(), r.agreementSection(), r.mapSection(), r.offDesignSection(),

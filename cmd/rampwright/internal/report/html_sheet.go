@@ -11,6 +11,7 @@ import (
 type sheet struct {
 	Title    []cell
 	Status   *cell
+	Stamp    string // the status as one word, for the style
 	Answer   []cell
 	Facts    []fact // the title block
 	Sections []chapter
@@ -68,6 +69,14 @@ func words(format string, args ...any) cell { return cell{Text: fmt.Sprintf(form
 
 // quoted is text taken from a document.
 func quoted(text, from string, path ...any) cell { return cell{Text: text, From: place(from, path)} }
+
+// statusCell is a status of a document as people read it.
+func statusCell(status, from string, path ...any) cell {
+	return quoted(statusWords(status), from, path...)
+}
+
+// statusWords sets the words of a status apart.
+func statusWords(status string) string { return strings.ReplaceAll(status, "_", " ") }
 
 // number is a number taken from a document, with the digits of text.
 func number(v Number, from string, path ...any) cell {

@@ -21,7 +21,7 @@ func ladderTables(c *chapter, s *studyPage) error {
 		at := func(key ...any) []any { return append([]any{"rows", i}, key...) }
 		ramps := countCell(int64(row.Ramps), s.Name, at("ramps")...)
 		t.Rows = append(t.Rows, []cell{
-			ramps, s.text(row.Status, at("status")...),
+			ramps, statusCell(row.Status, s.Name, at("status")...),
 			number(row.Aim.Exact, s.Name, at("aim", "exact")...), number(row.Aim.Predicted, s.Name, at("aim", "predicted")...),
 			number(row.Gain, s.Name, at("gain")...), number(row.EqualStrength, s.Name, at("equal_strength")...),
 		})
@@ -62,7 +62,7 @@ func tradeTables(c *chapter, s *studyPage) error {
 		for k, text := range row.Active {
 			stands = append(stands, s.text(text, at("active", k)...))
 		}
-		cells = append(cells, number(row.Rate, s.Name, at("rate")...), s.text(row.Status, at("status")...), joined(stands, "; "))
+		cells = append(cells, number(row.Rate, s.Name, at("rate")...), statusCell(row.Status, s.Name, at("status")...), joined(stands, "; "))
 		t.Rows = append(t.Rows, cells)
 		designs.add(name, s.Name, row.Variables, at("variables")...)
 	}

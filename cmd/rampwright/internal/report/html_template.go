@@ -129,7 +129,7 @@ var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"br
 <header>
 <div>
 <h1>{{range .Title}}{{template "cell" .}}{{end}}</h1>
-{{with .Status}}<div class="stamp {{.Text}}">{{template "cell" .}}</div>
+{{with .Status}}<div class="stamp {{$.Stamp}}">{{template "cell" .}}</div>
 {{end}}<p class="answer">{{range .Answer}}{{template "cell" .}}{{end}}</p>
 </div>
 <dl class="block">

@@ -209,7 +209,7 @@ func (s *Study) whyInfeasible() string {
 		sets = append(sets, text)
 	}
 	if sets == nil {
-		return "the nearest design misses limits: " + unmet(s.Result.Best.Assessment)
+		return "the nearest design misses limits: " + unmet(s.Result.Best.Assessment, false)
 	}
 	return "cannot be met in the search box: " + strings.Join(sets, "; nor ")
 }

@@ -59,7 +59,7 @@ func (d *LadderDocument) table(p *page) {
 		t.columns = append(t.columns, column{head: s.head, drop: s.drop})
 	}
 	for _, row := range d.Rows {
-		cells := []string{fmt.Sprint(row.Ramps), strings.ReplaceAll(row.Status, "_", " "), significant(float64(row.Gain))}
+		cells := []string{fmt.Sprint(row.Ramps), statusWords(row.Status), significant(float64(row.Gain))}
 		if !aimShown {
 			cells = append(cells, significant(float64(row.Aim.Exact)))
 		}
@@ -214,7 +214,7 @@ func (d *LadderDocument) Picture() ([]byte, error) {
 		if v := row.exact("recovery", point.Name); row.Feasible && finite(v) {
 			designs.Points = append(designs.Points, chart.LinePoint{X: x, Y: v, Note: significant(v)})
 		} else {
-			without = append(without, fmt.Sprintf("%s %s", ramps(row.Ramps), strings.ReplaceAll(row.Status, "_", " ")))
+			without = append(without, fmt.Sprintf("%s %s", ramps(row.Ramps), statusWords(row.Status)))
 		}
 		if v := float64(row.EqualStrength); finite(v) {
 			limit.Points = append(limit.Points, chart.LinePoint{X: x, Y: v})

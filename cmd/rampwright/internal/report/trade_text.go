@@ -77,7 +77,7 @@ func (d *TradeDocument) table(p *page) {
 	for i := range d.Curve {
 		row := &d.Curve[i]
 		t.add(fmt.Sprint(i+1), significant(float64(row.Values[0].Value)), significant(float64(row.Values[1].Value)),
-			significant(float64(row.Rate)), strings.ReplaceAll(row.Status, "_", " "))
+			significant(float64(row.Rate)), statusWords(row.Status))
 		if row.Knee {
 			t.annotate("knee")
 		}
