@@ -55,6 +55,7 @@ type designer struct {
 	unprobed  int     // probes it lacks, no room in the rounds so far
 	refined   int     // rounds of refinement
 	counts    Counts
+	sampled   Step // once the samples are evaluated
 	history   []Step
 	why       string
 }
@@ -99,7 +100,7 @@ func (d *designer) run(ctx context.Context) error {
 // sample evaluates the starts and the space-filling design.
 func (d *designer) sample(ctx context.Context) error {
 	// An interruption leaves samples to judge as well.
-	defer func() { d.penalty = newMerit(d.plan, d.samples) }()
+	defer func() { d.penalty, d.sampled = newMerit(d.plan, d.samples), d.standing() }()
 	points := slices.Concat(d.plan.starts, d.plan.design(d.settings.Samples, d.settings.Seed))
 	// In slices, so that an interruption loses little and progress shows.
 	for len(points) > 0 {
@@ -213,7 +214,7 @@ func (d *designer) result(ctx context.Context) (*Result, error) {
 	if len(d.samples) == 0 {
 		return nil, errors.Join(ErrNothingEvaluated, ctx.Err())
 	}
-	r := &Result{Rows: d.plan.rows, History: d.history, Why: d.why}
+	r := &Result{Rows: d.plan.rows, Sampled: d.sampled, History: d.history, Why: d.why}
 	for _, s := range d.finalists() {
 		candidate, err := d.candidate(ctx, s)
 		if err != nil {

@@ -146,6 +146,10 @@ func TestHistoryNeverWorsens(t *testing.T) {
 				t.Fatal(err)
 			}
 			sign := mustPlan(t, task).objective.sign()
+			if n := result.Sampled.Evaluations; n != settings.Samples || n >= result.History[0].Evaluations {
+				t.Errorf("%s: %d samples, then %+v", name, n, result.History[0])
+			}
+			result.History = append([]Step{result.Sampled}, result.History...)
 			for i, step := range result.History[1:] {
 				before := result.History[i]
 				if !math.IsNaN(before.Aim) && !(sign*step.Aim <= sign*before.Aim) || step.Violation > before.Violation || step.Evaluations <= before.Evaluations {

@@ -122,12 +122,19 @@ func (d *designer) correct(proposals []*proposal, before *anchor) {
 	}
 }
 
-// note appends a line to the history.
-func (d *designer) note(proposals []*proposal) {
+// standing is where the search stands: a line of the history before any surrogate has
+// proposed.
+func (d *designer) standing() Step {
 	step := Step{Evaluations: len(d.samples), Aim: math.NaN(), Violation: d.leastViolation(), Radius: d.radius, Error: math.NaN()}
 	if best := d.best(); best != nil {
 		step.Aim = best.aim
 	}
+	return step
+}
+
+// note appends a line to the history.
+func (d *designer) note(proposals []*proposal) {
+	step := d.standing()
 	for _, p := range proposals {
 		if p.purpose == stepping && math.IsNaN(step.Error) {
 			step.Error = d.surrogateError(p.sample, p.predicted)

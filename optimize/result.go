@@ -116,7 +116,8 @@ type Result struct {
 	Candidates []Candidate // Best first, then distinct runners-up
 	Fits       []Fit
 	Counts     Counts
-	History    []Step
+	Sampled    Step   // where the samples left the search
+	History    []Step // a line a round of infill
 	Rows       []constraints.Row
 	Samples    []Sample // every exact evaluation, in order
 	// Why is one sentence on the way the search ended.

@@ -68,6 +68,10 @@ func checkRounds(t *testing.T, result []byte, batch int) {
 	}
 	decode(t, result, &document)
 	spent := document.Evaluations
+	if len(document.History) == 0 || document.History[0].Evaluations != spent.Samples {
+		t.Fatalf("the history does not begin with the %d samples: %+v", spent.Samples, document.History)
+	}
+	document.History = document.History[1:]
 	if spent.Rounds != len(document.History) || spent.Rounds*batch < spent.Infill || spent.Rounds >= spent.Infill {
 		t.Errorf("%+v with %d lines of history in batches of %d", spent, len(document.History), batch)
 	}

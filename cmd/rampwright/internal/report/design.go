@@ -51,7 +51,7 @@ type DesignDocument struct {
 	Rounded     *Rounded    `json:"rounded"`
 	Play        []Play      `json:"play"`
 	Notes       []string    `json:"notes"`
-	History     []Step      `json:"history"`
+	History     []Step      `json:"history"`              // after the samples, then after every round of infill
 	Inlet       *Shape      `json:"inlet"`                // null where the problem is no inlet
 	Points      []Point     `json:"points"`               // stations; quantities are in Best
 	Confidence  *Confidence `json:"confidence,omitempty"` // where the brief asks for one
@@ -165,6 +165,10 @@ type Step struct {
 	Radius      Number `json:"radius"`
 }
 
+func newStep(s optimize.Step) Step {
+	return Step{s.Evaluations, Number(s.Aim), Number(s.Violation), Number(s.Error), Number(s.Radius)}
+}
+
 // NewDesign describes a finished design.
 func NewDesign(head Head, study Study) *DesignDocument {
 	if study.Agreement == 0 {
@@ -186,8 +190,11 @@ func NewDesign(head Head, study Study) *DesignDocument {
 	for i := range result.Fits {
 		d.Fits = append(d.Fits, study.fit(&result.Fits[i]))
 	}
+	if result.Sampled.Evaluations > 0 {
+		d.History = append(d.History, newStep(result.Sampled))
+	}
 	for _, s := range result.History {
-		d.History = append(d.History, Step{s.Evaluations, Number(s.Aim), Number(s.Violation), Number(s.Error), Number(s.Radius)})
+		d.History = append(d.History, newStep(s))
 	}
 	d.Best = study.best(d.readings)
 	d.ExactSearch = study.exactSearch()
