@@ -61,21 +61,27 @@ func wavesOf(t *testing.T, name string, arguments ...string) string {
 	return dir
 }
 
-// walls.csv, forces.csv and tubes.csv are what flow.json says, bit by bit and in its
-// order.
-func TestWaveTablesAreTheDocument(t *testing.T) {
-	dir := wavesOf(t, "sorvane-5")
+// documentOf reads the flow.json of a folder of waves.
+func documentOf(t *testing.T, dir string) []byte {
+	t.Helper()
 	data, err := os.ReadFile(filepath.Join(dir, "flow.json"))
 	if err != nil {
 		t.Fatal(err)
 	}
+	return data
+}
+
+// walls.csv, forces.csv and tubes.csv are what flow.json says, bit by bit and in its
+// order.
+func TestWaveTablesAreTheDocument(t *testing.T) {
+	dir := wavesOf(t, "sorvane-5")
 	var document struct {
 		Points []struct {
 			Name  string
 			Trace map[string]json.RawMessage
 		}
 	}
-	decode(t, data, &document)
+	decode(t, documentOf(t, dir), &document)
 	for table, key := range map[string]string{"walls": "walls", "forces": "forces", "tubes": "throat"} {
 		rows := csvRows(t, filepath.Join(dir, table+".csv"))
 		for _, p := range document.Points {
@@ -180,10 +186,6 @@ func TestFrontsHoldTheJumps(t *testing.T) {
 // height of the free stream.
 func TestStreamlineEndsAtTheLip(t *testing.T) {
 	dir := wavesOf(t, "sorvane-5")
-	data, err := os.ReadFile(filepath.Join(dir, "flow.json"))
-	if err != nil {
-		t.Fatal(err)
-	}
 	var document struct {
 		Points []struct {
 			Name      string
@@ -191,7 +193,7 @@ func TestStreamlineEndsAtTheLip(t *testing.T) {
 			Trace     struct{ Capture float64 }
 		}
 	}
-	decode(t, data, &document)
+	decode(t, documentOf(t, dir), &document)
 	rows := csvRows(t, filepath.Join(dir, "streamline.csv"))
 	for _, p := range document.Points {
 		var line []map[string]string
